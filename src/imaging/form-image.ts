@@ -1,0 +1,178 @@
+/** From the ideal scene to what the pixels receive: warp, illumination and blur, band by band. */
+import { InputError } from '../errors.js';
+import type { Rig } from '../optics/rig.js';
+import type { Crew, JobWatch } from './crew.js';
+import { type BandKernels, type BlurTolerances, prepareKernels, refuseUnsampled } from './plan-blur.js';
+import { cornerMm, sensorFrame } from './sensor-frame.js';
+import type { BandSetup } from './work.js';
+
+export interface FormedImage {
+  /** One plane a band in shared memory, of the camera's pixels, row-major, in linear light. */
+  planes: Float32Array[];
+  accuracy: {
+    blendBound: number;
+    energyOutsideKernel: number;
+    /** Tiles in x and y, of the band that needs the most. */
+    cells: [number, number];
+    kernelPx: number;
+  };
+  seconds: { psf: number; warp: number; blur: number };
+}
+
+/** Stages that a watcher hears of. */
+export type ImageStage = 'psf' | 'warp' | 'blur';
+
+export interface ImageWatch {
+  signal?: AbortSignal;
+  onProgress?: (stage: ImageStage, done: number, total: number) => void;
+}
+
+const ROWS_PER_TASK = 32;
+
+/** Refuse a rig whose picture cannot be formed, before anything is read or computed.
+ * @throws {InputError} distortion that folds over the sensor, a wavefront too steep to sample */
+export function refuseUnformable(rig: Rig, oversample: number): void {
+  for (const [bandIndex, band] of rig.camera.bands.entries()) {
+    const frame = sensorFrame(rig, band, oversample);
+    const corner = cornerMm(frame);
+    if (corner >= frame.map.foldMm) {
+      const largest = largestBarrelWaves(rig, corner);
+      throw new InputError({
+        key: 'lens.waves.W311',
+        message: `the distortion folds the picture over itself ${frame.map.foldMm.toFixed(2)} mm from the axis, inside the sensor, whose corner lies at ${corner.toFixed(2)} mm`,
+        found: `${rig.lens.waves.W311} waves`,
+        allowed: `less than about ${largest.toPrecision(3)} waves for this sensor`,
+        advice: 'Lower W311 (or distortion_percent), or use a smaller sensor.',
+      });
+    }
+    if (bandIndex === 0) refuseUnsampled({ rig, bandIndex, oversample });
+  }
+}
+
+/** Form the picture.
+ * @param scene one plane a band in the crew's arena, oversample times the camera's pixels on each side; not changed
+ * @returns planes that live in the crew's arena, below what the caller reserves next */
+export async function formImage(
+  crew: Crew,
+  rig: Rig,
+  scene: readonly Float32Array[],
+  oversample: number,
+  tolerances: BlurTolerances,
+  watch: ImageWatch = {},
+): Promise<FormedImage> {
+  const { arena } = crew;
+  const [width, height] = rig.camera.pixels;
+  const samples = width * height * oversample ** 2;
+  const planes = rig.camera.bands.map(() =>
+    arena.floats(arena.allocateFloats(width * height), width * height),
+  );
+  const seconds = { psf: 0, warp: 0, blur: 0 };
+  const timed = async <T>(stage: ImageStage, work: (watch: JobWatch) => Promise<T>): Promise<T> => {
+    const start = performance.now();
+    const onProgress =
+      watch.onProgress && ((done: number, total: number) => watch.onProgress?.(stage, done, total));
+    const result = await work({ signal: watch.signal, onProgress });
+    seconds[stage] += (performance.now() - start) / 1000;
+    return result;
+  };
+  let worst: BandKernels | undefined;
+  let earlier: BandKernels | undefined;
+  const accuracy = { blendBound: 0, energyOutsideKernel: 0 };
+  for (const bandIndex of rig.camera.bands.keys()) {
+    const mark = arena.mark();
+    const setup: BandSetup = { rig, bandIndex, oversample };
+    const kernels = await timed('psf', (jobWatch) =>
+      prepareKernels(crew, setup, tolerances, jobWatch, earlier),
+    );
+    const warpedAt = arena.allocateFloats(samples);
+    const isFine = oversample > 1;
+    const blurredAt = isFine ? arena.allocateFloats(samples) : planes[bandIndex].byteOffset;
+    const flatAt = arena.allocateFloats(samples);
+    await timed('warp', async (jobWatch) => {
+      const count = Math.ceil((height * oversample) / ROWS_PER_TASK);
+      const sceneAt = scene[bandIndex].byteOffset;
+      await crew.run(
+        { kind: 'warp', setup, sceneAt, outAt: warpedAt, rowsPerTask: ROWS_PER_TASK, count },
+        jobWatch,
+      );
+    });
+    await timed('blur', async (jobWatch) => {
+      await blurPlane(crew, kernels, warpedAt, blurredAt, flatAt, jobWatch);
+      if (isFine) takePixels(arena.floats(blurredAt, samples), width, height, oversample, planes[bandIndex]);
+    });
+    accuracy.blendBound = Math.max(accuracy.blendBound, kernels.blendBound);
+    accuracy.energyOutsideKernel = Math.max(accuracy.energyOutsideKernel, kernels.energyOutsideKernel);
+    if (worst === undefined || kernels.grid.tilesX > worst.grid.tilesX) worst = kernels;
+    earlier = kernels;
+    arena.release(mark);
+  }
+  const grid = (worst as BandKernels).grid;
+  return {
+    planes,
+    accuracy: { ...accuracy, cells: [grid.tilesX, grid.tilesY], kernelPx: grid.kernelPx },
+    seconds,
+  };
+}
+
+/** Blur one plane.
+ *
+ * Where the PSFs' centroids wander over the field, as coma's do, scene points draw together or apart, and a plane of ones would come
+ * out as `flat`, a part in a thousand from 1. Relative illumination is by definition all that happens to a uniform scene, so the
+ * plane is divided by `flat`.
+ *
+ * Tile columns whose results could overlap are done in turns, always in the same order, so that the sums come out
+ * the same whatever the number of threads. */
+async function blurPlane(
+  crew: Crew,
+  kernels: BandKernels,
+  sourceAt: number,
+  outAt: number,
+  flatAt: number,
+  watch: JobWatch,
+): Promise<void> {
+  const { grid, isMirrored, kernelsAt } = kernels;
+  const out = crew.arena.floats(outAt, grid.width * grid.height).fill(0);
+  const flat = crew.arena.floats(flatAt, grid.width * grid.height).fill(0);
+  const turns = Math.ceil((grid.tilePx + grid.kernelPx - 1) / grid.tilePx);
+  let before = 0;
+  for (let turn = 0; turn < turns; turn++) {
+    const columns: number[] = [];
+    for (let column = turn; column < grid.tilesX; column += turns) columns.push(column);
+    const begun = before;
+    const onProgress = watch.onProgress && ((done: number) => watch.onProgress?.(begun + done, grid.tilesX));
+    await crew.run(
+      { kind: 'blur', grid, isMirrored, kernelsAt, sourceAt, outAt, flatAt, columns },
+      { signal: watch.signal, onProgress },
+    );
+    before += columns.length;
+  }
+  for (let i = 0; i < out.length; i++) out[i] /= flat[i];
+}
+
+/** Take the pixels out of an oversampled plane. Its kernels hold the whole pixel, so the sample at a pixel's middle is the pixel; with
+ * an even oversampling the plane stands half a sample further on, see `KernelSource`. */
+function takePixels(
+  fine: Float32Array,
+  width: number,
+  height: number,
+  oversample: number,
+  out: Float32Array,
+): void {
+  const middle = Math.floor((oversample - 1) / 2);
+  const stride = width * oversample;
+  for (let row = 0; row < height; row++) {
+    const from = (row * oversample + middle) * stride + middle;
+    for (let column = 0; column < width; column++)
+      out[row * width + column] = fine[from + column * oversample];
+  }
+}
+
+/** The largest barrel W311 whose map still rises up to the corner, all else as in the rig: r' of the fold goes as W311^(-1/2). */
+function largestBarrelWaves(rig: Rig, cornerSensorMm: number): number {
+  const oneWave = sensorFrame(
+    { ...rig, lens: { ...rig.lens, waves: { ...rig.lens.waves, W311: 1 } } },
+    rig.camera.bands[0],
+    1,
+  );
+  return (oneWave.map.foldMm / cornerSensorMm) ** 2;
+}

@@ -1,0 +1,98 @@
+/** How large a kernel must be to hold the light of a PSF. */
+import { energyBySquareRing } from '../optics/psf.js';
+import type { Band, Rig } from '../optics/rig.js';
+import { gridForPhase, LARGEST_GRID, samplesPerPixel } from '../optics/sampling.js';
+import { wavefrontAt } from '../optics/wavefront.js';
+import { kernelSampling } from './kernel-source.js';
+import { idealPoint, sensorFrame } from './sensor-frame.js';
+
+/** Kernels smaller than this gain nothing. */
+const SMALLEST_KERNEL = 15;
+const LARGEST_KERNEL = 1023;
+
+/** Cumulated energy of a band's PSF at a place of the picture.
+ * @returns shares of the light within max(|x|, |y|) <= r fine steps, by r; the fine steps are those of `kernelSampling` */
+export function energyWithin(
+  rig: Rig,
+  band: Band,
+  oversample: number,
+  x: number,
+  y: number,
+  enough: (cumulated: Float64Array) => boolean,
+): Float64Array {
+  const { pitchUm, shortestNm, fNumber } = kernelSampling(rig, oversample, 1);
+  const stepUm = pitchUm / samplesPerPixel(pitchUm, shortestNm, fNumber);
+  const [xMm, yMm] = idealPoint(sensorFrame(rig, band, oversample), x, y);
+  const lines = band.lines.map(({ nm, weight }) => ({
+    nm,
+    weight,
+    wavefront: wavefrontAt(rig, xMm, yMm, nm, band),
+  }));
+  let n = Math.max(256, ...lines.map(({ nm, wavefront }) => gridForPhase(wavefront, stepUm, nm, fNumber)));
+  for (; ; n *= 2) {
+    const cumulated = new Float64Array(n / 2 + 1);
+    for (const { nm, weight, wavefront } of lines) {
+      const rings = energyBySquareRing(wavefront, n, stepUm, nm, fNumber);
+      let sum = 0;
+      for (let r = 0; r < rings.length; r++) {
+        sum += rings[r];
+        cumulated[r] += weight * sum;
+      }
+    }
+    if (n >= LARGEST_GRID || enough(cumulated)) return cumulated;
+  }
+}
+
+/** Half the side, in fine steps, of the square that holds all but `tolerance` of the light. The window looked at is at least twice as
+ * large, so that light from outside it, folded back by the sampling, does not count as inside. */
+export function extentSteps(
+  rig: Rig,
+  band: Band,
+  oversample: number,
+  x: number,
+  y: number,
+  tolerance: number,
+): number {
+  const radius = (cumulated: Float64Array) => {
+    const at = cumulated.findIndex((share) => share >= 1 - tolerance);
+    return at < 0 ? cumulated.length - 1 : at;
+  };
+  return radius(
+    energyWithin(rig, band, oversample, x, y, (cumulated) => radius(cumulated) <= cumulated.length / 2),
+  );
+}
+
+/** Share of the light that falls outside a kernel at a place of the picture. */
+export function energyOutside(
+  rig: Rig,
+  band: Band,
+  oversample: number,
+  x: number,
+  y: number,
+  kernelPx: number,
+): number {
+  const half = (kernelPx * finePerSample(rig, oversample)) / 2;
+  const cumulated = energyWithin(rig, band, oversample, x, y, (sums) => sums.length >= 4 * half);
+  // a ring of radius r reaches r + 1/2 steps out
+  const inside = Math.min(cumulated.length - 1, Math.max(0, half - 0.5));
+  const low = Math.floor(inside);
+  const high = Math.min(cumulated.length - 1, low + 1);
+  const share = cumulated[low] + (inside - low) * (cumulated[high] - cumulated[low]);
+  return Math.max(0, 1 - share);
+}
+
+/** Side of the kernel for an extent: odd for odd oversampling, even for even (so that its samples lie on pixels' middles), within
+ * the limits of kernel and pupil grid. */
+export function kernelSide(rig: Rig, oversample: number, extent: number): number {
+  const perSample = finePerSample(rig, oversample);
+  const isEven = oversample % 2 === 0;
+  const parity = (side: number) => (side % 2 === (isEven ? 0 : 1) ? side : side + 1);
+  const wanted = parity(Math.max(SMALLEST_KERNEL, Math.ceil((2 * extent + 1) / perSample)));
+  const largest = Math.min(LARGEST_KERNEL - (isEven ? 1 : 0), Math.floor(LARGEST_GRID / perSample) - 1);
+  return wanted <= largest ? wanted : parity(largest - 1);
+}
+
+function finePerSample(rig: Rig, oversample: number): number {
+  const { pitchUm, shortestNm, fNumber } = kernelSampling(rig, oversample, 1);
+  return samplesPerPixel(pitchUm, shortestNm, fNumber);
+}

@@ -1,0 +1,226 @@
+/** The choice of kernel, tile and order of interpolation for one band, and the proof that it holds. */
+import { isSymmetric } from '../optics/rig.js';
+import { refuseTooSteep, samplesPerPixel } from '../optics/sampling.js';
+import { type BlurGrid, makeBlurGrid, tileEdge } from './blur-grid.js';
+import { probeCount, type TileSpan } from './certificate.js';
+import type { Crew, JobWatch } from './crew.js';
+import { kernelSide } from './kernel-size.js';
+import { kernelSampling } from './kernel-source.js';
+import { slotCount } from './node-kernels.js';
+import { idealPoint, sensorFrame } from './sensor-frame.js';
+import { blurFftSize } from './tile-blur.js';
+import type { BandSetup } from './work.js';
+
+/** What the user asks of the blur. */
+export interface BlurTolerances {
+  /** Largest error by blending, as a share of a 0..1 scene's range. */
+  blend: number;
+  /** Largest share of light outside the kernel. */
+  kernel: number;
+}
+
+/** Kernels of a band in shared memory, with what was measured of them. */
+export interface BandKernels {
+  grid: BlurGrid;
+  isMirrored: boolean;
+  kernelsAt: number;
+  /** The certificate: largest measured blending error over all tiles that were probed. */
+  blendBound: number;
+  energyOutsideKernel: number;
+}
+
+/** A grid of this many checked tiles is proof enough; finer grids are checked on an even spread and along the border. */
+const MOST_CHECKED_TILES = 800;
+/** Part of the tolerance that a planned grid aims at; the check of the finished grid has the last word. */
+const AIM = 0.85;
+const LARGEST_FFT = 2048;
+
+/** Plan, compute and certify the kernels of a band.
+ * @param earlier the kernels of another band, a good first guess
+ * @throws {InputError} where the wavefront cannot be sampled */
+export async function prepareKernels(
+  crew: Crew,
+  setup: BandSetup,
+  tolerances: BlurTolerances,
+  watch: JobWatch,
+  earlier?: BandKernels,
+): Promise<BandKernels> {
+  const places = samplePlaces(setup);
+  const kernelPx = await chooseKernel(crew, setup, places, tolerances.kernel, watch);
+  const outside = await crew.run({ kind: 'outside', setup, places, kernelPx }, { signal: watch.signal });
+  let { tilePx, order } = await chooseTile(crew, setup, kernelPx, tolerances.blend, watch, earlier?.grid);
+  const isMirrored = isSymmetric(setup.rig);
+  const { width, height } = frameOf(setup);
+  const mark = crew.arena.mark();
+  for (;;) {
+    const grid = makeBlurGrid(width, height, kernelPx, tilePx, order);
+    crew.arena.release(mark);
+    const count = slotCount(grid, isMirrored);
+    const kernelsAt = crew.arena.allocateFloats(count * kernelPx ** 2);
+    await crew.run({ kind: 'kernels', setup, grid, isMirrored, kernelsAt, count }, watch);
+    const tiles = tilesToCheck(grid, isMirrored);
+    const errors = await crew.run({ kind: 'tiles', setup, grid, isMirrored, kernelsAt, tiles }, watch);
+    const blendBound = largest(errors.subarray(0, tiles.length));
+    if (blendBound <= tolerances.blend || grid.tilePx <= 1) {
+      return { grid, isMirrored, kernelsAt, blendBound, energyOutsideKernel: largest(outside) };
+    }
+    tilePx = shrinkTile(grid.tilePx, order, blendBound, tolerances.blend);
+  }
+}
+
+/** Refuse, in no time, a rig whose PSFs cannot be computed somewhere on its sensor. */
+export function refuseUnsampled(setup: BandSetup): void {
+  const { pitchUm, shortestNm, fNumber } = kernelSampling(setup.rig, setup.oversample, 1);
+  const stepUm = pitchUm / samplesPerPixel(pitchUm, shortestNm, fNumber);
+  const frame = frameOf(setup);
+  const points = samplePlaces(setup).map(([x, y]) => idealPoint(frame, x, y));
+  refuseTooSteep(setup.rig, points, stepUm);
+}
+
+/** Places where a PSF's extent is looked at: axis, sides, corners and between. */
+function samplePlaces(setup: BandSetup): [number, number][] {
+  const { width, height, axisX, axisY } = frameOf(setup);
+  const shares = isSymmetric(setup.rig) ? [0, 0.25, 0.5] : [0, 0.25, 0.5, 0.75, 1];
+  const grid = shares.flatMap((v) =>
+    shares.map((u): [number, number] => [u * width - 0.5, v * height - 0.5]),
+  );
+  const inside = axisX >= -0.5 && axisX <= width - 0.5 && axisY >= -0.5 && axisY <= height - 0.5;
+  return inside ? [...grid, [axisX, axisY]] : grid;
+}
+
+async function chooseKernel(
+  crew: Crew,
+  setup: BandSetup,
+  places: [number, number][],
+  tolerance: number,
+  watch: JobWatch,
+): Promise<number> {
+  const extents = await crew.run({ kind: 'extent', setup, places, tolerance }, { signal: watch.signal });
+  return kernelSide(setup.rig, setup.oversample, largest(extents));
+}
+
+/** The tile and order that promise the certificate for the least work. */
+async function chooseTile(
+  crew: Crew,
+  setup: BandSetup,
+  kernelPx: number,
+  tolerance: number,
+  watch: JobWatch,
+  earlier?: BlurGrid,
+): Promise<{ tilePx: number; order: number }> {
+  if (earlier !== undefined && earlier.kernelPx === kernelPx)
+    return { tilePx: earlier.tilePx, order: earlier.order };
+  let best: { tilePx: number; order: number; cost: number } | undefined;
+  for (const order of [1, 2, 3]) {
+    const allowedPx = await largestTile(crew, setup, kernelPx, order, tolerance, watch);
+    for (let fftSize = blurFftSize(1, kernelPx); fftSize <= LARGEST_FFT; fftSize *= 2) {
+      const tilePx = Math.min(Math.floor(allowedPx), fftSize - kernelPx + 1);
+      if (tilePx < 1 || blurFftSize(tilePx, kernelPx) !== fftSize) continue;
+      const cost = costPerSample(setup, kernelPx, tilePx, order, fftSize);
+      if (best === undefined || cost < best.cost) best = { tilePx, order, cost };
+    }
+    if (allowedPx > 1.5 * kernelPx) break; // higher orders pay only where tiles are small against the kernel
+  }
+  return best ?? { tilePx: 1, order: 1 };
+}
+
+/** Side of the largest tile that should meet the tolerance, from measured errors of single tiles: e grows as tile^(order + 1). */
+async function largestTile(
+  crew: Crew,
+  setup: BandSetup,
+  kernelPx: number,
+  order: number,
+  tolerance: number,
+  watch: JobWatch,
+): Promise<number> {
+  const { width, height } = frameOf(setup);
+  const longest = 2 * Math.max(width, height);
+  let tilePx = Math.min(order * 64, longest);
+  for (let round = 0; round < 2; round++) {
+    const spans = sampleSpans(setup, tilePx);
+    const job = { kind: 'spans', setup, kernelPx, order, spans } as const;
+    const error = largest(await crew.run(job, { signal: watch.signal }));
+    const factor = error === 0 ? 8 : ((AIM * tolerance) / error) ** (1 / (order + 1));
+    tilePx = Math.min(longest, Math.max(1, tilePx * Math.min(8, factor)));
+  }
+  return tilePx;
+}
+
+/** Spans at the places where PSFs change the fastest: corners, sides, and half-way out. */
+function sampleSpans(setup: BandSetup, tilePx: number): TileSpan[] {
+  const { width, height } = frameOf(setup);
+  const span = (size: number, share: number): [number, number] => {
+    const side = Math.min(tilePx, size);
+    const near = share * (size - side) - 0.5;
+    return [near, near + side];
+  };
+  const shares: [number, number][] = [
+    [0, 0],
+    [0.5, 0],
+    [0, 0.5],
+    [0.25, 0.25],
+  ];
+  if (!isSymmetric(setup.rig)) shares.push([1, 0], [0, 1], [1, 1], [0.5, 1], [1, 0.5], [0.5, 0.5]);
+  return shares.map(([u, v]) => {
+    const [nearX, farX] = span(width, u);
+    const [nearY, farY] = span(height, v);
+    return { nearX, farX, nearY, farY };
+  });
+}
+
+/** Work per sample of the picture, in butterflies: transforms of tile and kernels, and the PSFs themselves. */
+function costPerSample(
+  setup: BandSetup,
+  kernelPx: number,
+  tilePx: number,
+  order: number,
+  fftSize: number,
+): number {
+  const line = fftSize * Math.log2(fftSize);
+  const nodes = (order + 1) ** 2;
+  const tile = (order + 1) * tilePx + (nodes * fftSize) / 2;
+  const back = fftSize / 2 + tilePx + kernelPx;
+  const spectra = order ** 2 * (kernelPx + fftSize / 2);
+  const { pitchUm, shortestNm, fNumber } = kernelSampling(setup.rig, setup.oversample, kernelPx);
+  const psfSide =
+    2 ** Math.ceil(Math.log2(Math.max(64, kernelPx * samplesPerPixel(pitchUm, shortestNm, fNumber))));
+  const psfs = (order ** 2 + probeCount(order)) / (isSymmetric(setup.rig) ? 4 : 1);
+  const psf =
+    psfs * setup.rig.camera.bands[setup.bandIndex].lines.length * 2 * psfSide ** 2 * Math.log2(psfSide);
+  return (line * (tile + back + spectra) + psf) / tilePx ** 2;
+}
+
+/** Tiles of the grid (of its upper left quadrant where the quadrants mirror each other) whose blend is measured. */
+export function tilesToCheck(grid: BlurGrid, isMirrored: boolean): [number, number][] {
+  const columns = isMirrored ? Math.ceil(grid.tilesX / 2) : grid.tilesX;
+  const rows = isMirrored ? Math.ceil(grid.tilesY / 2) : grid.tilesY;
+  const isInFrame = (tile: number, origin: number, size: number) =>
+    tileEdge(tile + 1, origin, grid.tilePx, size) > tileEdge(tile, origin, grid.tilePx, size);
+  const stride = Math.max(1, Math.ceil(Math.sqrt((columns * rows) / MOST_CHECKED_TILES)));
+  const isBorder = (tile: number, origin: number, size: number) =>
+    tileEdge(tile, origin, grid.tilePx, size) === -0.5;
+  const tiles: [number, number][] = [];
+  for (let y = 0; y < rows; y++) {
+    if (!isInFrame(y, grid.originY, grid.height)) continue;
+    for (let x = 0; x < columns; x++) {
+      if (!isInFrame(x, grid.originX, grid.width)) continue;
+      const onSpread = x % stride === 0 && y % stride === 0;
+      const onBorder = isBorder(x, grid.originX, grid.width) || isBorder(y, grid.originY, grid.height);
+      if (onSpread || onBorder) tiles.push([x, y]);
+    }
+  }
+  return tiles;
+}
+
+function shrinkTile(tilePx: number, order: number, error: number, tolerance: number): number {
+  const factor = ((0.95 * tolerance) / error) ** (1 / (order + 1));
+  return Math.max(1, Math.min(tilePx - 1, Math.floor(tilePx * factor)));
+}
+
+function frameOf(setup: BandSetup) {
+  return sensorFrame(setup.rig, setup.rig.camera.bands[setup.bandIndex], setup.oversample);
+}
+
+function largest(values: Float64Array): number {
+  return values.reduce((most, value) => Math.max(most, value), 0);
+}

@@ -1,0 +1,83 @@
+/** The pieces of work that worker threads do, as plain data that can be sent to them. */
+import type { Rig } from '../optics/rig.js';
+import type { BlurGrid } from './blur-grid.js';
+import type { TileSpan } from './certificate.js';
+
+/** Which band of which rig, on which grid of samples. */
+export interface BandSetup {
+  rig: Rig;
+  bandIndex: number;
+  oversample: number;
+}
+
+/** A kind of work with its data. A job is cut into numbered tasks; the numbers a task yields stand under its number in the result. */
+export type Job =
+  /** Half the side, in fine steps, of the square that holds a PSF's light; a task a place. */
+  | { kind: 'extent'; setup: BandSetup; places: [number, number][]; tolerance: number }
+  /** Share of the light outside the kernel; a task a place. */
+  | { kind: 'outside'; setup: BandSetup; places: [number, number][]; kernelPx: number }
+  /** Blending error over single spans, kernels computed on the spot; a task a span. */
+  | { kind: 'spans'; setup: BandSetup; kernelPx: number; order: number; spans: TileSpan[] }
+  /** Kernels of a grid's nodes into shared memory; a task a slot. */
+  | {
+      kind: 'kernels';
+      setup: BandSetup;
+      grid: BlurGrid;
+      isMirrored: boolean;
+      kernelsAt: number;
+      count: number;
+    }
+  /** Blending error of a grid's tiles; a task a tile. */
+  | {
+      kind: 'tiles';
+      setup: BandSetup;
+      grid: BlurGrid;
+      isMirrored: boolean;
+      kernelsAt: number;
+      tiles: [number, number][];
+    }
+  /** Warp and illumination of a plane; a task some rows. */
+  | { kind: 'warp'; setup: BandSetup; sceneAt: number; outAt: number; rowsPerTask: number; count: number }
+  /** Blur of a plane, and of a plane of ones; a task a column of tiles. Columns of one job never write the same sample. */
+  | {
+      kind: 'blur';
+      grid: BlurGrid;
+      isMirrored: boolean;
+      kernelsAt: number;
+      sourceAt: number;
+      outAt: number;
+      flatAt: number;
+      columns: number[];
+    };
+
+/** Number of tasks of a job. */
+export function taskCount(job: Job): number {
+  switch (job.kind) {
+    case 'extent':
+    case 'outside':
+      return job.places.length;
+    case 'spans':
+      return job.spans.length;
+    case 'tiles':
+      return job.tiles.length;
+    case 'blur':
+      return job.columns.length;
+    case 'kernels':
+    case 'warp':
+      return job.count;
+  }
+}
+
+/** Indices of the control block that main thread and workers share. */
+export const CONTROL = { next: 0, done: 1, stop: 2, length: 3 } as const;
+
+/** What the main thread sends to a worker. */
+export interface JobMessage {
+  job: Job;
+  count: number;
+  control: Int32Array;
+  results: Float64Array;
+}
+
+/** What a worker answers when no task is left. */
+export type JobAnswer = { ok: true } | { ok: false; message: string; isRunError: boolean };
