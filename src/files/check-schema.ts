@@ -1,0 +1,208 @@
+/** Data against a schema: the faults that zod finds, told in the project's words with the place of each. */
+import type { z } from 'zod';
+import { type Fault, InputError } from '../errors.js';
+import { nearest } from './nearest.js';
+import type { CrossFault } from './schemas/cross-check.js';
+import { keyPath, type Path, type Source, valueAt } from './source.js';
+
+type Issue = z.core.$ZodIssue;
+
+/** Checks a source and fills in the defaults.
+ * @throws {InputError} every fault of the source and of its content, in the order of the lines
+ */
+export function checkSchema<Schema extends z.ZodType>(
+  schema: Schema,
+  source: Source & { isLost?(path: Path): boolean },
+): z.output<Schema> {
+  const result = schema.safeParse(source.value, { error: allowedWords });
+  const issues = result.success
+    ? []
+    : result.error.issues.flatMap((issue) => innermost(issue, [], source.value));
+  const known = issues.filter(({ path }) => source.isLost?.(path) !== true);
+  const faults = withoutEchoes(known.flatMap((issue) => describe(issue, source)));
+  if (faults.length > 0 || source.faults.length > 0)
+    throw new InputError(inOrder([...source.faults, ...faults]));
+  return result.data as z.output<Schema>;
+}
+
+/** A fault on its way, with what `withoutEchoes` needs to know. */
+interface Draft {
+  fault: Fault;
+  /** The missing key, or the key that was likely meant. */
+  missing?: string;
+  meant?: string;
+}
+
+/** What stands in the schema as `error` is the text of what is allowed; where nothing stands, zod's own data says it. */
+function allowedWords(issue: z.core.$ZodRawIssue): string {
+  return issue.code === 'invalid_value'
+    ? issue.values.map((value) => String(value)).join(', ')
+    : NOTHING_TO_SAY;
+}
+const NOTHING_TO_SAY = '-'; // zod takes an empty text for none
+
+/** Issues of unions are taken apart: where the value has the form of one of the choices, the issues of that choice count. */
+function innermost(issue: Issue, before: Path, data: unknown): Issue[] {
+  const path = [...before, ...issue.path];
+  if (issue.code === 'invalid_union') {
+    const value = valueAt(data, path);
+    const meant = issue.errors.filter((branch) => !branch.some((inner) => isOtherForm(inner, value)));
+    if (meant.length === 1) return meant[0].flatMap((inner) => innermost(inner, path, data));
+  }
+  return [{ ...issue, path }];
+}
+
+/** Whether an issue of a union's choice says that the value is of another kind altogether. */
+function isOtherForm(issue: Issue, value: unknown): boolean {
+  if (issue.path.length > 0) return false;
+  if (issue.code === 'invalid_type') return true;
+  return issue.code === 'invalid_value' && issue.values.every((choice) => typeof choice !== typeof value);
+}
+
+function describe(issue: Issue, source: Source): Draft[] {
+  const { path } = issue;
+  const value = valueAt(source.value, path);
+  const allowed = issue.message === NOTHING_TO_SAY ? undefined : issue.message;
+  switch (issue.code) {
+    case 'unrecognized_keys':
+      return issue.keys.map((key) =>
+        describeUnknownKey([...path, key], key, issue.message.split(', '), source),
+      );
+    case 'invalid_key': {
+      const words = {
+        message: 'is no fitting key',
+        found: String(path.at(-1)),
+        allowed: issue.issues[0]?.message,
+      };
+      return [{ fault: { ...source.place(path, 'key'), ...words } }];
+    }
+    case 'custom': {
+      const { message, advice, inKey, missing, ...rest } = issue.params as CrossFault;
+      const found = rest.found ?? (value === undefined || inKey ? undefined : describeValue(value));
+      const place = source.place(path, inKey ? 'key' : 'value');
+      const fault = { ...place, message, found, allowed: rest.allowed, advice };
+      return [missing ? { fault, missing: keyPath(path) } : { fault }];
+    }
+    default: {
+      const place = source.place(path, 'value');
+      if (value === undefined) {
+        return [{ fault: { ...place, message: 'is missing', allowed }, missing: keyPath(path) }];
+      }
+      const advice = adviceFor(issue, value);
+      return [
+        {
+          fault: {
+            ...place,
+            message: messageFor(issue, value),
+            found: describeValue(value),
+            allowed,
+            advice,
+          },
+        },
+      ];
+    }
+  }
+}
+
+function describeUnknownKey(path: Path, key: string, known: readonly string[], source: Source): Draft {
+  const near = nearest(key, known);
+  const fault = {
+    ...source.place(path, 'key'),
+    message: 'is no known key',
+    found: key,
+    allowed: known.join(', '),
+    advice: near === undefined ? undefined : `Did you mean '${near}'?`,
+  };
+  return near === undefined ? { fault } : { fault, meant: keyPath([...path.slice(0, -1), near]) };
+}
+
+function messageFor(issue: Issue, value: unknown): string {
+  switch (issue.code) {
+    case 'invalid_type':
+      if (value === null) return 'is empty';
+      return typeof value === 'number' && !Number.isFinite(value)
+        ? 'is not a finite number'
+        : `is not ${TYPE_WORDS[issue.expected] ?? issue.expected}`;
+    case 'too_small':
+      return SMALL_WORDS[issue.origin] ?? 'has too few entries';
+    case 'too_big':
+      return LARGE_WORDS[issue.origin] ?? 'has too many entries';
+    case 'invalid_value':
+      return typeof value === 'object' ? 'has the wrong form' : 'is none of the choices';
+    default:
+      return value === null ? 'is empty' : 'has the wrong form';
+  }
+}
+
+const SMALL_WORDS: Readonly<Record<string, string>> = {
+  number: 'is too small',
+  int: 'is too small',
+  string: 'is too short',
+};
+
+const LARGE_WORDS: Readonly<Record<string, string>> = {
+  number: 'is too large',
+  int: 'is too large',
+  string: 'is too long',
+};
+
+const TYPE_WORDS: Readonly<Record<string, string>> = {
+  number: 'a number',
+  int: 'a whole number',
+  string: 'a text',
+  boolean: 'true or false',
+  object: 'a mapping',
+  record: 'a mapping',
+  array: 'a list',
+  tuple: 'a list',
+};
+
+function adviceFor(issue: Issue, value: unknown): string | undefined {
+  if (typeof value !== 'string') return undefined;
+  if (issue.code === 'invalid_value') {
+    const near = nearest(value, issue.values.map(String));
+    return near === undefined ? undefined : `Did you mean '${near}'?`;
+  }
+  const wantsNumber =
+    issue.code === 'invalid_type' && (issue.expected === 'number' || issue.expected === 'int');
+  if (!wantsNumber) return undefined;
+  if (/^[+-]?\d+,\d+$/.test(value)) return 'Write the decimal mark as a point.';
+  if (/^[+-]?[\d.]+\s*[a-zA-Zµμ%°/]+$/.test(value))
+    return 'Write the number alone: the unit stands in the name of the key.';
+  return Number.isFinite(Number(value)) && value.trim() !== ''
+    ? 'Write the number without quotation marks.'
+    : undefined;
+}
+
+const MAX_FOUND_LENGTH = 60;
+
+/** A value as it is printed in a fault: short, in one line. */
+export function describeValue(value: unknown): string {
+  const keepNumbers = (_: string, inner: unknown) =>
+    typeof inner === 'number' && !Number.isFinite(inner) ? String(inner) : inner;
+  const text =
+    typeof value === 'object' && value !== null ? JSON.stringify(value, keepNumbers) : plainWord(value);
+  return text.length <= MAX_FOUND_LENGTH ? text : `${text.slice(0, MAX_FOUND_LENGTH - 1)}…`;
+}
+
+function plainWord(value: unknown): string {
+  if (value === null || value === undefined) return 'nothing';
+  return typeof value === 'string' ? JSON.stringify(value) : String(value);
+}
+
+/** A misspelt key makes two faults, an unknown key and a missing one: the second only repeats the first. */
+function withoutEchoes(drafts: readonly Draft[]): Fault[] {
+  const meant = new Set(drafts.map((draft) => draft.meant));
+  return drafts
+    .filter(({ missing }) => missing === undefined || !meant.has(missing))
+    .map(({ fault }) => fault);
+}
+
+/** By line within a file; files in the order in which their first fault came. */
+function inOrder(faults: readonly Fault[]): Fault[] {
+  const files = [...new Set(faults.map(({ file }) => file))];
+  const rank = ({ file }: Fault) => files.indexOf(file);
+  return [...faults].sort(
+    (a, b) => rank(a) - rank(b) || (a.line ?? 0) - (b.line ?? 0) || (a.column ?? 0) - (b.column ?? 0),
+  );
+}
