@@ -47,6 +47,11 @@ export class Arena {
     return new Float32Array(this.memory.buffer, address, count);
   }
 
+  /** 16-bit whole numbers at an address. */
+  shorts(address: number, count: number): Uint16Array {
+    return new Uint16Array(this.memory.buffer, address, count);
+  }
+
   /** Where the stack stands now, for `release`. */
   mark(): number {
     return this.#top;

@@ -1,4 +1,6 @@
 /** What a worker does for each kind of job. */
+import { developRows } from '../camera/develop.js';
+import { exposeRows } from '../camera/expose.js';
 import type { Arena } from './arena.js';
 import { tileEdge } from './blur-grid.js';
 import { blendError, blendErrorOfSpan, type TileSpan } from './certificate.js';
@@ -53,6 +55,9 @@ export function makeTaskRunner(arena: Arena): (job: Job) => RunTask {
         return tileChecker(sourceFor(job.setup, job.grid.kernelPx), nodeKernels(arena, job), job.tiles);
       case 'warp':
         return warper(arena, job);
+      case 'expose':
+      case 'develop':
+        return sensorRows(arena, job);
       case 'blur': {
         const { grid } = job;
         const blur = new TileBlur(grid);
@@ -107,6 +112,22 @@ function warper(arena: Arena, job: Extract<Job, { kind: 'warp' }>): RunTask {
   return (task) => {
     const start = task * job.rowsPerTask;
     warpRows(frame, tables, scene, out, start, Math.min(frame.height, start + job.rowsPerTask));
+    return 0;
+  };
+}
+
+function sensorRows(arena: Arena, job: Extract<Job, { kind: 'expose' | 'develop' }>): RunTask {
+  const { exposure, rowsPerTask } = job;
+  const pixels = exposure.width * exposure.height;
+  const raw = job.rawAt.map((address) => arena.shorts(address, pixels));
+  const planes = (job.kind === 'expose' ? job.lightAt : job.pictureAt).map((address) =>
+    arena.floats(address, pixels),
+  );
+  return (task) => {
+    const start = task * rowsPerTask;
+    const end = Math.min(exposure.height, start + rowsPerTask);
+    if (job.kind === 'expose') exposeRows(planes, exposure, start, end, raw);
+    else developRows(raw, exposure, start, end, planes);
     return 0;
   };
 }

@@ -1,4 +1,5 @@
 /** The pieces of work that worker threads do, as plain data that can be sent to them. */
+import type { Exposure } from '../camera/exposure.js';
 import type { Rig } from '../optics/rig.js';
 import type { BlurGrid } from './blur-grid.js';
 import type { TileSpan } from './certificate.js';
@@ -38,6 +39,24 @@ export type Job =
     }
   /** Warp and illumination of a plane; a task some rows. */
   | { kind: 'warp'; setup: BandSetup; sceneAt: number; outAt: number; rowsPerTask: number; count: number }
+  /** Raw numbers of the sensor from the light of all bands; a task some rows. */
+  | {
+      kind: 'expose';
+      exposure: Exposure;
+      lightAt: number[];
+      rawAt: number[];
+      rowsPerTask: number;
+      count: number;
+    }
+  /** The picture from the raw numbers; a task some rows. */
+  | {
+      kind: 'develop';
+      exposure: Exposure;
+      rawAt: number[];
+      pictureAt: number[];
+      rowsPerTask: number;
+      count: number;
+    }
   /** Blur of a plane, and of a plane of ones; a task a column of tiles. Columns of one job never write the same sample. */
   | {
       kind: 'blur';
@@ -64,6 +83,8 @@ export function taskCount(job: Job): number {
       return job.columns.length;
     case 'kernels':
     case 'warp':
+    case 'expose':
+    case 'develop':
       return job.count;
   }
 }

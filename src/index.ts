@@ -1,0 +1,21 @@
+/** The library's public face: everything that a command does can be called from code. */
+export { type Fault, formatFault, InputError, InterruptedError, RunError } from './errors.js';
+export { loadCameraPart, loadLensPart, loadRig, parseRig, type RigOverrides } from './files/load-rig.js';
+export { resultData } from './files/result-data.js';
+export type { Raster } from './imaging/raster.js';
+export { type RenderOptions, type RenderRecord, type RenderResult, render } from './jobs/render.js';
+export { type StartOptions, type StartRecord, start } from './jobs/start.js';
+export { type ZonesOptions, type ZonesReport, zones } from './jobs/zones.js';
+export type {
+  Band,
+  Camera,
+  Lens,
+  Mount,
+  ObjectScale,
+  RelativeIllumination,
+  Rig,
+  Sensor,
+  SpectralLine,
+  Waves,
+} from './optics/rig.js';
+export { VERSION } from './version.js';
