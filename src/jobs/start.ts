@@ -2,13 +2,14 @@
 import { mkdir, open, readdir, readFile, rm, stat } from 'node:fs/promises';
 import { dirname, join, relative, sep } from 'node:path';
 import { fileURLToPath } from 'node:url';
-import { type Fault, InputError } from '../errors.js';
+import { type Fault, InputError, InterruptedError } from '../errors.js';
 
 export interface StartOptions {
   /** The folder to fill; made where there is none. */
   folder: string;
   /** Default: the templates and schemas of this package. */
   sources?: StartSources;
+  signal?: AbortSignal;
 }
 
 export interface StartSources {
@@ -32,8 +33,13 @@ const PACKAGE_SOURCES: StartSources = {
 
 /** Fill a folder, or change nothing: files that are there stay as they are, and what was made is taken away when the rest cannot be.
  * @throws {InputError} for each file that is in the way, or where `folder` is a file
+ * @throws {InterruptedError} after `signal`
  */
-export async function start({ folder, sources = PACKAGE_SOURCES }: StartOptions): Promise<StartRecord> {
+export async function start({
+  folder,
+  sources = PACKAGE_SOURCES,
+  signal,
+}: StartOptions): Promise<StartRecord> {
   const pairs = [
     ...(await filesBelow(sources.templates)).map((name) => ({ name, from: join(sources.templates, name) })),
     ...(await filesBelow(sources.schemas)).map((name) => ({
@@ -47,8 +53,10 @@ export async function start({ folder, sources = PACKAGE_SOURCES }: StartOptions)
   );
   const made: string[] = [];
   try {
-    for (const { name, from } of pairs)
+    for (const { name, from } of pairs) {
+      if (signal?.aborted) throw new InterruptedError();
       await place(from, join(folder, name), relative(dirname(name), SCHEMA_FOLDER), made);
+    }
   } catch (error) {
     for (const path of made.reverse()) await rm(path, { recursive: true, force: true });
     throw error;

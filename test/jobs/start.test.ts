@@ -10,7 +10,7 @@ import {
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
-import { InputError } from '../../src/errors.js';
+import { InputError, InterruptedError } from '../../src/errors.js';
 import { start, withSchemaBeside } from '../../src/jobs/start.js';
 
 let base: string;
@@ -100,6 +100,21 @@ describe('start', () => {
     const folder = join(base, 'deep', 'hall');
     await expect(start({ folder, sources })).rejects.toMatchObject({ code: 'EEXIST' });
     expect(existsSync(join(base, 'deep'))).toBe(false);
+  });
+});
+
+describe('start that is interrupted', () => {
+  it('takes away what it made', async () => {
+    const folder = join(base, 'hall');
+    let asked = 0;
+    const signal = {
+      get aborted() {
+        return ++asked > 2;
+      },
+    } as AbortSignal;
+    await expect(start({ folder, sources, signal })).rejects.toThrow(InterruptedError);
+    expect(asked).toBe(3);
+    expect(existsSync(folder)).toBe(false);
   });
 });
 

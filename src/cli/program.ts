@@ -1,0 +1,63 @@
+/** The command line as a whole: its commands, and what every one of them does alike. */
+import { Command, CommanderError } from 'commander';
+import { VERSION } from '../version.js';
+import { GROUP, grouped } from './common-options.js';
+import { DEBUG_VARIABLE, describeFailure, EXIT } from './failure.js';
+import { renderCommand } from './render.js';
+import { startCommand } from './start.js';
+import { zonesCommand } from './zones.js';
+
+export function buildProgram(): Command {
+  const program = new Command('foreglass')
+    .description(
+      'Shows what a camera lens will do to a picture before the lens is bought, from its third-order aberrations.',
+    )
+    .version(VERSION, '--version', 'print the version')
+    .helpOption('-h, --help', 'print this help')
+    .helpCommand('help [COMMAND]', 'print the help of a command')
+    .usage('COMMAND ... --rig FILE')
+    .configureHelp({
+      subcommandTerm: (command) =>
+        [command.name(), ...command.registeredArguments.map((argument) => argument.name())].join(' '),
+    })
+    .addHelpText(
+      'after',
+      `
+Example:
+  foreglass start hall && cd hall
+  foreglass zones --rig packhouse.rig.yaml
+
+Exit status: 0 done, 1 done but the task is not met, 2 the input is wrong,
+3 the run failed, 130 interrupted.`,
+    );
+  for (const command of [startCommand(), renderCommand(), zonesCommand()]) {
+    program.addCommand(
+      command
+        .addHelpOption(grouped(GROUP.running, '-h, --help', 'print this help'))
+        .showHelpAfterError(`Try: foreglass ${command.name()} --help`)
+        .exitOverride(),
+    );
+  }
+  return program.showHelpAfterError('Try: foreglass --help').exitOverride();
+}
+
+/** Run one command line; what goes wrong is said on stderr.
+ * @param words the words behind the program's name
+ * @returns the exit status
+ */
+export async function run(words: readonly string[]): Promise<number> {
+  try {
+    await buildProgram().parseAsync(words, { from: 'user' });
+    return EXIT.done;
+  } catch (error) {
+    if (error instanceof CommanderError) return error.exitCode === 0 ? EXIT.done : EXIT.wrongInput; // it has spoken already
+    return fail(error);
+  }
+}
+
+/** Say what went wrong and give the exit status. */
+export function fail(error: unknown): number {
+  const { status, text } = describeFailure(error, Boolean(process.env[DEBUG_VARIABLE]));
+  process.stderr.write(`${text}\n`);
+  return status;
+}

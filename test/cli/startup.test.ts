@@ -1,0 +1,25 @@
+import { mkdtempSync, readdirSync, readFileSync, rmSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import { describe, expect, it } from 'vitest';
+import { runProgram } from './run-program.js';
+
+/** The files of this project and of its packages that a command line makes Node load: its coverage report lists every script. */
+async function filesLoadedBy(words: readonly string[]): Promise<string[]> {
+  const folder = mkdtempSync(join(tmpdir(), 'startup-'));
+  try {
+    await runProgram(words, { env: { NODE_V8_COVERAGE: folder } });
+    const reports = readdirSync(folder).map((name) => JSON.parse(readFileSync(join(folder, name), 'utf8')));
+    const urls = reports.flatMap(({ result }) => result.map(({ url }: { url: string }) => url));
+    return urls.flatMap((url) => /\/(node_modules\/[^/]+|dist\/\w+)/.exec(url)?.[1] ?? []);
+  } finally {
+    rmSync(folder, { recursive: true, force: true });
+  }
+}
+
+describe('start-up', () => {
+  it('loads the command line alone for the help, so that it comes at once', async () => {
+    const loaded = new Set(await filesLoadedBy(['render', '--help']));
+    expect([...loaded].sort()).toEqual(['dist/cli', 'dist/errors', 'dist/version', 'node_modules/commander']);
+  });
+});
