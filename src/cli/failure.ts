@@ -46,7 +46,7 @@ export function describeFailure(error: unknown, withStack = false): Failure {
   if (error instanceof InterruptedError || (error instanceof Error && error.name === 'AbortError')) {
     return { status: EXIT.interrupted, text: 'interrupted' };
   }
-  if (error instanceof RunError) return { status: EXIT.failedRun, text: `error: ${error.message}` };
+  if (error instanceof RunError) return { status: EXIT.failedRun, text: `error: ${sentence(error.message)}` };
   const { code, path } = Object(error) as { code?: string; path?: string };
   const where = path === undefined ? '' : `${path}: `;
   if (code !== undefined && code in MENDABLE) {
@@ -59,6 +59,10 @@ export function describeFailure(error: unknown, withStack = false): Failure {
     return { status: EXIT.failedRun, text: `error: ${OUT_OF_MEANS.ENOMEM}.` };
   }
   return { status: EXIT.failedRun, text: describeBug(error, withStack) };
+}
+
+function sentence(text: string): string {
+  return /[.!?]$/.test(text) ? text : `${text}.`;
 }
 
 /** V8 has no class for it: an array that cannot be had is a RangeError with one of these texts. */

@@ -50,9 +50,20 @@ export async function run(words: readonly string[]): Promise<number> {
     await buildProgram().parseAsync(words, { from: 'user' });
     return EXIT.done;
   } catch (error) {
-    if (error instanceof CommanderError) return error.exitCode === 0 ? EXIT.done : EXIT.wrongInput; // it has spoken already
+    if (error instanceof CommanderError) {
+      if (error.code === 'commander.missingArgument') process.stderr.write(swallowedHint(words));
+      return error.exitCode === 0 ? EXIT.done : EXIT.wrongInput; // its message is out already
+    }
     return fail(error);
   }
+}
+
+/** `render --json scene.png` gives the scene to the option before it: said where an argument is missing for that reason. */
+function swallowedHint(words: readonly string[]): string {
+  const option = ['--json', '--csv'].find((name) => words.includes(name));
+  const next = option && words[words.indexOf(option) + 1];
+  if (next === undefined || next.startsWith('-')) return '';
+  return `'${next}' was read as the file of ${option}: put ${option} behind the other words to have it on stdout.\n`;
 }
 
 /** Say what went wrong and give the exit status. */

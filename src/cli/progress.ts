@@ -26,6 +26,7 @@ export async function openProgressBar(
     barIncompleteChar: '.',
     barsize: 32,
     clearOnComplete: true,
+    linewrap: true, // else the terminal is left without line breaks where the program ends at once
     gracefulExit: false, // its own handler of Ctrl-C would end the program before the job has tidied up
     stream,
   });

@@ -8,6 +8,7 @@ import type { Lens, Rig, SpectralTable, Waves } from '../optics/rig.js';
  */
 export function resultData(value: unknown): unknown {
   if (Array.isArray(value)) return value.map(resultData);
+  if (value === 0) return 0; // YAML would tell -0 from 0
   if (typeof value !== 'object' || value === null) return value;
   if (isRig(value)) return rigData(value);
   return Object.fromEntries(

@@ -23,13 +23,13 @@ interface Section {
 /** One row a zone (a field point in one band), the two directions side by side, units in the head; within 80 columns. */
 export function zoneTable(report: ZonesReport, paint: Paint = PLAIN): string {
   const { zones } = report;
-  const title = `${report.rig}: f/${significant(report.fNumber, 3)}, ${report.model} model`;
+  const head = `${report.rig}: f/${significant(report.fNumber, 3)}, ${report.model} model`;
   const sections = [cameraSection(zones), lensSection(zones), otherSection(zones)];
   return [
-    ...wrapText(title, WIDTH).map((line) => paint.strong(line)),
+    ...wrapText(head, WIDTH).map((line) => paint.strong(line)),
     'along: modulation along the radius (tangential); across: across it (sagittal)',
     ...sections.flatMap(({ title, lead, groups }) =>
-      layOutColumns(lead, groups, WIDTH, paint).flatMap((table) => ['', title, ...table]),
+      layOutColumns(lead, groups, WIDTH, paint).flatMap((table) => ['', paint.strong(title), ...table]),
     ),
     '',
     ...wrapText(CAUTION, WIDTH).map((line) => paint.faint(line)),

@@ -27,7 +27,8 @@ describe('describeFailure', () => {
   });
 
   it.each([
-    [new RunError('the disk is full'), 3, 'error: the disk is full'],
+    [new RunError('the disk is full'), 3, 'error: the disk is full.'],
+    [new RunError('no memory. Use less.'), 3, 'error: no memory. Use less.'],
     [new InterruptedError(), 130, 'interrupted'],
     [new DOMException('stop', 'AbortError'), 130, 'interrupted'],
     [systemError('ENOENT', 'x.png'), 2, 'error: x.png: no such file or folder.'],

@@ -1,16 +1,16 @@
 import { readFileSync } from 'node:fs';
 import { describe, expect, it } from 'vitest';
-import { runProgram } from './run-program.js';
+import { CHILD_TIMEOUT_MS, runInside, runProgram } from './run-program.js';
 
 const VERSION = JSON.parse(readFileSync(new URL('../../package.json', import.meta.url), 'utf8')).version;
 
 describe('foreglass', () => {
   it('prints its version', async () => {
-    expect(await runProgram(['--version'])).toEqual({ status: 0, stdout: `${VERSION}\n`, stderr: '' });
+    expect(await runInside(['--version'])).toEqual({ status: 0, stdout: `${VERSION}\n`, stderr: '' });
   });
 
   it('without a command prints the help on stderr', async () => {
-    const { status, stdout, stderr } = await runProgram([]);
+    const { status, stdout, stderr } = await runInside([]);
     expect({ status, stdout }).toEqual({ status: 2, stdout: '' });
     expect(stderr).toMatch(/^Usage: foreglass COMMAND/);
   });
@@ -18,7 +18,7 @@ describe('foreglass', () => {
   it.each([['start'], ['render'], ['zones']])(
     'has a help for %s with units, defaults, an example and the common options',
     async (command) => {
-      const { status, stdout, stderr } = await runProgram([command, '--help']);
+      const { status, stdout, stderr } = await runInside([command, '--help']);
       expect({ status, stderr }).toEqual({ status: 0, stderr: '' });
       expect(stdout).toMatch(new RegExp(`Example:\n  foreglass ${command} `));
       for (const option of ['--threads <number>', '--json [file]', '--quiet', '-h, --help'])
@@ -47,11 +47,17 @@ describe('foreglass', () => {
       "error: too many arguments for 'zones'. Expected 0 arguments but got 1.",
     ],
   ])('refuses %s with status 2 and a hint', async (_, words, message) => {
-    const { status, stdout, stderr } = await runProgram(words);
+    const { status, stdout, stderr } = await runInside(words);
     expect({ status, stdout }).toEqual({ status: 2, stdout: '' });
     expect(stderr.startsWith(`${message}\n`)).toBe(true);
     expect(stderr).toContain('--help');
     expect(stderr).not.toContain('    at ');
+  });
+
+  it('says so where an option took the argument that is missing', async () => {
+    const { status, stderr } = await runInside(['render', '--json', 'scene.png', '--rig', 'a']);
+    expect(status).toBe(2);
+    expect(stderr).toContain("'scene.png' was read as the file of --json: put --json behind the other words");
   });
 
   it('tells all wrong options of a command at once', async () => {
@@ -69,7 +75,7 @@ describe('foreglass', () => {
       '--seed',
       '-1',
     ];
-    const { status, stderr } = await runProgram([...words, '--tolerance', '0', '--linear']);
+    const { status, stderr } = await runInside([...words, '--tolerance', '0', '--linear']);
     expect(status).toBe(2);
     expect(stderr.trimEnd().split('\n')).toEqual([
       "error: --f-number: not a number, found 'f/4'. Allowed: numbers above 0.",
@@ -82,9 +88,18 @@ describe('foreglass', () => {
       'error: --linear: goes with --out only; --raw is linear by itself.',
     ]);
   });
+});
+
+describe('the process', { timeout: CHILD_TIMEOUT_MS }, () => {
+  it('ends with the status of the run', async () => {
+    expect(await runProgram(['--version'])).toEqual({ status: 0, stdout: `${VERSION}\n`, stderr: '' });
+    const { status, stdout, stderr } = await runProgram(['zoness']);
+    expect({ status, stdout }).toEqual({ status: 2, stdout: '' });
+    expect(stderr).toMatch(/^error: unknown command 'zoness'\n/);
+  });
 
   it('ends quietly when nobody reads any more', async () => {
-    const { status, stderr } = await runProgram(['render', '--help'], {}, (child) => child.stdout?.destroy());
+    const { status, stderr } = await runProgram(['render', '--help'], {}, (child) => child.stdout.destroy());
     expect({ status, stderr }).toEqual({ status: 0, stderr: '' });
   });
 });

@@ -2,7 +2,7 @@ import { mkdtempSync, readdirSync, readFileSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { describe, expect, it } from 'vitest';
-import { runProgram } from './run-program.js';
+import { CHILD_TIMEOUT_MS, runProgram } from './run-program.js';
 
 /** The files of this project and of its packages that a command line makes Node load: its coverage report lists every script. */
 async function filesLoadedBy(words: readonly string[]): Promise<string[]> {
@@ -17,7 +17,7 @@ async function filesLoadedBy(words: readonly string[]): Promise<string[]> {
   }
 }
 
-describe('start-up', () => {
+describe('start-up', { timeout: CHILD_TIMEOUT_MS }, () => {
   it('loads the command line alone for the help, so that it comes at once', async () => {
     const loaded = new Set(await filesLoadedBy(['render', '--help']));
     expect([...loaded].sort()).toEqual(['dist/cli', 'dist/errors', 'dist/version', 'node_modules/commander']);

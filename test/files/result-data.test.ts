@@ -123,6 +123,10 @@ describe('resultData', () => {
     });
   });
 
+  it('has no minus in front of nothing', () => {
+    expect(resultData({ distortionPercent: -0, all: [-0] })).toEqual({ distortion_percent: 0, all: [0] });
+  });
+
   it('leaves the name of a rig as it is', () => {
     expect(resultData({ rig: '12 mm, packing hall' })).toEqual({ rig: '12 mm, packing hall' });
   });
