@@ -28,8 +28,9 @@ export function checkSchema<Schema extends z.ZodType>(
 /** A fault on its way, with what `withoutEchoes` needs to know. */
 interface Draft {
   fault: Fault;
-  /** The missing key, or the key that was likely meant. */
-  missing?: string;
+  /** Paths of keys that are missing. */
+  missing?: readonly string[];
+  /** Path of the key that was likely meant by an unknown one. */
   meant?: string;
 }
 
@@ -47,7 +48,13 @@ function innermost(issue: Issue, before: Path, data: unknown): Issue[] {
   if (issue.code === 'invalid_union') {
     const value = valueAt(data, path);
     const meant = issue.errors.filter((branch) => !branch.some((inner) => isOtherForm(inner, value)));
-    if (meant.length === 1) return meant[0].flatMap((inner) => innermost(inner, path, data));
+    if (meant.length === 1) {
+      const [first] = meant[0];
+      // a word that is none of the choices: the union's text tells of all that is allowed
+      if (first.code === 'invalid_value' && first.path.length === 0)
+        return [{ ...first, path, message: issue.message }];
+      return meant[0].flatMap((inner) => innermost(inner, path, data));
+    }
   }
   return [{ ...issue, path }];
 }
@@ -77,29 +84,20 @@ function describe(issue: Issue, source: Source): Draft[] {
       return [{ fault: { ...source.place(path, 'key'), ...words } }];
     }
     case 'custom': {
-      const { message, advice, inKey, missing, ...rest } = issue.params as CrossFault;
+      const { message, advice, inKey, missing, lacks, ...rest } = issue.params as CrossFault;
       const found = rest.found ?? (value === undefined || inKey ? undefined : describeValue(value));
       const place = source.place(path, inKey ? 'key' : 'value');
       const fault = { ...place, message, found, allowed: rest.allowed, advice };
-      return [missing ? { fault, missing: keyPath(path) } : { fault }];
+      return [{ fault, missing: missing ? [keyPath(path)] : lacks?.map((key) => keyPath([...path, key])) }];
     }
     default: {
       const place = source.place(path, 'value');
       if (value === undefined) {
-        return [{ fault: { ...place, message: 'is missing', allowed }, missing: keyPath(path) }];
+        return [{ fault: { ...place, message: 'is missing', allowed }, missing: [keyPath(path)] }];
       }
+      const found = value === null ? undefined : describeValue(value);
       const advice = adviceFor(issue, value);
-      return [
-        {
-          fault: {
-            ...place,
-            message: messageFor(issue, value),
-            found: describeValue(value),
-            allowed,
-            advice,
-          },
-        },
-      ];
+      return [{ fault: { ...place, message: messageFor(issue, value), found, allowed, advice } }];
     }
   }
 }
@@ -159,10 +157,8 @@ const TYPE_WORDS: Readonly<Record<string, string>> = {
 
 function adviceFor(issue: Issue, value: unknown): string | undefined {
   if (typeof value !== 'string') return undefined;
-  if (issue.code === 'invalid_value') {
-    const near = nearest(value, issue.values.map(String));
-    return near === undefined ? undefined : `Did you mean '${near}'?`;
-  }
+  const near = nearest(value, choicesOf(issue));
+  if (near !== undefined) return `Did you mean '${near}'?`;
   const wantsNumber =
     issue.code === 'invalid_type' && (issue.expected === 'number' || issue.expected === 'int');
   if (!wantsNumber) return undefined;
@@ -172,6 +168,17 @@ function adviceFor(issue: Issue, value: unknown): string | undefined {
   return Number.isFinite(Number(value)) && value.trim() !== ''
     ? 'Write the number without quotation marks.'
     : undefined;
+}
+
+/** The words that an issue, or a choice of a union, would have taken. */
+function choicesOf(issue: Issue): string[] {
+  if (issue.code === 'invalid_value') return issue.values.filter((word) => typeof word === 'string');
+  if (issue.code === 'invalid_union')
+    return issue.errors
+      .flat()
+      .filter(({ path }) => path.length === 0)
+      .flatMap(choicesOf);
+  return [];
 }
 
 const MAX_FOUND_LENGTH = 60;
@@ -194,7 +201,7 @@ function plainWord(value: unknown): string {
 function withoutEchoes(drafts: readonly Draft[]): Fault[] {
   const meant = new Set(drafts.map((draft) => draft.meant));
   return drafts
-    .filter(({ missing }) => missing === undefined || !meant.has(missing))
+    .filter(({ missing = [] }) => !missing.some((key) => meant.has(key)))
     .map(({ fault }) => fault);
 }
 

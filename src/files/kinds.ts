@@ -6,14 +6,7 @@ import type { Source } from './source.js';
 /** Keys by which a file of each kind is known. */
 const MARKS = {
   rig: ['lens', 'camera', 'mount'],
-  lens: [
-    'waves',
-    'prescription',
-    'relative_illumination',
-    'focal_length_mm',
-    'full_field_mm',
-    'distortion_percent',
-  ],
+  lens: ['waves', 'prescription', 'distortion_percent', 'colour', 'relative_illumination', 'focal_length_mm'],
   camera: ['pixels', 'pixel_pitch_um', 'bands_nm'],
   task: ['require'],
   recipe: ['scenes', 'vary', 'count'],

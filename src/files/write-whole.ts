@@ -154,8 +154,7 @@ function stageForDevice(path: string, device: string): StagedFile {
 }
 
 function isDevice(target: string): boolean {
-  const found = fs.statSync(target, { throwIfNoEntry: false });
-  return found !== undefined && !found.isFile() && !found.isDirectory();
+  return fs.existsSync(target) && !fs.statSync(target).isFile(); // folders are refused before
 }
 
 /** Behind a symbolic link stands the file that is meant. */
@@ -169,19 +168,27 @@ function finalTarget(path: string): string {
 
 function assertNamesFile(path: string): void {
   if (path === '') throw new InputError({ message: 'no output file is named' });
-  const found = fs.statSync(path, { throwIfNoEntry: false });
-  if (found?.isDirectory() || /[/\\]$/.test(path)) {
-    const advice = `Name a file in it, such as '${join(path, 'output.png')}'.`;
-    throw new InputError({ file: path, message: 'is a folder, not a file', advice });
-  }
   const folder = dirname(path);
-  const holder = fs.statSync(folder, { throwIfNoEntry: false });
-  if (holder === undefined) {
+  if (!fs.existsSync(folder)) {
     const message = `the folder '${folder}' does not exist`;
     throw new InputError({ file: path, message, advice: 'Make it first, or choose another.' });
   }
-  if (!holder.isDirectory())
+  if (!fs.statSync(folder).isDirectory()) {
     throw new InputError({ file: path, message: `'${folder}' is a file, not a folder` });
+  }
+  if (/[/\\]$/.test(path) || statOf(path)?.isDirectory()) {
+    const advice = `Name a file in it, such as '${join(path, 'output.png')}'.`;
+    throw new InputError({ file: path, message: 'is a folder, not a file', advice });
+  }
+}
+
+/** What is there under a name, if anything. */
+function statOf(path: string): fs.Stats | undefined {
+  try {
+    return fs.statSync(path, { throwIfNoEntry: false });
+  } catch (error) {
+    throw writeFailure(path, error); // a name that is too long, for one
+  }
 }
 
 function assertDistinct(paths: readonly string[]): void {

@@ -42,7 +42,7 @@ export function parseSource(text: string, file?: string): Source {
     lineCounter: lines,
     prettyErrors: false,
     uniqueKeys: false, // YamlSource knows the path of a key that stands twice, the parser only its offset
-    logLevel: 'silent',
+    logLevel: 'error',
   });
   return new YamlSource(document, lines, file);
 }
@@ -69,19 +69,20 @@ class YamlSource implements Source {
 
   place(path: Path, part: 'key' | 'value'): Place {
     let node: Node | null = this.#root;
-    let key: Scalar | undefined; // key of `node`
+    let key: Scalar | undefined; // key of `node`, where it has one
+    let holder: Node = this.#root; // the last thing on the way that is written down
     for (const step of path) {
       const child = childOf(isAlias(node) ? (node.resolve(this.#document) ?? null) : node, step);
       if (child === undefined) {
         part = 'key'; // not there: what should hold it stands for it
         break;
       }
-      node = child.value;
-      key = child.key ?? key;
+      holder = key ?? node ?? holder;
+      ({ value: node, key } = child);
     }
-    const isEmpty = node === null || node.range![0] === node.range![1];
-    const there: Node | null | undefined = (part === 'key' || isEmpty) && key !== undefined ? key : node;
-    return { ...this.#at(there?.range?.[0] ?? 0), key: keyPath(path) };
+    const isWritten = node !== null && node.range![0] < node.range![1];
+    const there = (part === 'key' ? key : undefined) ?? (isWritten ? node : key) ?? holder;
+    return { ...this.#at(there!.range![0]), key: keyPath(path) };
   }
 
   #at(offset: number): Place {

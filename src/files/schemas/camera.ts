@@ -17,6 +17,8 @@ const band = (what: string) =>
     .describe(`${what} Unit: nm.`)
     .optional();
 
+const COLOUR_MOSAICS = ['rggb', 'bggr', 'grbg', 'gbrg'] as const;
+const BAND_WORDS = 'mono alone, or red, green and blue';
 const COLOUR_BANDS = ['red', 'green', 'blue'] as const;
 
 const bands = crossChecked(
@@ -32,17 +34,22 @@ const bands = crossChecked(
       for (const name of colours) {
         report([name], {
           message: 'stands beside mono',
-          allowed: 'mono alone, or red, green and blue',
+          allowed: BAND_WORDS,
           inKey: true,
         });
       }
     } else if (colours.length === 0) {
-      report([], { message: 'names no band', allowed: 'mono alone, or red, green and blue', inKey: true });
+      report([], {
+        message: 'names no band',
+        allowed: BAND_WORDS,
+        inKey: true,
+        lacks: ['mono', ...COLOUR_BANDS],
+      });
     } else {
       for (const name of COLOUR_BANDS.filter((band) => !colours.includes(band))) {
         report([name], {
           message: 'is missing',
-          allowed: 'mono alone, or red, green and blue',
+          allowed: BAND_WORDS,
           missing: true,
         });
       }
@@ -94,20 +101,15 @@ export const cameraPart = crossChecked(
     ).default(1),
     bands_nm: bands,
     mosaic: choice(
-      ['none', 'rggb', 'bggr', 'grbg', 'gbrg'],
+      ['none', ...COLOUR_MOSAICS],
       'Colour filters of the first two by two pixels, row by row.',
     ).default('none'),
     sensor: sensor.optional(),
   }),
   (camera, report) => {
     const { mosaic, bands_nm } = camera;
-    if (
-      mosaic === 'none' ||
-      typeof mosaic !== 'string' ||
-      !isMapping(bands_nm) ||
-      bands_nm.mono === undefined
-    )
-      return;
+    if (!isMapping(bands_nm) || bands_nm.mono === undefined) return;
+    if (!COLOUR_MOSAICS.some((word) => word === mosaic)) return;
     const advice = 'State red, green and blue in bands_nm, or write mosaic: none.';
     report(['mosaic'], {
       message: 'needs the bands red, green and blue',

@@ -11,6 +11,8 @@ export interface CrossFault {
   inKey?: boolean;
   /** The key is not there. */
   missing?: boolean;
+  /** The mapping at the path has none of these keys. */
+  lacks?: readonly string[];
 }
 
 export type Report = (path: readonly PropertyKey[], fault: CrossFault) => void;
@@ -50,7 +52,7 @@ export function checkOneOf(
   value: Unchecked,
   keys: readonly string[],
   report: Report,
-  options: { needed?: boolean; advice?: string } = {},
+  options: { needed?: boolean } = {},
 ): void {
   const there = keys.filter((key) => value[key] !== undefined);
   const allowed = `one of ${keys.join(', ')}`;
@@ -58,10 +60,7 @@ export function checkOneOf(
     report([key], { message: `stands beside ${there[0]}, which says the same thing`, allowed, inKey: true });
   }
   if (there.length === 0 && options.needed) {
-    report([], {
-      message: `lacks ${keys.length === 2 ? `${keys[0]} or ${keys[1]}` : allowed}`,
-      inKey: true,
-      advice: options.advice,
-    });
+    const message = `lacks ${keys.length === 2 ? keys.join(' or ') : allowed}`;
+    report([], { message, inKey: true, lacks: keys });
   }
 }

@@ -33,7 +33,7 @@ const glassData = crossChecked(
     sellmeier: sellmeier.optional(),
   }),
   (glass, report) => {
-    checkOneOf(glass, ['n', 'nd', 'sellmeier'], report, { needed: true });
+    checkOneOf(glass, ['n', 'nd', 'sellmeier'], report, { needed: glass.vd === undefined });
     if (glass.nd !== undefined && glass.vd === undefined)
       report(['vd'], { message: 'is missing beside nd', missing: true });
     if (glass.nd === undefined && glass.vd !== undefined)
@@ -76,7 +76,7 @@ const surface = crossChecked(
     stop: flag('The aperture stop lies here.').optional(),
     semi_diameter_mm: positive('Half of the free diameter.').optional(),
     conic: number({ min: -1e6, max: 1e6 }, 'Conic constant: 0 sphere, -1 paraboloid.').optional(),
-    aspheric_mm: mapping(asphericTerms).describe('Even aspheric terms of the sag.').optional(),
+    aspheric_mm: mapping(asphericTerms).describe('Even aspheric terms of the sag, in mm.').optional(),
   }),
   (value, report) => {
     if (value.radius_mm === 0)
@@ -99,7 +99,7 @@ export const prescriptionFile = crossChecked(
     wavelength_nm: wavelengthNm
       .describe('The wavelength in which waves are counted. Unit: nm.')
       .default(587.5618),
-    surfaces: list(surface, 'a list of surfaces, light from the left'),
+    surfaces: list(surface, 'a list of surfaces, light from the left').describe('Light comes from the left.'),
     object_distance_mm: z
       .union([length('Distance of the object from the first surface.'), infinity], {
         error: 'a number other than 0 (mm), or infinity',
@@ -149,7 +149,7 @@ function checkObject(prescription: Unchecked, report: Report): void {
 
 function checkSurfaces(surfaces: readonly unknown[], report: Report): void {
   const stops = surfaces.flatMap((one, index) => (isMapping(one) && one.stop !== undefined ? [index] : []));
-  if (stops.length === 0) {
+  if (stops.length === 0 && surfaces.length > 0) {
     report(['surfaces'], {
       message: 'has no stop',
       found: `${surfaces.length} surfaces`,

@@ -48,7 +48,7 @@ const vary = crossChecked(
   (value, report) => {
     for (const key of Object.keys(value)) {
       if (KEYS.some((known) => matches(key, known))) continue;
-      const near = nearest(key, KEYS);
+      const near = nearestKey(key);
       report([key], {
         message: 'is no number of a rig',
         found: key,
@@ -60,7 +60,7 @@ const vary = crossChecked(
   },
 ).describe('Numbers of the rig, by path, with the distribution of each.');
 
-const WITH_QUALITY = ['jpeg', 'webp'];
+const WITHOUT_QUALITY = ['png', 'tiff'];
 
 const output = crossChecked(
   mapping({
@@ -76,10 +76,10 @@ const output = crossChecked(
     labels: choice(['coco', 'none'], 'Format of the labels.').default('coco'),
   }),
   (value, report) => {
-    if (value.quality === undefined || WITH_QUALITY.includes(String(value.format))) return;
+    if (value.quality === undefined || !WITHOUT_QUALITY.includes(String(value.format))) return;
     report(['quality'], {
       message: `does not fit the format ${String(value.format)}`,
-      allowed: `beside ${WITH_QUALITY.join(' or ')}`,
+      allowed: 'beside jpeg or webp',
       inKey: true,
     });
   },
@@ -114,6 +114,15 @@ function matches(key: string, known: string): boolean {
     const stem = path.slice(0, -1);
     return key.startsWith(stem) && /^\d+(\.\d+)?$/.test(key.slice(stem.length));
   });
+}
+
+/** The nearest key of the same mapping, or where there is no such mapping, the nearest of all. */
+function nearestKey(key: string): string | undefined {
+  const stem = key.slice(0, key.lastIndexOf('.') + 1);
+  const siblings = KEYS.filter((known) => known.startsWith(stem)).map((known) => known.slice(stem.length));
+  if (stem === '' || siblings.length === 0) return nearest(key, KEYS);
+  const near = nearest(key.slice(stem.length), siblings);
+  return near === undefined ? undefined : `${stem}${near}`;
 }
 
 function checkRises(value: Unchecked, key: string, report: Report): void {

@@ -14,12 +14,16 @@ const mount = mountPart.prefault({});
 
 /** The file as people write it: a part may be the name of another file. */
 export const rigFile = mapping({
-  lens: z.union([fileName('A file that holds the lens.'), lensPart], {
-    error: 'a lens, or the name of a file that holds one',
-  }),
-  camera: z.union([fileName('A file that holds the camera.'), cameraPart], {
-    error: 'a camera, or the name of a file that holds one',
-  }),
+  lens: z
+    .union([fileName('A file that holds the lens.'), lensPart], {
+      error: 'a lens, or the name of a file that holds one',
+    })
+    .describe('The lens, or the name of a file that holds one.'),
+  camera: z
+    .union([fileName('A file that holds the camera.'), cameraPart], {
+      error: 'a camera, or the name of a file that holds one',
+    })
+    .describe('The camera, or the name of a file that holds one.'),
   mount,
 }).meta(about);
 

@@ -81,8 +81,8 @@ const rule = crossChecked(
       const advice = `Begin a list entry of its own: - ${name}: ...`;
       report([name], { message: `stands in one list entry with ${there[0]}`, advice, inKey: true });
     }
-    if (Object.keys(value).length === 0) {
-      report([], { message: 'is no rule', allowed: `one of ${RULE_NAMES.join(', ')}` });
+    if (there.length === 0) {
+      report([], { message: 'is no rule', allowed: `one of ${RULE_NAMES.join(', ')}`, lacks: RULE_NAMES });
     }
   },
 ).meta({ description: 'One rule.', minProperties: 1, maxProperties: 1 });
