@@ -10,10 +10,11 @@ import {
   readThreads,
   rigOptions,
 } from './common-options.js';
+import { checkOutputs, fileDestination, readDestination } from './destinations.js';
 import { interruptible } from './interrupt.js';
 import { OptionValues } from './option-values.js';
+import { deliver, print, warn } from './output.js';
 import { openProgressBar } from './progress.js';
-import { deliver, fileOf, print, readDestination, refuseClashes, refuseUnwritable, warn } from './results.js';
 
 interface RenderTexts extends RigTexts, CommonTexts {
   out?: string;
@@ -119,14 +120,16 @@ export function renderCommand(): Command {
         threads: readThreads(values, texts),
       };
       refuseNoPicture(values, texts);
-      const outputs = {
-        '--out': options.out,
-        '--raw': options.raw,
-        '--record': options.recordFile,
-        '--json': fileOf(json),
-      };
-      refuseClashes(values, { SCENE: scene, '--rig': rigFile }, outputs);
-      await refuseUnwritable(values, outputs);
+      await checkOutputs(
+        values,
+        { SCENE: scene, '--rig': rigFile },
+        {
+          '--out': fileDestination(options.out),
+          '--raw': fileDestination(options.raw),
+          '--record': fileDestination(options.recordFile),
+          '--json': json,
+        },
+      );
       values.check();
 
       const { record } = await interruptible(async (signal) => {

@@ -1,9 +1,10 @@
 /** `start`: a folder to begin from. */
 import { Command } from 'commander';
 import { type CommonTexts, commonOptions, readThreads } from './common-options.js';
+import { checkOutputs, readDestination } from './destinations.js';
 import { interruptible } from './interrupt.js';
 import { OptionValues } from './option-values.js';
-import { deliver, fileOf, print, readDestination, refuseUnwritable } from './results.js';
+import { deliver, print } from './output.js';
 
 export function startCommand(): Command {
   const command = new Command('start')
@@ -22,7 +23,7 @@ export function startCommand(): Command {
       values.path('FOLDER', folder);
       readThreads(values, texts);
       const json = readDestination(values, '--json', texts.json);
-      await refuseUnwritable(values, { '--json': fileOf(json) });
+      await checkOutputs(values, {}, { '--json': json });
       values.check();
 
       const { start } = await import('../jobs/start.js');

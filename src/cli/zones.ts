@@ -10,20 +10,10 @@ import {
   readThreads,
   rigOptions,
 } from './common-options.js';
+import { checkOutputs, readDestination } from './destinations.js';
 import { endOnInterrupt } from './interrupt.js';
 import { OptionValues } from './option-values.js';
-import {
-  deliver,
-  deliverText,
-  fileOf,
-  paintFor,
-  print,
-  readDestination,
-  refuseClashes,
-  refuseTwoOnStdout,
-  refuseUnwritable,
-  warn,
-} from './results.js';
+import { deliver, deliverText, paintFor, print, warn } from './output.js';
 
 interface ZonesTexts extends RigTexts, CommonTexts {
   fields?: string;
@@ -82,10 +72,7 @@ export function zonesCommand(): Command {
       readThreads(values, texts);
       const json = readDestination(values, '--json', texts.json);
       const csv = readDestination(values, '--csv', texts.csv);
-      refuseTwoOnStdout(values, { '--json': json, '--csv': csv });
-      const outputs = { '--json': fileOf(json), '--csv': fileOf(csv) };
-      refuseClashes(values, { '--rig': rigFile }, outputs);
-      await refuseUnwritable(values, outputs);
+      await checkOutputs(values, { '--rig': rigFile }, { '--json': json, '--csv': csv });
       values.check();
 
       const [{ loadRig }, { zones }] = await Promise.all([
