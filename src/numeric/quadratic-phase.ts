@@ -25,8 +25,8 @@ export function quadraticPhaseIntegral(psi: number, alpha: number, beta: number,
     const l = (0.5 * b) / r;
     const inside = l < r;
     fresnelTail(l + r);
-    let re = -(Math.cos(p + a + b) * tailRe - Math.sin(p + a + b) * tailIm);
-    let im = -(Math.sin(p + a + b) * tailRe + Math.cos(p + a + b) * tailIm);
+    let re = -(Math.cos(p + a + b) * tail[0] - Math.sin(p + a + b) * tail[1]);
+    let im = -(Math.sin(p + a + b) * tail[0] + Math.cos(p + a + b) * tail[1]);
     if (b === 0) {
       re *= 2;
       im *= 2;
@@ -35,8 +35,8 @@ export function quadraticPhaseIntegral(psi: number, alpha: number, beta: number,
       const sign = inside ? -1 : 1;
       const c = sign * Math.cos(p + a - b);
       const s = sign * Math.sin(p + a - b);
-      re += c * tailRe - s * tailIm;
-      im += s * tailRe + c * tailIm;
+      re += c * tail[0] - s * tail[1];
+      im += s * tail[0] + c * tail[1];
     }
     if (inside) {
       const stationary = p - l * l + Math.PI / 4;
@@ -68,9 +68,8 @@ function nearlyLinearPhase(p: number, a: number, b: number, out: Float64Array): 
   out[1] = s * moment0 + c * a * moment2;
 }
 
-// h(x) as the last call of fresnelTail left it: two numbers come back from the hottest function without an object
-let tailRe = 0;
-let tailIm = 0;
+/** h(x) as the last call of `fresnelTail` left it, real and imaginary part: typed, so that the hottest function allocates nothing. */
+const tail = new Float64Array(2);
 
 /** h(x) = exp(-i x^2) * integral from x to infinity of exp(i t^2) dt, x >= 0, to about 1e-11. */
 function fresnelTail(x: number): void {
@@ -79,41 +78,43 @@ function fresnelTail(x: number): void {
     const y = 0.5 / (x * x);
     const y2 = y * y;
     const scale = 0.5 / x;
-    tailRe = scale * y * (1 - y2 * (15 - y2 * 945));
-    tailIm = scale * (1 - y2 * (3 - y2 * (105 - y2 * 10395)));
+    tail[0] = scale * y * (1 - y2 * (15 - y2 * 945));
+    tail[1] = scale * (1 - y2 * (3 - y2 * (105 - y2 * 10395)));
     return;
   }
   const cell = Math.floor(x * CELLS_PER_UNIT);
   const d = x - (cell + 0.5) / CELLS_PER_UNIT;
-  const at = cell * 12;
-  tailRe =
-    TABLE[at] +
-    d *
-      (TABLE[at + 2] + d * (TABLE[at + 4] + d * (TABLE[at + 6] + d * (TABLE[at + 8] + d * TABLE[at + 10]))));
-  tailIm =
-    TABLE[at + 1] +
-    d *
-      (TABLE[at + 3] + d * (TABLE[at + 5] + d * (TABLE[at + 7] + d * (TABLE[at + 9] + d * TABLE[at + 11]))));
+  let at = 2 * (cell * (ORDER + 1) + ORDER);
+  let re = TABLE[at];
+  let im = TABLE[at + 1];
+  for (let k = ORDER; k > 0; k--) {
+    at -= 2;
+    re = TABLE[at] + d * re;
+    im = TABLE[at + 1] + d * im;
+  }
+  tail[0] = re;
+  tail[1] = im;
 }
 
-const CELLS_PER_UNIT = 32;
+/** The Taylor series about the middle of a cell leaves 1e-12 at its ends. */
+const ORDER = 7;
+const CELLS_PER_UNIT = 16;
 /** Here the first term left out of the asymptotic series, 135135 / (2 x^2)^7, is 2e-10 of h, which is 0.06. */
 const TABLE_END = 8;
 const TABLE = taylorTable();
 
-/** Taylor coefficients of h to the fifth order about the middle of each cell, from h(0) = sqrt(pi/8) (1 + i) and h' = -1 - 2 i x h, which
- * gives all higher derivatives: (k + 1) c[k+1] = -2 i (x c[k] + c[k-1]). Steps of 1/64 at order 12 lose nothing to speak of. */
+/** Taylor coefficients of h about the middle of each cell, from h(0) = sqrt(pi/8) (1 + i) and h' = -1 - 2 i x h, which gives all higher
+ * derivatives: (k + 1) c[k+1] = -2 i (x c[k] + c[k-1]). A series of order 14 carries h from one middle to the next. */
 function taylorTable(): Float64Array {
   const cells = TABLE_END * CELLS_PER_UNIT;
-  const table = new Float64Array(cells * 12);
-  const order = 12;
+  const table = new Float64Array(2 * cells * (ORDER + 1));
+  const order = 14;
   const re = new Float64Array(order + 1);
   const im = new Float64Array(order + 1);
   let hRe = Math.sqrt(Math.PI / 8);
   let hIm = hRe;
-  const half = 0.5 / CELLS_PER_UNIT;
-  for (let step = 0; step < 2 * cells; step++) {
-    const x = step * half;
+  for (let cell = -1; cell < cells; cell++) {
+    const x = Math.max(0, (cell + 0.5) / CELLS_PER_UNIT); // the first turn goes from 0 to the middle of the first cell
     re[0] = hRe;
     im[0] = hIm;
     re[1] = -1 + 2 * x * hIm;
@@ -122,18 +123,18 @@ function taylorTable(): Float64Array {
       re[k + 1] = (2 * (x * im[k] + im[k - 1])) / (k + 1);
       im[k + 1] = (-2 * (x * re[k] + re[k - 1])) / (k + 1);
     }
-    if (step % 2 === 1) {
-      const at = ((step - 1) / 2) * 12;
-      for (let k = 0; k < 6; k++) {
-        table[at + 2 * k] = re[k];
-        table[at + 2 * k + 1] = im[k];
+    if (cell >= 0) {
+      for (let k = 0, at = 2 * cell * (ORDER + 1); k <= ORDER; k++, at += 2) {
+        table[at] = re[k];
+        table[at + 1] = im[k];
       }
     }
+    const step = (cell < 0 ? 0.5 : 1) / CELLS_PER_UNIT;
     hRe = 0;
     hIm = 0;
     for (let k = order; k >= 0; k--) {
-      hRe = hRe * half + re[k];
-      hIm = hIm * half + im[k];
+      hRe = hRe * step + re[k];
+      hIm = hIm * step + im[k];
     }
   }
   return table;

@@ -95,9 +95,10 @@ function addIntensity(
   const nv = Math.max(16, nextPowerOfTwo(2 * rows));
   const stepM = 1 / (nu * step);
   const stepS = 1 / (nv * step);
-  const reachM = Math.min(Math.floor(1 / stepM), nu / 2 - 1);
-  const reachS = Math.min(Math.floor(1 / stepS), nv / 2 - 1);
-  const along = new FftPlan(nu);
+  const softness = 2 / (stepM + stepS);
+  const reachM = Math.min(Math.ceil(1 / stepM), nu / 2 - 1);
+  const reachS = Math.min(Math.ceil(1 / stepS), nv / 2 - 1);
+  const along = planOf(nu);
   const input = new Float64Array(2 * nu);
   const spectra = new Float64Array(2 * nu * (reachS + 1));
   for (let b = 0; b <= reachS; b++) {
@@ -106,16 +107,18 @@ function addIntensity(
     for (let a = -reachM; a <= reachM; a++) {
       const m = a * stepM;
       const rho2 = m * m + s * s;
-      if (rho2 > 1) continue;
+      const inside = 0.5 + (1 - Math.sqrt(rho2)) * softness; // the rim is soft over about one sample
+      if (inside <= 0) continue;
+      const amplitude = inside < 1 ? inside : 1;
       const phase = 2 * Math.PI * (rho2 * (w40 * rho2 + w31 * m + w20) + m * (w22 * m + w11 + u0));
       const at = 2 * (a & (nu - 1));
-      input[at] = Math.cos(phase);
-      input[at + 1] = Math.sin(phase);
+      input[at] = amplitude * Math.cos(phase);
+      input[at + 1] = amplitude * Math.sin(phase);
     }
     along.transform(spectra.subarray(2 * nu * b, 2 * nu * (b + 1)), input, 'plus');
   }
   const scale = weight * (stepM * stepS) ** 2;
-  const across = new FftPlan(nv);
+  const across = planOf(nv);
   const column = new Float64Array(2 * nv);
   const output = new Float64Array(2 * nv);
   for (let j = 0; j < columns; j++) {
@@ -132,6 +135,18 @@ function addIntensity(
     for (let l = 0; l < rows; l++)
       map[j * rows + l] += scale * (output[2 * l] * output[2 * l] + output[2 * l + 1] * output[2 * l + 1]);
   }
+}
+
+const plans = new Map<number, FftPlan>();
+
+/** Plans are kept: a rig's field points share few sizes. */
+function planOf(size: number): FftPlan {
+  let plan = plans.get(size);
+  if (plan === undefined) {
+    plan = new FftPlan(size);
+    plans.set(size, plan);
+  }
+  return plan;
 }
 
 /** Local maxima of the map, in samples, the highest first, refined by the parabola through the logarithms of three neighbours. */

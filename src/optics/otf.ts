@@ -33,7 +33,7 @@ export function otf(wavefront: LocalWavefront, nu: number, direction: Direction,
   const { w40, w31, w22, w20, w11 } = wavefront;
   const c = cosineOf(direction);
   const s = sineOf(direction);
-  // phase = constant + linear p + square p^2 + cubic p^3 + (bend + twist p) q^2 + shear p q, in radians
+  // phase = constant + linear p + square p^2 + cubic p^3 + (bend + twist p) q^2 + (skew + shear p) q, in radians
   const k = 2 * Math.PI * nu;
   const constant = 2 * k * c * (w31 * nu * nu + w11);
   const linear = k * (8 * w40 * nu * nu + 4 * (w22 * c * c + w20));
@@ -41,10 +41,11 @@ export function otf(wavefront: LocalWavefront, nu: number, direction: Direction,
   const cubic = 8 * k * w40;
   const bend = 2 * k * w31 * c;
   const twist = cubic;
-  const shear = -4 * k * s * (w31 + w22 * c);
+  const skew = -4 * k * w22 * c * s;
+  const shear = -4 * k * w31 * s;
 
   const widest = Math.acos(nu);
-  const steepest = steepestPhase(nu, linear, square, cubic, bend, shear);
+  const steepest = steepestPhase(nu, linear, square, cubic, bend, skew, shear);
   const { nodes, weights } = gaussLegendre(nodesForPhase(0.5 * steepest * widest));
   // without these three the halves p < 0 and p > 0 are conjugate
   const isOdd = constant === 0 && square === 0 && bend === 0;
@@ -59,11 +60,11 @@ export function otf(wavefront: LocalWavefront, nu: number, direction: Direction,
     const chord2 = chord * chord;
     const even = constant + square * p * p;
     const odd = p * (linear + cubic * p * p);
-    quadraticPhaseIntegral(even + odd, (bend + twist * p) * chord2, shear * p * chord, inner);
+    quadraticPhaseIntegral(even + odd, (bend + twist * p) * chord2, (skew + shear * p) * chord, inner);
     re += weight * inner[0];
     im += weight * inner[1];
     if (isOdd) continue;
-    quadraticPhaseIntegral(even - odd, (bend - twist * p) * chord2, shear * p * chord, inner);
+    quadraticPhaseIntegral(even - odd, (bend - twist * p) * chord2, (skew - shear * p) * chord, inner);
     re += weight * inner[0];
     im += weight * inner[1];
   }
@@ -91,6 +92,7 @@ function steepestPhase(
   square: number,
   cubic: number,
   bend: number,
+  skew: number,
   shear: number,
 ): number {
   const widest = Math.acos(nu);
@@ -103,7 +105,7 @@ function steepestPhase(
       const p = side * (along - nu);
       const middle = linear + p * (2 * square + 3 * cubic * p);
       const rim = middle + cubic * chord * chord - 2 * side * along * (bend + cubic * p);
-      const sheared = Math.abs(shear) * (chord * chord + Math.abs(p * along));
+      const sheared = Math.abs(shear) * chord * chord + Math.abs((skew + shear * p) * along);
       steepest = Math.max(steepest, chord * Math.abs(middle), chord * Math.abs(rim) + sheared);
     }
   }
@@ -149,7 +151,7 @@ export function bandMtf(
   direction: Direction,
 ): number {
   bandOtf(lines, fNumber, lpPerMm, direction, bandSum);
-  return Math.hypot(bandSum[0], bandSum[1]);
+  return Math.sqrt(bandSum[0] * bandSum[0] + bandSum[1] * bandSum[1]);
 }
 
 const bandSum = new Float64Array(2);

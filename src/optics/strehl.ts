@@ -19,7 +19,7 @@ export interface PsfPeak {
  *     a = (1/pi) integral over the unit pupil of exp(i 2 pi [W + (x m + y s) / (2 lambda N)]),
  *
  * so its share in the band counts with weight / lambda^2. A transform of the sampled pupil finds all peaks that may be the highest;
- * each is then climbed by Newton's method with a, its gradient and its second derivatives from a Gauss-Legendre rule over the pupil.
+ * each is then climbed with a, its gradient and its second derivatives from a Gauss-Legendre rule over the pupil.
  * Source: J. W. Goodman, Introduction to Fourier Optics, 6.2 to 6.4; Born and Wolf, Principles of Optics, 9.1 (both cited from memory)
  */
 export function psfPeak(lines: readonly WavefrontLine[], fNumber: number): PsfPeak {
@@ -44,8 +44,8 @@ export function strehlRatio(lines: readonly WavefrontLine[], fNumber: number): n
 export function strehlAtReference(lines: readonly WavefrontLine[], fNumber: number): number {
   const pupils = lines.map((line) => {
     const slope = slopeRange(line.wavefront);
-    slope.alongMin = Math.min(slope.alongMin, 0); // no tilt is taken out
-    slope.alongMax = Math.max(slope.alongMax, 0);
+    slope.alongMax = Math.max(-slope.alongMin, slope.alongMax); // no tilt is taken out
+    slope.alongMin = -slope.alongMax;
     return new PupilNodes(line, fNumber, slope);
   });
   return heightAt(pupils, 0, 0, new Float64Array(6));
@@ -68,10 +68,12 @@ class PupilNodes {
     const lambdaUm = nm / 1000;
     this.share = weight / (lambdaUm * lambdaUm);
     this.radPerUm = Math.PI / (lambdaUm * fNumber);
-    // m = -cos phi, s = t sin phi: the rim is smooth in phi and t. The peak lies inside the range of slopes, so what is left of the slope
-    // once the tilt of the peak is taken out is at most the width of that range
-    const along = gaussLegendre(nodesForPhase(Math.PI * Math.PI * (slope.alongMax - slope.alongMin)));
-    const across = gaussLegendre(nodesForPhase(4 * Math.PI * slope.acrossMax));
+    // m = -cos phi, s = t sin phi: the rim is smooth in phi and t. At a peak, the tilt of which is taken out, about half of the range of
+    // slopes is left on either side; phi moves along m and, at the rim, along s
+    const slopeAlong = 0.5 * (slope.alongMax - slope.alongMin);
+    const slopeAny = Math.sqrt(slopeAlong * slopeAlong + slope.acrossMax * slope.acrossMax);
+    const along = gaussLegendre(nodesForPhase(Math.PI * Math.PI * slopeAny));
+    const across = gaussLegendre(nodesForPhase(2 * Math.PI * slope.acrossMax));
     const half = across.nodes.length / 2;
     const rows = along.nodes.length;
     this.#acrossCount = half;
@@ -101,17 +103,17 @@ class PupilNodes {
   /** Add this line's height at an image point, with its derivatives, to out: height, d/dx, d/dy, d2/dx2, d2/dxdy, d2/dy2 (per um). */
   addHeight(xUm: number, yUm: number, out: Float64Array): void {
     this.#sum(xUm * this.radPerUm, yUm * this.radPerUm);
-    const [aRe, aIm, mRe, mIm, sRe, sIm, mmRe, mmIm, msRe, msIm, ssRe, ssIm] = this.#moments;
+    const a = this.#moments; // a of P, then of m P, s P, m^2 P, m s P and s^2 P, real and imaginary parts
     const { share, radPerUm } = this;
     // da/dx = i k <m>, d2a/dx2 = -k^2 <m m>, and so on
     const first = 2 * share * radPerUm;
     const second = 2 * share * radPerUm * radPerUm;
-    out[0] += share * (aRe * aRe + aIm * aIm);
-    out[1] += first * (aIm * mRe - aRe * mIm);
-    out[2] += first * (aIm * sRe - aRe * sIm);
-    out[3] += second * (mRe * mRe + mIm * mIm - aRe * mmRe - aIm * mmIm);
-    out[4] += second * (mRe * sRe + mIm * sIm - aRe * msRe - aIm * msIm);
-    out[5] += second * (sRe * sRe + sIm * sIm - aRe * ssRe - aIm * ssIm);
+    out[0] += share * (a[0] * a[0] + a[1] * a[1]);
+    out[1] += first * (a[1] * a[2] - a[0] * a[3]);
+    out[2] += first * (a[1] * a[4] - a[0] * a[5]);
+    out[3] += second * (a[2] * a[2] + a[3] * a[3] - a[0] * a[6] - a[1] * a[7]);
+    out[4] += second * (a[2] * a[4] + a[3] * a[5] - a[0] * a[8] - a[1] * a[9]);
+    out[5] += second * (a[4] * a[4] + a[5] * a[5] - a[0] * a[10] - a[1] * a[11]);
   }
 
   /** Moments 1, m, s, m^2, m s, s^2 of P exp(i (u m + v s)) over the pupil; the sums over +s and -s leave cos(v s) or i sin(v s). */
@@ -174,42 +176,59 @@ function heightAt(pupils: readonly PupilNodes[], xUm: number, yUm: number, out: 
   return out[0];
 }
 
-/** Climb from a point on the slope of a peak to its top: Newton's steps where the surface is a dome, steps uphill where it is not. */
+/** Climb from a point on the slope of a peak to its top.
+ *
+ * Newton's method with the curvatures taken as if all bent down (each step goes uphill, also off a saddle or along the crest of a ring),
+ * inside a reach that shrinks after a step too far and grows again after a good one.
+ * Source: J. Nocedal and S. J. Wright, Numerical Optimization, 3.4 and 4.1 (cited from memory)
+ */
 function climb(pupils: readonly PupilNodes[], startX: number, startY: number): PsfPeak {
-  // a fifth of lambda N of the shortest line: well inside a dome
+  // a fifth of lambda N of the shortest line: well inside a peak
   const longestStep = 0.2 * Math.min(...pupils.map(({ radPerUm }) => Math.PI / radPerUm));
   const h = new Float64Array(6);
-  let x = startX;
-  let y = startY;
-  let best = { strehl: heightAt(pupils, x, y, h), alongUm: x, acrossUm: y };
+  const step = new Float64Array(2);
+  let best = { strehl: heightAt(pupils, startX, startY, h), alongUm: startX, acrossUm: startY };
   let reach = longestStep;
-  for (let turn = 0; turn < 40; turn++) {
-    const [, gx, gy, hxx, hxy, hyy] = h;
-    const determinant = hxx * hyy - hxy * hxy;
-    let stepX = gx;
-    let stepY = gy;
-    const isDome = hxx < 0 && determinant > 0;
-    if (isDome) {
-      stepX = (hxy * gy - hyy * gx) / determinant;
-      stepY = (hxy * gx - hxx * gy) / determinant;
-    } else if (y === 0 && hyy > 0) {
-      stepX = 0; // on the ridge between twin peaks the slope across is 0: step off it
-      stepY = 1;
-    }
-    const length = Math.hypot(stepX, stepY);
-    if (length === 0) break;
-    const scale = isDome ? Math.min(1, reach / length) : reach / length;
-    x = best.alongUm + scale * stepX;
-    y = best.acrossUm + scale * stepY;
+  uphill(h, best.acrossUm === 0, reach, step);
+  for (let turn = 0; turn < 60; turn++) {
+    const gain = h[1] * step[0] + h[2] * step[1] + 0.5 * Math.max(0, h[5]) * step[1] * step[1];
+    if (gain < 1e-9) break;
+    const x = best.alongUm + step[0];
+    const y = best.acrossUm + step[1];
     const strehl = heightAt(pupils, x, y, h);
-    if (strehl < best.strehl) {
-      reach *= 0.3; // too far: again from the best point with its own derivatives
-      if (reach < 1e-6 * longestStep) break;
+    if (strehl > best.strehl) {
+      best = { strehl, alongUm: x, acrossUm: y };
+      reach = Math.min(longestStep, 2 * reach);
+    } else {
+      reach = 0.3 * Math.sqrt(step[0] * step[0] + step[1] * step[1]);
       heightAt(pupils, best.alongUm, best.acrossUm, h);
-      continue;
     }
-    best = { strehl, alongUm: x, acrossUm: y };
-    if (isDome && scale * length < 1e-5 * longestStep) break; // the height is flat there: 1e-10 off
+    uphill(h, best.acrossUm === 0, reach, step);
   }
   return best;
+}
+
+/** The step uphill, not longer than `reach`, from a height and its derivatives. */
+function uphill(h: Float64Array, isOnRadius: boolean, reach: number, step: Float64Array): void {
+  const [, gx, gy, hxx, hxy, hyy] = h;
+  if (isOnRadius) {
+    // even across the radius: no slope across, but twin peaks may stand on either side
+    step[0] = gx / Math.max(Math.abs(hxx), Number.MIN_VALUE);
+    step[1] = hyy > 0 ? reach : 0;
+  } else {
+    const mean = 0.5 * (hxx + hyy);
+    const spread = Math.hypot(0.5 * (hxx - hyy), hxy);
+    const angle = 0.5 * Math.atan2(hxy, 0.5 * (hxx - hyy)); // of the direction that bends by mean + spread
+    const c = Math.cos(angle);
+    const s = Math.sin(angle);
+    const least = 1e-6 * (Math.abs(mean) + spread) + Number.MIN_VALUE; // along the crest of a ring nothing bends
+    const first = (c * gx + s * gy) / Math.max(Math.abs(mean + spread), least);
+    const second = (c * gy - s * gx) / Math.max(Math.abs(mean - spread), least);
+    step[0] = c * first - s * second;
+    step[1] = s * first + c * second;
+  }
+  const length = Math.hypot(step[0], step[1]);
+  if (length <= reach) return;
+  step[0] *= reach / length;
+  step[1] *= reach / length;
 }
