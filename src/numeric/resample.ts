@@ -1,8 +1,8 @@
 /** Resampling of planes to another size with a windowed sinc, exact in position. */
 
 /** What every sample of an output line takes from the input line: sample k is the sum over j of
- * `weights[k * taps + j] * input[clamp(first[k] + j)]`. The weights of a sample sum to 1 and have their centre of gravity at the place
- * of the sample: a ramp stays that ramp. */
+ * `weights[k * taps + j] * input[clamp(first[k] + j)]`. The weights of a sample sum to 1 and have their
+ * centre of gravity at the place of the sample: a ramp stays that ramp. */
 export interface ResampleWeights {
   taps: number;
   first: Int32Array;
@@ -13,8 +13,8 @@ export interface ResampleWeights {
 const LOBES = 3;
 
 /** Lanczos kernel of three lobes, sinc(x) sinc(x / 3) for |x| < 3.
- * Source: C. Lanczos's sigma factors as used in C. E. Duchon, "Lanczos filtering in one and two dimensions", J. Appl. Meteor. 18
- * (1979) 1016 (from memory). */
+ * Source: C. Lanczos's sigma factors as used in C. E. Duchon, "Lanczos filtering in one and two dimensions",
+ * J. Appl. Meteor. 18 (1979) 1016 (from memory). */
 export function lanczos3(x: number): number {
   const t = Math.abs(x);
   if (t < 1e-9) return 1;
@@ -24,11 +24,12 @@ export function lanczos3(x: number): number {
   return (LOBES * Math.sin(a) * Math.sin(a / LOBES)) / (a * a);
 }
 
-/** Weights that take a line of `inputLength` samples to one of `outputLength` samples at a magnification of `scale`, middle on middle:
- * output sample k lies at (k - (outputLength - 1) / 2) / scale + (inputLength - 1) / 2 of the input.
+/** Weights that take a line of `inputLength` samples to one of `outputLength` samples at a magnification of
+ * `scale`, middle on middle: output sample k lies at (k - (outputLength - 1) / 2) / scale +
+ * (inputLength - 1) / 2 of the input.
  *
- * Where the line shrinks, the kernel widens by 1 / scale, so that what the coarser grid cannot carry is filtered out. The input is
- * extended past its ends by its end samples.
+ * Where the line shrinks, the kernel widens by 1 / scale, so that what the coarser grid cannot carry is
+ * filtered out. The input is extended past its ends by its end samples.
  */
 export function resampleWeights(inputLength: number, outputLength: number, scale: number): ResampleWeights {
   const widening = Math.max(1, 1 / scale);
@@ -53,8 +54,9 @@ export function resampleWeights(inputLength: number, outputLength: number, scale
 
 /** Make weights sum to 1 and balance about 0, in place.
  *
- * A sampled windowed sinc does neither: divided by its sum alone, it takes samples from up to 0.02 beside their place. What is missing
- * is added as a straight line under a window g: w <- w / sum(w) + g (b + c t), with b and c from the two conditions.
+ * A sampled windowed sinc does neither: divided by its sum alone, it takes samples from up to 0.02 beside
+ * their place. What is missing is added as a straight line under a window g: w <- w / sum(w) + g (b + c t),
+ * with b and c from the two conditions.
  *
  * @param start  place t of the first weight against the sample
  */
@@ -88,8 +90,9 @@ function window(x: number): number {
 
 /** Resample a plane by one set of weights along its rows and one down its columns.
  *
- * Every input row is taken to the new width once and kept only while output rows need it. The result is clipped to the range of the
- * input: the kernel rings, and what it rings beyond the brightest and the darkest sample is no part of the picture.
+ * Columns first, a row at a time: they cost less a product than rows, and there are more of them where a
+ * picture shrinks. The result is clipped to the range of the input: the kernel rings, and what it rings
+ * beyond the brightest and the darkest sample is no part of the picture.
  *
  * @param plane  inputHeight x inputWidth samples, row-major; not changed
  * @param out    outputHeight x outputWidth samples; not the same memory as `plane`
@@ -102,65 +105,80 @@ export function resamplePlane(
   downColumns: ResampleWeights,
   out: Float32Array,
 ): void {
-  const width = alongRows.first.length;
-  const height = downColumns.first.length;
   const { lowest, highest } = range(plane);
   const { taps, first, weights } = downColumns;
-
-  const padded = new PaddedRow(inputWidth, alongRows);
-  const kept = Array.from({ length: taps }, () => new Float64Array(width)); // row r of the input in kept[r mod taps]
-  const keptRow = new Int32Array(taps).fill(-1);
-  const used: Float64Array[] = new Array(taps);
-  const sum = new Float64Array(width);
-  for (let y = 0; y < height; y++) {
+  const width = alongRows.first.length;
+  const line = new PaddedLine(inputWidth, alongRows);
+  const starts = new Int32Array(taps);
+  for (let y = 0; y < first.length; y++) {
     for (let j = 0; j < taps; j++) {
-      const row = Math.min(Math.max(first[y] + j, 0), inputHeight - 1);
-      const slot = row % taps;
-      if (keptRow[slot] !== row) {
-        padded.load(plane, row * inputWidth);
-        weighRow(kept[slot], padded.samples, padded.offset, alongRows);
-        keptRow[slot] = row;
-      }
-      used[j] = kept[slot];
+      starts[j] = Math.min(Math.max(first[y] + j, 0), inputHeight - 1) * inputWidth;
     }
-    weighRows(sum, used, weights.subarray(y * taps, (y + 1) * taps));
-    const start = y * width;
-    for (let x = 0; x < width; x++) {
-      out[start + x] = Math.min(Math.max(sum[x], lowest), highest);
-    }
+    weighRows(line.samples, line.offset, inputWidth, plane, starts, weights, y * taps);
+    line.pad();
+    weighLine(out, y * width, line, alongRows, lowest, highest);
   }
 }
 
-/** A row with its end samples repeated on both sides as far as the weights reach, so that the inner loop needs no bounds. */
-class PaddedRow {
+/** A line with its end samples repeated on both sides as far as the weights reach, so that the inner loop
+ * needs no bounds. */
+class PaddedLine {
   readonly samples: Float64Array;
-  /** Where sample 0 of the row lies in `samples`. */
+  /** Where sample 0 of the line lies in `samples`. */
   readonly offset: number;
-  readonly #length: number;
+  readonly #end: number;
 
   constructor(length: number, { first, taps }: ResampleWeights) {
     const reach = first[first.length - 1] + taps;
-    this.#length = length;
     this.offset = Math.max(0, -first[0]);
+    this.#end = this.offset + length;
     this.samples = new Float64Array(this.offset + Math.max(length, reach));
   }
 
-  load(plane: Float32Array, start: number): void {
-    const { samples, offset } = this;
-    const end = offset + this.#length;
-    samples.set(plane.subarray(start, start + this.#length), offset);
-    samples.fill(samples[offset], 0, offset);
-    samples.fill(samples[end - 1], end);
+  pad(): void {
+    this.samples.fill(this.samples[this.offset], 0, this.offset);
+    this.samples.fill(this.samples[this.#end - 1], this.#end);
   }
 }
 
-function weighRow(
+/** out[offset + x] = sum over j of weights[weightsStart + j] * plane[starts[j] + x].
+ * Four rows a pass, so that the sum is loaded and stored a quarter as often as row by row. */
+function weighRows(
   out: Float64Array,
-  samples: Float64Array,
   offset: number,
-  { taps, first, weights }: ResampleWeights,
+  length: number,
+  plane: Float32Array,
+  starts: Int32Array,
+  weights: Float64Array,
+  weightsStart: number,
 ): void {
-  for (let x = 0, w = 0; x < out.length; x++) {
+  out.fill(0);
+  let j = 0;
+  for (; j + 3 < starts.length; j += 4) {
+    const [a, b, c, d] = [starts[j], starts[j + 1], starts[j + 2], starts[j + 3]];
+    const w = weightsStart + j;
+    const [wa, wb, wc, wd] = [weights[w], weights[w + 1], weights[w + 2], weights[w + 3]];
+    for (let x = 0; x < length; x++) {
+      out[offset + x] += wa * plane[a + x] + wb * plane[b + x] + wc * plane[c + x] + wd * plane[d + x];
+    }
+  }
+  for (; j < starts.length; j++) {
+    const start = starts[j];
+    const weight = weights[weightsStart + j];
+    for (let x = 0; x < length; x++) out[offset + x] += weight * plane[start + x];
+  }
+}
+
+/** Two sums side by side, so that one need not wait for the other. */
+function weighLine(
+  out: Float32Array,
+  start: number,
+  { samples, offset }: PaddedLine,
+  { taps, first, weights }: ResampleWeights,
+  lowest: number,
+  highest: number,
+): void {
+  for (let x = 0, w = 0; x < first.length; x++) {
     let even = 0;
     let odd = 0;
     let i = offset + first[x];
@@ -169,23 +187,7 @@ function weighRow(
       odd += weights[w + 1] * samples[i + 1];
     }
     if (taps % 2 === 1) even += weights[w++] * samples[i];
-    out[x] = even + odd;
-  }
-}
-
-/** Four rows a pass, so that the sum is loaded and stored a quarter as often as row by row. */
-function weighRows(sum: Float64Array, rows: readonly Float64Array[], weights: Float64Array): void {
-  sum.fill(0);
-  let j = 0;
-  for (; j + 3 < rows.length; j += 4) {
-    const [a, b, c, d] = [rows[j], rows[j + 1], rows[j + 2], rows[j + 3]];
-    const [wa, wb, wc, wd] = [weights[j], weights[j + 1], weights[j + 2], weights[j + 3]];
-    for (let x = 0; x < sum.length; x++) sum[x] += wa * a[x] + wb * b[x] + wc * c[x] + wd * d[x];
-  }
-  for (; j < rows.length; j++) {
-    const row = rows[j];
-    const weight = weights[j];
-    for (let x = 0; x < sum.length; x++) sum[x] += weight * row[x];
+    out[start + x] = Math.min(Math.max(even + odd, lowest), highest);
   }
 }
 

@@ -3,12 +3,14 @@
  * Source: IEC 61966-2-1:1999 (constants from memory; they agree with the figures of the published check).
  */
 
-/** Encoded value 0..1 of a linear value 0..1. Values outside 0..1 follow the same branches and are not clipped. */
+/** Encoded value 0..1 of a linear value 0..1. Values outside 0..1 follow the same branches and are not
+ * clipped. */
 export function srgbEncode(linear: number): number {
   return linear <= 0.0031308 ? 12.92 * linear : 1.055 * linear ** (1 / 2.4) - 0.055;
 }
 
-/** Linear value 0..1 of an encoded value 0..1: the inverse of `srgbEncode` (to 3e-8 where the two branches meet). */
+/** Linear value 0..1 of an encoded value 0..1: the inverse of `srgbEncode` (to 3e-8 where the two branches
+ * meet). */
 export function srgbDecode(encoded: number): number {
   return encoded <= 0.04045 ? encoded / 12.92 : ((encoded + 0.055) / 1.055) ** 2.4;
 }
@@ -30,8 +32,8 @@ export function srgbDecodeTable(bitDepth: BitDepth): Float32Array {
   return table;
 }
 
-/** Bins over 0..1 of the encoding table. The curve is steepest at 0, 12.92 * 255 = 3295 codes per unit, so that 4096 bins are
- * fine enough for at most one change of code within a bin. */
+/** Bins over 0..1 of the encoding table. The curve is steepest at 0, 12.92 * 255 = 3295 codes per unit, so
+ * that 4096 bins are fine enough for at most one change of code within a bin. */
 const ENCODE_BINS = 4096;
 
 interface EncodeTable {
@@ -55,10 +57,11 @@ function makeEncodeTable(): EncodeTable {
   return { codes, steps };
 }
 
-/** Encode linear values as 8-bit sRGB codes, rounded to nearest and clipped to 0..255 (a value that is no number gives 0).
+/** Encode linear values as 8-bit sRGB codes, rounded to nearest and clipped to 0..255 (a value that is no
+ * number gives 0).
  *
- * The same codes as `Math.round(255 * srgbEncode(value))` without its power: a table gives the code at the lower end of the value's
- * bin, one comparison the rest.
+ * The same codes as `Math.round(255 * srgbEncode(value))` without its power: a table gives the code at the
+ * lower end of the value's bin, one comparison the rest.
  *
  * @param out    codes, written at `outStart`, `outStart + outStride`, ...
  * @param values linear values, read from `start` on

@@ -2,7 +2,8 @@ import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { lanczos3, resamplePlane, resampleWeights } from '../../src/numeric/resample.js';
 
-/** Resample a line by direct evaluation: Lanczos weights, then the least change under the window that makes a ramp a ramp. */
+/** Resample a line by direct evaluation: Lanczos weights, then the least change under the window that makes a
+ * ramp a ramp. */
 const direct = (line: readonly number[], outputLength: number, scale: number) => {
   const widening = Math.max(1, 1 / scale);
   return Array.from({ length: outputLength }, (_, k) => {
@@ -104,7 +105,8 @@ describe('resamplePlane', () => {
     const range = [...plane];
     out.forEach((value, i) => {
       const product = outRow[i % outWidth] * outColumn[(i / outWidth) | 0];
-      expect(Math.abs(value - limited([product], range)[0])).toBeLessThan(2e-7); // input and output rounded to float32
+      // input and output are rounded to float32
+      expect(Math.abs(value - limited([product], range)[0])).toBeLessThan(2e-7);
     });
   });
 });

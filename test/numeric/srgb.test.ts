@@ -19,7 +19,8 @@ describe('srgbEncode and srgbDecode', () => {
   it('undo each other', () => {
     fc.assert(
       fc.property(fc.double({ min: 0, max: 1, noNaN: true }), (value) => {
-        // the standard's rounded constants leave the branches 3e-8 apart where they meet; elsewhere it is rounding only
+        // the standard's rounded constants leave the branches 3e-8 apart where they meet; elsewhere it is
+        // rounding only
         expect(Math.abs(srgbDecode(srgbEncode(value)) - value)).toBeLessThan(4e-8);
         expect(Math.abs(srgbEncode(srgbDecode(value)) - value)).toBeLessThan(5e-7);
       }),

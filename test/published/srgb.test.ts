@@ -2,8 +2,9 @@ import { describe, expect, it } from 'vitest';
 import { LUMINANCE_WEIGHTS, toBands } from '../../src/files/pictures/bands.js';
 import { encodeSrgb8, srgbDecode, srgbEncode } from '../../src/numeric/srgb.js';
 
-// Source: IEC 61966-2-1:1999. The constants are from memory and agree with encyclopaedia copies; the figures were computed from them
-// with independent code. Limit: the branches differ by 3e-8 where they meet, and the figures are printed to nine decimals.
+// Source: IEC 61966-2-1:1999. The constants are from memory and agree with encyclopaedia copies; the figures
+// were computed from them with independent code. Limit: the branches differ by 3e-8 where they meet, and the
+// figures are printed to nine decimals.
 const LIMIT = 1e-7;
 
 describe('sRGB, IEC 61966-2-1', () => {

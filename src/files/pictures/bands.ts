@@ -9,8 +9,8 @@ const PLANE_OF_BAND: Readonly<Record<string, number>> = { red: 0, green: 1, blue
 
 /** The planes of a scene in the order of a camera's bands.
  *
- * A mono scene gives every band the same plane (shared, not copied); a colour scene gives `red`, `green` and `blue` their own and
- * `mono` its luminance.
+ * A mono scene gives every band the same plane (shared, not copied); a colour scene gives `red`, `green` and
+ * `blue` their own and `mono` its luminance.
  *
  * @param scene      1 or 3 planes in linear light; not changed
  * @param bandNames  of the camera

@@ -4,10 +4,12 @@ import { type AllocatePlanes, type Picture, sharedPlanes } from './picture.js';
 
 /** Magnify a picture until it covers a frame, middle on middle, and cut off what stands over.
  *
- * Linear light in, linear light out, in float; one scale for both directions; the middle of the picture comes to lie on the middle of
- * the frame exactly, also where the difference in size is odd. (The picture library's own resize puts enlarged pictures up to half a
- * pixel off, cuts at whole pixels and takes the places of samples to 1/64: measured, and why it is not used here.) Values stay
- * within the range of the plane they come from.
+ * Linear light in, linear light out, in float; one scale for both directions; the middle of the picture comes
+ * to lie on the middle of the frame exactly, also where the difference in size is odd. Values stay within the
+ * range of the plane they come from.
+ *
+ * Why not the picture library's own resize: measured on float samples, it puts enlarged pictures up to half a
+ * pixel off, cuts at whole pixels, and takes the places of samples to a hundredth of a pixel.
  *
  * @param picture       not changed; returned as it is where it has the size of the frame already
  * @param targetWidth   width of the frame in samples

@@ -60,7 +60,8 @@ const SIGNATURES: readonly [format: string, test: (head: Uint8Array) => boolean]
   ],
 ];
 
-/** The format of a file from its first bytes (a few hundred): one of `PictureFormat`, another one's name, or undefined. */
+/** The format of a file from its first bytes (a few hundred): one of `PictureFormat`, another one's name, or
+ * undefined where they say nothing. */
 export function sniffFormat(head: Uint8Array): string | undefined {
   return SIGNATURES.find(([, test]) => test(head))?.[0];
 }

@@ -1,11 +1,13 @@
 /** Colour profiles inside picture files: from device values to linear sRGB.
  *
- * The picture library converts by profile, too, but not well enough for measurements: it takes 8-bit samples through 8 bits, treats the
- * 16-bit colour pictures it converts as Display P3, and passes over the profile of a 16-bit grey picture. So the profiles that are
- * plain curves and a matrix, which nearly all RGB and grey profiles are, are applied here, in float.
+ * The picture library converts by profile, too, but not well enough for measurements: it takes 8-bit samples
+ * through 8 bits, treats the 16-bit colour pictures it converts as Display P3, and passes over the profile of
+ * a 16-bit grey picture. So the profiles that are plain curves and a matrix, which nearly all RGB and grey
+ * profiles are, are applied here, in float.
  *
- * Source of the formats: ICC.1:2022, sections 7.2 (header), 7.3 (tag table), 10.6 (curveType), 10.18 (parametricCurveType) and
- * 10.31 (XYZType); formulas of F.3 (three-component matrix-based profiles) and F.2 (monochrome). Cited from memory.
+ * Source of the formats: ICC.1:2022, sections 7.2 (header), 7.3 (tag table), 10.6 (curveType), 10.18
+ * (parametricCurveType) and 10.31 (XYZType); formulas of F.3 (three-component matrix-based profiles) and F.2
+ * (monochrome). Cited from memory.
  */
 import { srgbDecode } from '../../numeric/srgb.js';
 
@@ -30,7 +32,8 @@ export const XYZ_D50_TO_SRGB: readonly number[] = [
   3.1338561, -1.6168667, -0.4906146, -0.9787684, 1.9161415, 0.033454, 0.0719453, -0.2289914, 1.4052427,
 ];
 
-/** A profile this near to sRGB is sRGB, written down by somebody who rounded otherwise: a quarter of an 8-bit step. */
+/** A profile this near to sRGB is sRGB, written down by somebody who rounded otherwise. It is a quarter of an
+ * 8-bit step. */
 const SRGB_TOLERANCE = 1e-3;
 
 /** Read a profile. */

@@ -1,6 +1,12 @@
 /** Picture files: scenes in, pictures out. */
 export { LUMINANCE_WEIGHTS, toBands } from './bands.js';
-export { type EncodeOptions, encodePicture, encodeRaw, refuseLinearFormat } from './encode.js';
+export {
+  type EncodeOptions,
+  encodePicture,
+  encodeRaw,
+  refuseLargeSide,
+  refuseLinearFormat,
+} from './encode.js';
 export { fitToSensor } from './fit.js';
 export { formatOf, PICTURE_EXTENSIONS, type PictureFormat } from './formats.js';
 export { limitPictureThreads } from './library.js';

@@ -6,7 +6,7 @@ sharp.cache(false);
 
 export { sharp };
 
-/** Bound the threads with which picture files are read and written (default: one a core). */
+/** Bound the threads with which picture files are read and written; 0 is the default, one a core. */
 export function limitPictureThreads(threads: number): void {
   sharp.concurrency(threads);
 }

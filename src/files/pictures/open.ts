@@ -8,11 +8,12 @@ import { isPictureFormat, PICTURE_EXTENSIONS, READABLE_FORMATS, sniffFormat } fr
 import { sharp } from './library.js';
 import { refuseOnePixel } from './picture.js';
 
-/** Largest scene. In colour its planes take 4.8 GB; beyond it a file is more likely broken, or a trap, than meant. */
+/** Largest scene. In colour its planes take 4.8 GB; a larger file is more likely a broken one, or a trap. */
 export const MAX_MEGAPIXELS = 400;
 
-/** How every scene is opened: damage is an error, and the number of pixels is checked here and not by the library. */
-export const OPEN_OPTIONS = { failOn: 'error', limitInputPixels: false } as const;
+/** How every scene is opened: damage is an error, and the numbers of pixels and channels are checked here and
+ * not by the library. */
+export const OPEN_OPTIONS = { failOn: 'error', limitInputPixels: false, limitInputChannels: false } as const;
 
 /** A picture file that can be decoded as a scene. */
 export interface PictureHead {
@@ -28,6 +29,7 @@ const MODELS: Readonly<Record<string, PictureHead['model']>> = {
   srgb: 'rgb',
   rgb: 'rgb',
   rgb16: 'rgb',
+  scrgb: 'rgb',
   cmyk: 'cmyk',
 };
 
@@ -40,8 +42,8 @@ const HEAD_BYTES = 1024;
 
 /** Read the head of a picture file.
  * @param path  as the user named it
- * @throws {InputError} missing (with near names), a folder, a device, empty, another format, damaged, several pictures in one file,
- *   samples of another kind than 8 or 16 bits, too large, a single pixel */
+ * @throws {InputError} missing (with near names), a folder, a device, empty, another format, damaged, several
+ *   pictures in one file, samples of another kind than 8 or 16 bits, too large, a single pixel */
 export async function openPicture(path: string): Promise<PictureHead> {
   const format = sniffFormat(await firstBytes(path));
   if (!isPictureFormat(format)) {
@@ -124,15 +126,6 @@ function checkHead(path: string, metadata: Metadata): PictureHead {
   refuseOnePixel(width, height, path);
   const bitDepth = BIT_DEPTHS[metadata.depth];
   const model = MODELS[metadata.space];
-  if (bitDepth === undefined) {
-    throw new InputError({
-      file: path,
-      message: 'has samples of a kind that is not read',
-      found: `${metadata.bitsPerSample ?? '?'} bits (${metadata.depth})`,
-      allowed: 'whole numbers of 8 or 16 bits',
-      advice: 'Save it with 16 bits.',
-    });
-  }
   if (model === undefined || channels > COLOURS[model] + 1) {
     throw new InputError({
       file: path,
@@ -140,6 +133,15 @@ function checkHead(path: string, metadata: Metadata): PictureHead {
       found: `${channels} (${metadata.space})`,
       allowed: 'grey, RGB or CMYK, each with or without alpha',
       advice: 'Save it as grey or RGB.',
+    });
+  }
+  if (bitDepth === undefined) {
+    throw new InputError({
+      file: path,
+      message: 'has samples of a kind that is not read',
+      found: `${metadata.bitsPerSample ?? '?'} bits (${metadata.depth})`,
+      allowed: 'whole numbers of 8 or 16 bits',
+      advice: 'Save it with 16 bits.',
     });
   }
   return { metadata, bitDepth, model };

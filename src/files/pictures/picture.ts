@@ -25,7 +25,8 @@ export const sharedPlanes: AllocatePlanes = (width, height, count) => {
   }
 };
 
-/** Refuse a picture that cannot be a scene: planes of another size or number, a single pixel, values that are no numbers or negative.
+/** Refuse a picture that cannot be a scene: planes of another size or number, a single pixel, values that are
+ * no numbers or negative.
  * @param name what to call it in the message: a file's name, or `scene`
  * @throws {InputError} with every fault found */
 export function checkPicture(picture: Picture, name = 'scene'): void {
@@ -62,7 +63,7 @@ export function checkPicture(picture: Picture, name = 'scene'): void {
       throw new InputError({
         file: name,
         key: `planes[${at}]`,
-        message: `holds a value that is no amount of light at column ${wrong % width}, row ${Math.floor(wrong / width)}`,
+        message: `holds no amount of light at column ${wrong % width}, row ${Math.floor(wrong / width)}`,
         found: String(plane[wrong]),
         allowed: 'finite numbers from 0 up, 1 being full scale',
       });

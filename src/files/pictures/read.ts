@@ -7,7 +7,8 @@ import { damagedPicture, OPEN_OPTIONS, openPicture, type PictureHead } from './o
 import { type AllocatePlanes, type Picture, sharedPlanes } from './picture.js';
 
 export interface ReadOptions {
-  /** Take the samples as linear light, value / full scale, as they are: no transfer curve and no colour profile. Default: false. */
+  /** Take the samples as linear light, value / full scale, as they are: no transfer curve and no colour
+   * profile. Default: false. */
   sceneLinear?: boolean;
   /** Where the planes are to lie; default: shared memory of their own. */
   allocate?: AllocatePlanes;
@@ -25,12 +26,14 @@ export interface Scene {
 
 /** Read a PNG, JPEG, TIFF or WebP file as a scene in linear light.
  *
- * 8 or 16 bits, grey or colour, palettes; turned upright by its EXIF orientation. Samples are sRGB, or what the embedded profile says,
- * and are taken to linear sRGB (values outside 0..1, which another profile can give, are clipped). CMYK is converted to 8-bit sRGB by
- * the picture library. Alpha is composited on black in linear light: value times alpha.
+ * 8 or 16 bits, grey or colour, palettes; turned upright by its EXIF orientation. Samples are sRGB, or what
+ * the embedded profile says, and are taken to linear sRGB (values outside 0..1, which another profile can
+ * give, are clipped). CMYK is converted to 8-bit sRGB by the picture library. Alpha is composited on black in
+ * linear light: value times alpha.
  *
  * @param path as the user named it
- * @throws {InputError} as `openPicture` does; a picture that breaks off; CMYK as linear light; a profile that cannot be applied
+ * @throws {InputError} as `openPicture` does; a picture that breaks off; CMYK as linear light; a profile that
+ *   cannot be applied
  * @throws {RunError}   out of memory
  */
 export async function readScene(path: string, options: ReadOptions = {}): Promise<Scene> {
@@ -115,7 +118,7 @@ function profileFault(path: string) {
 }
 
 function unusedProfileWarning(path: string): string {
-  return `${path}: the embedded colour profile is damaged or made for another kind of picture; the values are taken as sRGB`;
+  return `${path}: the embedded colour profile is damaged or for another kind of picture; taken as sRGB`;
 }
 
 function curveTable(curve: ToneCurve, bitDepth: 8 | 16): Float32Array {
@@ -130,14 +133,15 @@ interface Samples {
   samples: Uint8Array | Uint16Array;
   width: number;
   height: number;
-  /** Samples a pixel: 1 grey, 2 grey and alpha, 3 colour, 4 colour and alpha (or grey three times and alpha). */
+  /** Samples a pixel: 1 grey, 2 grey and alpha, 3 colour, 4 colour (or grey three times) and alpha. */
   stride: number;
 }
 
 async function decode(path: string, head: PictureHead, { byLibrary }: Decoding): Promise<Samples> {
   const { metadata, bitDepth, model } = head;
   const is16Bit = bitDepth === 16 && model !== 'cmyk';
-  // Without its colour space named, the library hands 16-bit pictures over with 8. Its 8-bit grey has no alpha, its 8-bit RGB has.
+  // Without its colour space named, the library hands 16-bit pictures over with 8. Its 8-bit grey has no
+  // alpha, its 8-bit RGB has.
   const space = is16Bit
     ? model === 'grey'
       ? 'grey16'

@@ -19,7 +19,7 @@ describe('toBands', () => {
     expect(toBands(colour, ['blue', 'red']).planes.map((band) => band[0])).toEqual([0.75, 0.25]);
   });
 
-  it('gives its luminance to a mono camera, in memory that the caller gives, and leaves the scene alone', () => {
+  it('gives its luminance to a mono camera, in the caller’s memory, and leaves the scene alone', () => {
     const own = [plane(9, 9)];
     const { planes } = toBands(colour, ['mono'], { allocate: () => own });
     expect(planes[0]).toBe(own[0]);

@@ -1,7 +1,13 @@
 import sharp from 'sharp';
 import { describe, expect, it } from 'vitest';
-import { encodePicture, encodeRaw } from '../../../src/files/pictures/encode.js';
+import {
+  encodePicture,
+  encodeRaw,
+  refuseLargeSide,
+  refuseLinearFormat,
+} from '../../../src/files/pictures/encode.js';
 import type { PictureFormat } from '../../../src/files/pictures/formats.js';
+import { limitPictureThreads } from '../../../src/files/pictures/library.js';
 import type { Picture } from '../../../src/files/pictures/picture.js';
 import { readScene } from '../../../src/files/pictures/read.js';
 import { srgbDecode, srgbEncode } from '../../../src/numeric/srgb.js';
@@ -203,11 +209,46 @@ describe('encodePicture: limits and determinism', () => {
     },
   );
 
+  it('does not depend on the number of threads, reading or writing', async () => {
+    const side = 700; // several of the library's strips
+    const planes = [5, 7, 11].map((step) =>
+      Float32Array.from({ length: side * side }, (_, i) => ((i * step) % 1009) / 1008),
+    );
+    const picture = { width: side, height: side, planes };
+    const runs: Buffer[][] = [];
+    for (const threads of [1, 4]) {
+      limitPictureThreads(threads);
+      const files = await Promise.all(
+        (['png', 'jpeg', 'tiff', 'webp'] as const).map((format) => encodePicture(picture, format)),
+      );
+      const { raster } = await readScene(folder.put('threads.jpg', files[1]));
+      runs.push([...files, ...raster.planes.map((plane) => Buffer.from(plane.slice().buffer))]);
+    }
+    limitPictureThreads(0);
+    runs[0].forEach((bytes, k) => {
+      expect(bytes.equals(runs[1][k])).toBe(true);
+    });
+  });
+
   it('gives an 8-bit picture back as it was read', async () => {
     const codes = Float32Array.from({ length: 256 }, (_, code) => srgbDecode(code / 255));
     const file = await encodePicture({ width: 16, height: 16, planes: [codes] }, 'png');
     const again = await encodePicture((await readScene(folder.put('again.png', file))).raster, 'png');
     expect(again.equals(file)).toBe(true);
+  });
+});
+
+describe('refusals before any work', () => {
+  it('name the option that names the file', async () => {
+    expect((await faultOf(() => refuseLinearFormat('jpeg', '--raw'))).key).toBe('--raw');
+    expect((await faultOf(() => refuseLargeSide('webp', 20000, 10, '--out'))).key).toBe('--out');
+  });
+
+  it('let pass what a format can hold', () => {
+    refuseLinearFormat('png');
+    refuseLinearFormat('tiff');
+    refuseLargeSide('jpeg', 65535, 65535);
+    refuseLargeSide('png', 200000, 10);
   });
 });
 

@@ -57,8 +57,9 @@ describe('fitToSensor', () => {
     (width, height, toWidth, toHeight) => {
       const scale = Math.max(toWidth / width, toHeight / height);
       const radius = Math.min(toWidth, toHeight) / scale / 4;
-      // In the middle the symmetry holds it: rounding only. Elsewhere: a soft edge that the pixels can carry, 0.002 px from the sampling of
-      // the disc; a hard one rings, and what is clipped off the ringing weighs unevenly (0.011 px measured, at half a pixel's shift)
+      // In the middle the symmetry holds it: rounding only. Elsewhere: a soft edge that the pixels can carry,
+      // 0.002 px from the sampling of the disc; a hard one rings, and what is clipped off the ringing weighs
+      // unevenly (0.011 px measured, at half a pixel's shift)
       for (const [dx, dy, edge, limit] of [
         [0, 0, 1, 1e-6],
         [3.3, -2.7, 5, 3e-3],
@@ -131,7 +132,7 @@ describe('fitToSensor', () => {
     expect(within.every((value) => Math.abs(value - 0.5) < 0.01)).toBe(true);
   });
 
-  it('covers the frame with one scale and cuts the rest, whatever the shapes; never leaves the range of the scene', () => {
+  it('covers any frame from any shape, and never leaves the range of the scene', () => {
     const side = fc.integer({ min: 1, max: 40 });
     fc.assert(
       fc.property(side, side, side, side, fc.integer(), (width, height, toWidth, toHeight, seed) => {

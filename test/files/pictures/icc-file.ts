@@ -25,6 +25,23 @@ export function greyProfile(curve: Curve, connection = 'XYZ '): Buffer {
   ]);
 }
 
+/** An RGB profile by table only: the corners of the colour cube in Lab, straight lines between them (lut8Type). */
+export function cubeProfile(cornerLab: (r: number, g: number, b: number) => readonly number[]): Buffer {
+  const head = Buffer.alloc(48);
+  head.write('mft1', 0, 'latin1');
+  head.set([3, 3, 2], 8); // channels in, channels out, grid points
+  for (const at of [12, 28, 44]) head.writeInt32BE(65536, at); // unit matrix
+  const straight = Buffer.from(Array.from({ length: 3 * 256 }, (_, i) => i % 256));
+  const corners = [0, 1, 2, 3, 4, 5, 6, 7].flatMap((k) => {
+    const [lightness, a, b] = cornerLab(k >> 2, (k >> 1) & 1, k & 1);
+    return [Math.round(2.55 * lightness), a + 128, b + 128];
+  });
+  return profile('RGB ', 'Lab ', [
+    ['A2B0', Buffer.concat([head, straight, Buffer.from(corners), straight])],
+    ['wtpt', xyzBytes([0.9642, 1, 0.8249])],
+  ]);
+}
+
 /** A profile with tags of one's own. */
 export function profile(space: string, connection: string, tags: readonly [string, Buffer][]): Buffer {
   const head = Buffer.alloc(128);
@@ -86,7 +103,7 @@ function xyzBytes(values: readonly number[]): Buffer {
   return out;
 }
 
-/** sRGB, a column a primary. Source: B. Lindbloom, "RGB/XYZ Matrices", Bradford-adapted to D50 (from memory). */
+/** sRGB, a column a primary. Source: B. Lindbloom, "RGB/XYZ Matrices", adapted to D50 (from memory). */
 export const SRGB_COLUMNS = [
   [0.4360747, 0.2225045, 0.0139322],
   [0.3850649, 0.7168786, 0.0971045],

@@ -1,4 +1,5 @@
-/** A small PNG writer and reader, independent of the picture library, for non-interlaced files of whole bytes.
+/** A small PNG writer and reader, independent of the picture library: no interlacing, samples of whole bytes.
+ *
  * Source: Portable Network Graphics (PNG) Specification, W3C (from memory). */
 import { deflateSync, inflateSync } from 'node:zlib';
 

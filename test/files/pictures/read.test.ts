@@ -3,7 +3,15 @@ import { describe, expect, it } from 'vitest';
 import { readScene } from '../../../src/files/pictures/read.js';
 import { srgbDecode } from '../../../src/numeric/srgb.js';
 import { faultOf, pictureFolder } from './folder.js';
-import { greyProfile, profile, rgbProfile, SRGB_COLUMNS, SRGB_CURVE, WIDE_COLUMNS } from './icc-file.js';
+import {
+  cubeProfile,
+  greyProfile,
+  profile,
+  rgbProfile,
+  SRGB_COLUMNS,
+  SRGB_CURVE,
+  WIDE_COLUMNS,
+} from './icc-file.js';
 import { type ColourType, profileChunk, writePng } from './png-file.js';
 
 const folder = pictureFolder();
@@ -189,8 +197,8 @@ describe('readScene: alpha', () => {
 });
 
 describe('readScene: orientation', () => {
-  // 2 x 3 pixels, named by their value: the picture as it is to be seen is [1 2 / 3 4 / 5 6] for orientation 1
-  const upright: Readonly<Record<number, [width: number, height: number, values: number[]]>> = {
+  // 2 x 3 blocks, named by their value: what is to be seen is [1 2 / 3 4 / 5 6] for orientation 1
+  const upright: Readonly<Record<number, [columns: number, rows: number, values: number[]]>> = {
     1: [2, 3, [1, 2, 3, 4, 5, 6]],
     2: [2, 3, [2, 1, 4, 3, 6, 5]],
     3: [2, 3, [6, 5, 4, 3, 2, 1]],
@@ -200,19 +208,27 @@ describe('readScene: orientation', () => {
     7: [3, 2, [6, 4, 2, 5, 3, 1]],
     8: [3, 2, [2, 4, 6, 1, 3, 5]],
   };
+  const BLOCK = 16; // whole blocks of the lossy formats
+  const [width, height] = [2 * BLOCK, 3 * BLOCK];
+  const samples = Uint8Array.from({ length: width * height }, (_, i) => {
+    const [column, row] = [Math.floor((i % width) / BLOCK), Math.floor(i / width / BLOCK)];
+    return 40 * (1 + 2 * row + column);
+  });
 
   // Source: Exif 2.3 (CIPA DC-008), tag 0x0112, where row 0 and column 0 of the file belong (from memory)
   it.each([1, 2, 3, 4, 5, 6, 7, 8])('turns EXIF orientation %i upright', async (orientation) => {
-    const samples = Buffer.from([1, 2, 3, 4, 5, 6].map((value) => 40 * value));
-    const image = sharp(samples, { raw: { width: 2, height: 3, channels: 1 } }).withMetadata({ orientation });
-    const [width, height, values] = upright[orientation];
-    for (const format of ['png', 'tiff', 'webp'] as const) {
-      const options =
-        format === 'webp' ? { lossless: true } : format === 'tiff' ? { compression: 'none' } : {};
-      const path = folder.put(`o.${format}`, await image.clone().toFormat(format, options).toBuffer());
+    const image = sharp(samples, { raw: { width, height, channels: 1 } }).withMetadata({ orientation });
+    const [columns, rows, values] = upright[orientation];
+    for (const format of ['jpeg', 'png', 'tiff', 'webp'] as const) {
+      const path = folder.put(`turned.${format}`, await image.clone().toFormat(format).toBuffer());
       const { raster } = await readScene(path, { sceneLinear: true });
-      expect([raster.width, raster.height]).toEqual([width, height]);
-      expect([...raster.planes[0]].map((value) => Math.round((255 * value) / 40))).toEqual(values);
+      expect([raster.width, raster.height]).toEqual([columns * BLOCK, rows * BLOCK]);
+      const found = values.map((_, at) => {
+        const [column, row] = [at % columns, Math.floor(at / columns)];
+        const place = (row * BLOCK + BLOCK / 2) * raster.width + column * BLOCK + BLOCK / 2;
+        return Math.round((255 * raster.planes[0][place]) / 40);
+      });
+      expect(found).toEqual(values);
     }
   });
 });
@@ -303,7 +319,8 @@ describe('readScene: colour profiles', () => {
       const [codes, fullScale] = bitDepth === 8 ? [pixels, 255] : [pixels16, 65535];
       raster.planes.forEach((plane, channel) => {
         plane.forEach((value, i) => {
-          // the profile states its matrix to 1/65536, and its inverse enlarges that by up to 3 in each of three terms
+          // the profile states its matrix to 1/65536, and its inverse enlarges that by up to 3 in each of
+          // three terms
           expect(Math.abs(value - codes[3 * i + channel] / fullScale)).toBeLessThan(1.5e-4);
         });
       });
@@ -400,6 +417,26 @@ describe('readScene: colour profiles', () => {
     const { raster, warnings } = await readScene(path);
     expect(raster.planes[0][1]).toBe(Math.fround(srgbDecode(90 / 255)));
     expect(warnings).toEqual([expect.stringContaining('broken.jpg: the embedded colour profile')]);
+  });
+
+  // straight from black to white in lightness: device value d is L* = 100 d
+  const cube = cubeProfile((r, g, b) => [(100 * (r + g + b)) / 3, 0, 0]);
+
+  it('leaves 8-bit colour with a profile beyond curves and a matrix to the picture library', async () => {
+    const path = folder.put('cube.jpg', withJpegProfile(await flatJpeg(128, 'srgb'), cube));
+    const { raster, warnings } = await readScene(path);
+    expect(warnings).toEqual([]);
+    // Source: CIE 1976 L*, Y = ((L + 16) / 116)^3. An 8-bit step here is 0.004, and both ends are rounded to one
+    const luminance = (((100 * 128) / 255 + 16) / 116) ** 3;
+    for (const plane of raster.planes) expect(Math.abs(plane[9] - luminance)).toBeLessThan(0.005);
+  });
+
+  it('refuses 16-bit colour with such a profile', async () => {
+    const fault = await faultOf(() => readScene(folder.put('cube.png', colour(cube, 16))));
+    expect(fault.message).toBe('has a colour profile that is more than curves and a matrix');
+    expect((await readScene(folder.put('cube.png', colour(cube, 16)), { sceneLinear: true })).bitDepth).toBe(
+      16,
+    );
   });
 
   it.each([8, 16] as const)(

@@ -147,11 +147,20 @@ describe('readScene: what is no picture to be read', () => {
   });
 
   it('refuses colours in another space than light or ink', async () => {
-    const path = folder.put(
-      'lab.tif',
-      await image().toColourspace('lab').tiff({ compression: 'lzw' }).toBuffer(),
-    );
-    expect((await faultOf(() => readScene(path))).allowed).toBeDefined();
+    const lab = await image().toColourspace('lab').tiff({ compression: 'lzw' }).toBuffer();
+    const fault = await faultOf(() => readScene(folder.put('lab.tif', lab)));
+    expect(fault).toMatchObject({
+      message: 'has channels that cannot be told apart',
+      found: '3 (lab)',
+      allowed: 'grey, RGB or CMYK, each with or without alpha',
+    });
+  });
+
+  it('refuses more channels than colours and alpha', async () => {
+    const more = { raw: { width: SIDE, height: SIDE, channels: 3 } } as const;
+    const six = await image().joinChannel(Buffer.from(noise), more).tiff({ compression: 'none' }).toBuffer();
+    const fault = await faultOf(() => readScene(folder.put('six.tif', six)));
+    expect(fault).toMatchObject({ message: 'has channels that cannot be told apart', found: '6 (srgb)' });
   });
 
   it('refuses ink as linear light', async () => {
