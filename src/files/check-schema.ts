@@ -3,6 +3,7 @@ import type { z } from 'zod';
 import { type Fault, InputError } from '../errors.js';
 import { nearest } from './nearest.js';
 import type { CrossFault } from './schemas/cross-check.js';
+import { keysOf } from './schemas/keys.js';
 import { keyPath, type Path, type Source, valueAt } from './source.js';
 
 type Issue = z.core.$ZodIssue;
@@ -19,7 +20,7 @@ export function checkSchema<Schema extends z.ZodType>(
     ? []
     : result.error.issues.flatMap((issue) => innermost(issue, [], source.value));
   const known = issues.filter(({ path }) => source.isLost?.(path) !== true);
-  const faults = withoutEchoes(known.flatMap((issue) => describe(issue, source)));
+  const faults = withoutEchoes(known.flatMap((issue) => describe(issue, source, schema)));
   if (faults.length > 0 || source.faults.length > 0)
     throw new InputError(inOrder([...source.faults, ...faults]));
   return result.data as z.output<Schema>;
@@ -66,14 +67,14 @@ function isOtherForm(issue: Issue, value: unknown): boolean {
   return issue.code === 'invalid_value' && issue.values.every((choice) => typeof choice !== typeof value);
 }
 
-function describe(issue: Issue, source: Source): Draft[] {
+function describe(issue: Issue, source: Source, schema: z.ZodType): Draft[] {
   const { path } = issue;
   const value = valueAt(source.value, path);
   const allowed = issue.message === NOTHING_TO_SAY ? undefined : issue.message;
   switch (issue.code) {
     case 'unrecognized_keys':
       return issue.keys.map((key) =>
-        describeUnknownKey([...path, key], key, issue.message.split(', '), source),
+        describeUnknownKey([...path, key], key, issue.message.split(', '), source, schema),
       );
     case 'invalid_key': {
       const words = {
@@ -102,16 +103,28 @@ function describe(issue: Issue, source: Source): Draft[] {
   }
 }
 
-function describeUnknownKey(path: Path, key: string, known: readonly string[], source: Source): Draft {
-  const near = nearest(key, known);
-  const fault = {
-    ...source.place(path, 'key'),
-    message: 'is no known key',
-    found: key,
-    allowed: known.join(', '),
-    advice: near === undefined ? undefined : `Did you mean '${near}'?`,
-  };
+function describeUnknownKey(
+  path: Path,
+  key: string,
+  known: readonly string[],
+  source: Source,
+  schema: z.ZodType,
+): Draft {
+  const misplaced = adviceOnPlace(key, schema);
+  const near = misplaced === undefined ? nearest(key, known) : undefined;
+  const advice = near === undefined ? misplaced : `Did you mean '${near}'?`;
+  const place = source.place(path, 'key');
+  const fault = { ...place, message: 'is no known key', found: key, allowed: known.join(', '), advice };
   return near === undefined ? { fault } : { fault, meant: keyPath([...path.slice(0, -1), near]) };
+}
+
+/** Where a key belongs that the schema knows, but elsewhere. */
+function adviceOnPlace(key: string, schema: z.ZodType): string | undefined {
+  const ending = `.${key}`;
+  const holders = [...keysOf(schema)].flatMap(([path]) =>
+    path.endsWith(ending) ? [path.slice(0, -ending.length)] : [],
+  );
+  return holders.length === 0 ? undefined : `It belongs under ${holders.join(' or ')}.`;
 }
 
 function messageFor(issue: Issue, value: unknown): string {

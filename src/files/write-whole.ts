@@ -64,7 +64,7 @@ export function stageFile(path: string): StagedFile {
   return {
     path,
     temporary,
-    write: (data) => guarded(path, () => writeThrough(temporary, data)),
+    write: (data) => guarded(path, () => writeThrough(temporary, data), temporary),
     commit: () => commitTemporary(path, temporary, target),
     discard: () => removeTemporary(temporary),
   };
@@ -206,16 +206,17 @@ function assertDistinct(paths: readonly string[]): void {
   }
 }
 
-async function guarded(path: string, run: () => Promise<void>): Promise<void> {
+async function guarded(path: string, run: () => Promise<void>, temporary?: string): Promise<void> {
   try {
     await run();
   } catch (error) {
+    if (temporary !== undefined && !temporaries.has(temporary)) throw new InterruptedError(); // removed under our hands
     throw writeFailure(path, error);
   }
 }
 
 const USER_FAULTS: Readonly<Record<string, string>> = {
-  ENOENT: `cannot be written: the folder takes no new files`,
+  ENOENT: 'cannot be written: the folder takes no new files',
   EACCES: 'cannot be written: permission denied',
   EPERM: 'cannot be written: permission denied',
   EROFS: 'cannot be written: the disk is read-only',

@@ -92,17 +92,23 @@ class YamlSource implements Source {
 
   #checkedRoot(): YAMLMap {
     const { errors, contents } = this.#document;
-    if (errors.length > 0) {
-      throw new InputError(
-        errors.map(({ code, message, pos }) => ({ ...this.#at(pos[0]), ...syntaxFault(code, message) })),
-      );
-    }
+    if (errors.length > 0) throw new InputError(this.#syntaxFaults());
     if (contents === null || (isScalar(contents) && contents.value === null)) {
       throw new InputError({ file: this.file, message: 'is empty' });
     }
     if (isMap(contents)) return contents;
     const allowed = 'lines of the form `key: value`';
     throw new InputError({ ...this.#at(contents.range![0]), message: 'is not a mapping', allowed });
+  }
+
+  /** One a line: what follows in the same line mostly follows from the first. */
+  #syntaxFaults(): Fault[] {
+    const byLine = new Map<number | undefined, Fault>();
+    for (const { code, message, pos } of this.#document.errors) {
+      const fault = { ...this.#at(pos[0]), ...syntaxFault(code, message) };
+      if (!byLine.has(fault.line)) byLine.set(fault.line, fault);
+    }
+    return [...byLine.values()];
   }
 
   #visit(node: Node | null, path: Path, ancestors: readonly Node[]): void {

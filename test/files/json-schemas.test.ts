@@ -2,7 +2,7 @@ import { describe, expect, test } from 'vitest';
 import { parse } from 'yaml';
 import { z } from 'zod';
 import { jsonSchemas } from '../../src/files/json-schemas.js';
-import { numberKeys } from '../../src/files/schemas/number-keys.js';
+import { numberKeys } from '../../src/files/schemas/keys.js';
 import { wholeRig } from '../../src/files/schemas/rig.js';
 import { CAMERA, LENS, PRESCRIPTION, RECIPE, RIG, TASK } from './packhouse.js';
 

@@ -2,7 +2,7 @@ import { expect, test } from 'vitest';
 import { parse } from 'yaml';
 import { formatFault } from '../../src/errors.js';
 import { loadTask, parseTask } from '../../src/files/load-task.js';
-import { FIELD_PLACES } from '../../src/files/schemas/field-point.js';
+import { PLACES } from '../../src/optics/field-points.js';
 import { faultsOf, RIG, TASK, useFolder } from './packhouse.js';
 
 const folder = useFolder();
@@ -49,7 +49,7 @@ test('the other ways to state a size or a limit, and the defaults', () => {
   });
 });
 
-test.each([...FIELD_PLACES, 0, 1.2, '0.7@-45', '1@22.5'])('field point %s', (zone) => {
+test.each([...PLACES, 0, 1.2, '0.7', '0.7@-45', '1@22.5'])('field point %s', (zone) => {
   expect(parseTask({ zones: [zone], require: [{ edge_blur: { at_most_px: 1 } }] }).zones).toEqual([zone]);
 });
 
@@ -58,7 +58,11 @@ const FIELD_WORDS =
 
 // [a part of the task, what stands there instead, the one fault that follows]
 test.each([
-  ['0.7@90', '0.7@up', `2:20: zones[2]: has the wrong form, found "0.7@up". Allowed: ${FIELD_WORDS}.`],
+  [
+    '0.7@90',
+    '0.7@up',
+    `2:20: zones[2]: no field point has this name, found "0.7@up". Allowed: ${FIELD_WORDS}.`,
+  ],
   ['0.7@90', '-0.7', `2:20: zones[2]: is too small, found -0.7. Allowed: a number from 0 to 10.`],
   [
     '[axis, 0.7, 0.7@90, top_right]',

@@ -84,6 +84,13 @@ test('all faults of a file come at once, in the order of its lines, cross-checks
   ]);
 });
 
+test('a key that stands in the wrong part is told where it belongs', () => {
+  const [fault] = changed('mosaic: none', 'sensor_shift_um: 3');
+  expect(fault).toMatchObject({ key: 'camera.sensor_shift_um', advice: 'It belongs under mount.' });
+  const [two] = changed('camera:', 'f_number: 3\ncamera:');
+  expect(two).toMatchObject({ key: 'f_number', advice: 'It belongs under lens or mount.' });
+});
+
 test('a value that is long or has several lines is cut short', () => {
   const [fault] = changed('W131: 1.1', `W131: "${'long\\n'.repeat(100)}"`);
   expect(fault.found).toMatch(/^"long\\nlong.*…$/);
@@ -201,14 +208,14 @@ describe('a file of another kind', () => {
 });
 
 describe('a lens given by its surfaces', () => {
-  const with_ = (keys: string) =>
+  const rigWith = (keys: string) =>
     `lens:\n  prescription: triplet.lens.yaml\n${keys}camera:\n${CAMERA.replaceAll(/^(?=.)/gm, '  ')}`;
 
   test('leaves no room for coefficients', () => {
     folder.write('triplet.lens.yaml', PRESCRIPTION);
     const path = folder.write(
       'a.rig.yaml',
-      with_('  waves: {}\n  distortion_percent: 1\n  colour: {}\n  waves_by_wavelength: {}\n'),
+      rigWith('  waves: {}\n  distortion_percent: 1\n  colour: {}\n  waves_by_wavelength: {}\n'),
     );
     const faults = faultsOf(() => loadRig(path));
     expect(faults.map(({ key }) => key)).toEqual(
@@ -232,14 +239,14 @@ describe('a lens given by its surfaces', () => {
       'triplet.lens.yaml',
       PRESCRIPTION.replace('radius_mm: -20', 'radius_mm: 0'),
     );
-    const path = folder.write('a.rig.yaml', with_(''));
+    const path = folder.write('a.rig.yaml', rigWith(''));
     expect(faultsOf(() => loadRig(path))).toMatchObject([
       { file: prescription, line: 7, key: 'surfaces[3].radius_mm', message: 'is 0', found: '0' },
     ]);
   });
 
   test('is told where it is named when its file is missing', () => {
-    const path = folder.write('a.rig.yaml', with_(''));
+    const path = folder.write('a.rig.yaml', rigWith(''));
     expect(faultsOf(() => loadRig(path))).toMatchObject([
       {
         file: path,

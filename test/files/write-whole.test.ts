@@ -153,8 +153,15 @@ describe('stageFile', () => {
     removeTemporaries();
     expect(names()).toEqual(['a']);
     expect(() => commitAll(files)).toThrow(InterruptedError);
+    await expect(files[1].write('new')).rejects.toThrow(InterruptedError);
+    expect(names()).toEqual(['a']);
     expect(read('a')).toBe('old');
   });
+});
+
+test('temporaries go when the process ends by itself, too', () => {
+  stageFile(folder.path('a')).discard();
+  expect(process.listeners('exit')).toContain(removeTemporaries);
 });
 
 describe('assertWritable', () => {

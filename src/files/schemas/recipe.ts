@@ -2,7 +2,7 @@
 import { z } from 'zod';
 import { nearest } from '../nearest.js';
 import { checkOneOf, crossChecked, numberIn, type Report, type Unchecked } from './cross-check.js';
-import { numberKeys } from './number-keys.js';
+import { numberKeys } from './keys.js';
 import { wholeRig } from './rig.js';
 import { choice, fileName, list, mapping, number, pair } from './values.js';
 
