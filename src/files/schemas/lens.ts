@@ -5,7 +5,7 @@ import { prescriptionFile } from './prescription.js';
 import { choice, fileName, fNumber, list, mapping, number, pair, text, wavelengthNm } from './values.js';
 
 const coefficient = (what: string) =>
-  number({}, `${what}, in waves at h = 1 and rho = 1. Positive: undercorrected. Left out: 0.`).default(0);
+  number({}, `${what} In waves at h = 1 and rho = 1. Left out: 0.`).default(0);
 
 const distortionPercent = number(
   { above: -100, max: 100, unit: '%' },
@@ -13,17 +13,17 @@ const distortionPercent = number(
 );
 
 const terms = {
-  W040: coefficient('Spherical aberration'),
-  W131: coefficient('Coma'),
-  W222: coefficient('Astigmatism'),
-  W220: coefficient('Field curvature'),
-  W020: coefficient('Defocus'),
-  W111: coefficient('Scale error'),
+  W040: coefficient('Spherical aberration. Positive: the marginal focus lies nearer the lens.'),
+  W131: coefficient('Coma. Positive: the flare points toward the axis.'),
+  W222: coefficient('Astigmatism.'),
+  W220: coefficient('Field curvature. Positive: the field curves toward the lens.'),
+  W020: coefficient('Defocus.'),
+  W111: coefficient('Scale error.'),
 };
 
 const waves = mapping({
   ...terms,
-  W311: number({}, 'Distortion, in waves at h = 1 and rho = 1. Positive: barrel. Left out: 0.').optional(),
+  W311: number({}, 'Distortion. Positive: barrel. In waves at h = 1 and rho = 1. Left out: 0.').optional(),
   distortion_percent: distortionPercent.optional(),
 }).describe(
   'The coefficients of the wavefront, in waves of wavelength_nm at f_number. An empty mapping {} is a perfect lens.',
@@ -34,7 +34,7 @@ const NM_KEY = /^\d+(\.\d+)?$/;
 const nmKey = z.string().regex(NM_KEY, { error: 'a wavelength in nm, from 100 to 20000' });
 
 const wavesByWavelength = z
-  .record(nmKey, mapping({ ...terms, W311: coefficient('Distortion') }), {
+  .record(nmKey, mapping({ ...terms, W311: coefficient('Distortion. Positive: barrel.') }), {
     error: 'a mapping from wavelengths in nm to coefficients',
   })
   .describe(
