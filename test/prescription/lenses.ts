@@ -82,3 +82,27 @@ export function thinLensSurfaces(glass: Glass, n: number, q: number, focalMm: nu
     { radiusMm: radius(q - 1), thicknessMm: 0 },
   ];
 }
+
+/** A three-element lens of f 12 mm at f/4 to 4.6 mm image height, for a camera over the belt of a packing hall. Its rims cut a little of the beam in
+ * the corners. */
+export function packhouseLens(overrides: Partial<Prescription> = {}): Prescription {
+  const crown = { nd: 1.6935, vd: 53.2 };
+  const flint = { nd: 1.6727, vd: 32.2 };
+  return {
+    name: 'three-element lens, packing hall',
+    wavelengthNm: 550,
+    surfaces: [
+      { radiusMm: 3.83, thicknessMm: 1.64, glass: crown, semiDiameterMm: 2.2 },
+      { radiusMm: -98, thicknessMm: 0.25, semiDiameterMm: 1.75 },
+      { radiusMm: -18, thicknessMm: 0.6, glass: flint, semiDiameterMm: 1.55 },
+      { radiusMm: 3.41, thicknessMm: 0.23, semiDiameterMm: 1.25 },
+      { stop: true, thicknessMm: 0.92 },
+      { radiusMm: 9.32, thicknessMm: 3.8, glass: crown, semiDiameterMm: 1.7 },
+      { radiusMm: -24.7, semiDiameterMm: 2.5 },
+    ],
+    scaleToFocalLengthMm: 12,
+    aperture: { fNumber: 4 },
+    field: { imageHeightMm: 4.6 },
+    ...overrides,
+  };
+}
