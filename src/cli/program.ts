@@ -25,7 +25,7 @@ export function buildProgram(): Command {
       `
 Example:
   foreglass start hall && cd hall
-  foreglass zones --rig packhouse.rig.yaml
+  foreglass zones --rig tags.rig.yaml
 
 Exit status: 0 done, 1 done but the task is not met, 2 the input is wrong,
 3 the run failed, 130 interrupted.`,

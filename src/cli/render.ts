@@ -96,7 +96,7 @@ export function renderCommand(): Command {
   return command
     .addHelpText(
       'after',
-      '\nExample:\n  foreglass render crate-tags.png --rig packhouse.rig.yaml --out picture.png',
+      '\nExample:\n  foreglass render scenes/tags/crate-tags.png --rig tags.rig.yaml --out tags.png',
     )
     .action(async (scene: string, texts: RenderTexts) => {
       const values = new OptionValues();

@@ -56,10 +56,7 @@ export function zonesCommand(): Command {
     );
   for (const option of commonOptions('the figures')) command.addOption(option);
   return command
-    .addHelpText(
-      'after',
-      '\nExample:\n  foreglass zones --rig packhouse.rig.yaml --fields axis,0.7,top_right',
-    )
+    .addHelpText('after', '\nExample:\n  foreglass zones --rig tags.rig.yaml --fields axis,0.7,top_right')
     .action(async (texts: ZonesTexts) => {
       const { parseFieldPoint } = await import('../optics/field-points.js');
       const values = new OptionValues();

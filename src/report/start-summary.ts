@@ -2,7 +2,8 @@
 
 export function startSummary({ folder, files }: { folder: string; files: readonly string[] }): string {
   const rig = files.find((name) => name.endsWith('.rig.yaml'));
-  const scene = files.find((name) => name.endsWith('.png'));
+  const scenes = files.filter((name) => name.endsWith('.png'));
+  const scene = scenes.find((name) => rig !== undefined && name.includes(stem(rig))) ?? scenes[0];
   const next = [`cd ${shellWord(folder)}`];
   if (rig !== undefined) next.push(`foreglass zones --rig ${shellWord(rig)}`);
   if (rig !== undefined && scene !== undefined) {
@@ -16,10 +17,16 @@ export function startSummary({ folder, files }: { folder: string; files: readonl
       ? ['  and schemas, with which an editor checks and completes the YAML files']
       : []),
     '',
-    'What to do next: look at the contrast by field zone, render a scene, then change the rig and do both again.',
+    'What to do next: look at the contrast by field zone, render a scene,',
+    'then change the rig and do both again.',
     ...next.map((line) => `  ${line}`),
     '',
   ].join('\n');
+}
+
+/** What a rig is called: `belt` of `belt.rig.yaml`. A scene that bears the name is meant for it. */
+function stem(rig: string): string {
+  return rig.slice(rig.lastIndexOf('/') + 1, -'.rig.yaml'.length);
 }
 
 /** A word as a POSIX shell reads it. */

@@ -40,6 +40,14 @@ describe('startSummary', () => {
     expect(text).toContain('  foreglass render scenes/tags.png --rig packhouse.rig.yaml --out picture.png\n');
   });
 
+  it('takes the scene that bears the name of the rig', () => {
+    const text = startSummary({
+      folder: 'hall',
+      files: ['scenes/apples.png', 'scenes/tags/a.png', 'tags.rig.yaml'],
+    });
+    expect(text).toContain('  foreglass render scenes/tags/a.png --rig tags.rig.yaml --out picture.png\n');
+  });
+
   it('does not speak of files that are not there', () => {
     const text = startSummary({ folder: 'hall', files: ['a.task.yaml'] });
     expect(text).not.toContain('foreglass');
