@@ -109,7 +109,7 @@ function addIntensity(
       const rho2 = m * m + s * s;
       const inside = 0.5 + (1 - Math.sqrt(rho2)) * softness; // the rim is soft over about one sample
       if (inside <= 0) continue;
-      const amplitude = inside < 1 ? inside : 1;
+      const amplitude = Math.min(1, inside);
       const phase = 2 * Math.PI * (rho2 * (w40 * rho2 + w31 * m + w20) + m * (w22 * m + w11 + u0));
       const at = 2 * (a & (nu - 1));
       input[at] = amplitude * Math.cos(phase);

@@ -1,10 +1,11 @@
 /** Contrast by field zone: what the lens, and lens and camera together, do at each field point in each band. */
 import { InputError } from '../errors.js';
-import { bandLateralColourUm, wavelengthsOutsideTable } from './colour.js';
+import { bandLateralColourUm } from './colour.js';
 import { distortionPercent } from './distortion.js';
 import { defaultFields, type FieldPoint, type FieldSpec, fieldPoint } from './field-points.js';
 import { bestFocusUm, mtf50LpPerMm } from './focus.js';
 import { relativeIllumination } from './illumination.js';
+import { colourWarnings } from './limits.js';
 import { bandDiffractionMtf, bandLines, bandMtf, pixelMtf } from './otf.js';
 import type { WavefrontLine } from './psf.js';
 import { type Band, pixelPitchMm, type Rig } from './rig.js';
@@ -189,11 +190,7 @@ function warningsFor(rig: Rig, points: readonly FieldPoint[], frequencies: reado
       `${past.map(({ place, field }) => place ?? `h = ${field}`).join(', ')}: the image height is past ` +
         `full_field_mm = ${lens.fullFieldMm}, so the lens is used past the field that its figures cover.`,
     );
-  const outside = wavelengthsOutsideTable(lens, camera.bands);
-  if (outside.length > 0)
-    warnings.push(
-      `${outside.map((nm) => `${nm} nm`).join(', ')}: the colour tables end before, and their last values are used.`,
-    );
+  warnings.push(...colourWarnings(rig));
   const nyquist = 0.5 / pixelPitchMm(camera);
   const above = frequencies.filter((lpPerMm) => lpPerMm > nyquist * (1 + 1e-9));
   if (above.length > 0)
