@@ -8,9 +8,12 @@ import {
   encodeRaw,
   fitToSensor,
   formatOf,
+  limitPictureThreads,
   type PictureFormat,
   readScene,
+  refuseLargeSide,
   refuseLinearFormat,
+  sharedPlanes,
   toBands,
 } from '../files/pictures/index.js';
 import { resultData } from '../files/result-data.js';
@@ -98,6 +101,7 @@ export async function render(options: RenderOptions): Promise<RenderResult> {
   const { rig, oversample, seeds, threads, signal } = settings;
   const outputs = checkOutputs(options);
   refuseUnformable(rig, oversample);
+  limitPictureThreads(threads);
   const crew = new Crew(threads); // its workers start while the scene is read
   try {
     const decodeStart = performance.now();
@@ -222,6 +226,8 @@ function checkOutputs(options: RenderOptions): { out?: PictureFormat; raw?: Pict
       advice: 'State the mosaic of the camera, or write --out with --linear.',
     });
   }
+  if (outFormat !== undefined)
+    refuseLargeSide(outFormat, rig.camera.pixels[0], rig.camera.pixels[1], '--out');
   if (out !== undefined) assertWritable(out, '--out');
   if (raw !== undefined) assertWritable(raw, '--raw');
   if (recordFile !== undefined) assertWritable(recordFile, '--record');
@@ -235,16 +241,25 @@ async function readInto(
   { rig, oversample }: Settings,
 ): Promise<Raster & { warnings: string[] }> {
   const { arena } = crew;
-  const allocate: AllocatePlanes = (width, height, count) =>
-    Array.from({ length: count }, () => arena.floats(arena.allocateFloats(width * height), width * height));
   const [width, height] = rig.camera.pixels.map((side) => side * oversample);
+  const allocate: AllocatePlanes = (planeWidth, planeHeight, count) =>
+    planeWidth === width && planeHeight === height
+      ? Array.from({ length: count }, () =>
+          arena.floats(arena.allocateFloats(width * height), width * height),
+        )
+      : sharedPlanes(planeWidth, planeHeight, count); // a picture of another size is on its way to be fitted
   const read =
     typeof scene === 'string'
       ? await readScene(scene, { sceneLinear, allocate })
       : { raster: copyInto(allocate, scene), warnings: [] };
-  const fitted = fitToSensor(read.raster, width, height, { allocate });
   const bandNames = rig.camera.bands.map(({ name }) => name);
-  return { ...toBands(fitted, bandNames, { allocate }), warnings: read.warnings };
+  const resized = (raster: Raster) => fitToSensor(raster, width, height, { allocate });
+  // colours that the camera does not tell apart are added up before they are resized, not after
+  const isFewer = read.raster.planes.length > bandNames.length;
+  const bands = isFewer
+    ? resized(toBands(read.raster, bandNames, { allocate }))
+    : toBands(resized(read.raster), bandNames, { allocate });
+  return { ...bands, warnings: read.warnings };
 }
 
 function copyInto(allocate: AllocatePlanes, scene: Raster): Raster {

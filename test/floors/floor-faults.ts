@@ -5,11 +5,12 @@ import { parseSync } from 'vite';
 /** The floor of each folder of `src`. A file that lies in `src` itself counts as a folder named after it. */
 export const FLOORS: Readonly<Record<string, number>> = {
   errors: 0,
+  version: 0,
   kernels: 1,
   numeric: 1,
   optics: 2,
   prescription: 2,
-  camera: 3,
+  camera: 2.5,
   charts: 3,
   files: 3,
   imaging: 3,
