@@ -1,4 +1,4 @@
-/** From electrons to raw numbers: the gain, the pedestal and the levels that a reader of the raw numbers needs. */
+/** From electrons to raw numbers: the gain, the pedestal and what a reader of these numbers must know. */
 import { InputError } from '../errors.js';
 import type { Sensor } from '../optics/rig.js';
 
@@ -18,24 +18,27 @@ export interface RawLevels {
   blackLevelDn: number;
   /** The raw number that a full well gives, which is the largest one. */
   whiteLevelDn: number;
-  /** The raw number that develops to 1: the scene's white, or a full well where white_e is more than the well holds. */
+  /** The raw number that develops to 1: the scene's white, or a full well where white_e is more than the well
+   * holds. */
   sceneWhiteDn: number;
   /** The system gain K, DN per electron. */
   gainDnPerE: number;
 }
 
-/** The pedestal keeps this many standard deviations of the dark signal above 0. EMVA 1288 asks that the offset be set so high that
- * the dark image does not underflow to a noteworthy extent (it names 0.5 % of the pixels; from memory), because clipped noise falsifies
- * the dark mean and the dark noise. At 6 deviations one pixel in 1e9 is clipped. */
+/** The pedestal keeps this many standard deviations of the dark signal above 0. EMVA 1288 asks that the
+ * offset be set so high that the dark image does not underflow to a noteworthy extent (it names 0.5 % of the
+ * pixels; from memory), because clipped noise falsifies the dark mean and the dark noise. At 6 deviations one
+ * pixel in 1e9 is clipped. */
 const PEDESTAL_DEVIATIONS = 6;
 
 /** A rig without a sensor has no electrons: the raw numbers are the linear values times 65535. */
 const WITHOUT_SENSOR: Converter = { gainDnPerE: 65535, offsetDn: 0, whiteLevelDn: 65535 };
 
-/** The converter of a sensor: a full well lands on the largest raw number, K = (2^bits - 1 - offset) / full_well_e, and the pedestal
- * stands 6 standard deviations of the dark signal (temporal and DSNU) above 0. Without those two noises there is no pedestal.
+/** The converter of a sensor: a full well lands on the largest raw number, K = (2^bits - 1 - offset) /
+ * full_well_e, and the pedestal stands 6 standard deviations of the dark signal (temporal and DSNU) above 0.
+ * Without those two noises there is no pedestal.
  *
- * @throws {InputError} where the dark signal or its noise leaves no room in the well, or for a bit depth past 16
+ * @throws {InputError} where the dark signal or its noise leaves no room in the well; bit depth past 16
  */
 export function converterFor(sensor: Sensor | undefined): Converter {
   if (sensor === undefined) return WITHOUT_SENSOR;
@@ -51,7 +54,8 @@ export function converterFor(sensor: Sensor | undefined): Converter {
 export function rawLevels(sensor: Sensor | undefined, converter: Converter): RawLevels {
   const { gainDnPerE, offsetDn, whiteLevelDn } = converter;
   const darkE = sensor?.darkE ?? 0;
-  // An overexposed camera shows a full well as white, so the picture grows brighter with white_e from there on, as on the bench.
+  // An overexposed camera shows a full well as white, so the picture grows brighter with white_e from there
+  // on, as on the bench.
   const whiteE = sensor === undefined ? 1 : Math.min(sensor.whiteE, sensor.fullWellE - darkE);
   const blackLevelDn = offsetDn + gainDnPerE * darkE;
   return { blackLevelDn, whiteLevelDn, sceneWhiteDn: blackLevelDn + gainDnPerE * whiteE, gainDnPerE };

@@ -2,18 +2,20 @@
 import { InputError } from '../errors.js';
 import type { MosaicSites } from './mosaic.js';
 
-/** Fill in the two colours that each pixel of a mosaic did not see, for rows rowStart <= row < rowEnd: the linear 5 x 5 filters of
- * H. S. Malvar, L. He and R. Cutler, "High-quality linear interpolation for demosaicing of Bayer-patterned color images", ICASSP 2004
- * (from memory). Each is a bilinear estimate corrected by the Laplacian of the colour that was seen there, in the Wiener gains that
- * the paper rounds to eighths. Every filter sums to 1 and keeps linear ramps.
+/** Fill in the two colours that each pixel of a mosaic did not see, for rows rowStart <= row < rowEnd: the
+ * linear 5 x 5 filters of H. S. Malvar, L. He and R. Cutler, "High-quality linear interpolation for
+ * demosaicing of Bayer-patterned color images", ICASSP 2004 (from memory). Each is a bilinear estimate
+ * corrected by the Laplacian of the colour that was seen there, in the Wiener gains that the paper rounds to
+ * eighths. Every filter sums to 1 and keeps linear ramps.
  *
- * Rows and columns past the border are mirrored without repeating the edge sample, which keeps the phase of the mosaic.
+ * Rows and columns past the border are mirrored without repeating the edge sample, which keeps the phase of
+ * the mosaic.
  *
  * @param mosaic  one sample a pixel, row-major, width x height, at least 2 x 2
  * @param black   value of `mosaic` that becomes 0
  * @param scale   factor from there: 1 / (value that becomes 1 - black)
- * @param out     three planes of width x height in the order that `sites` counts them; not clipped: an overshoot at an edge or noise
- *                may leave 0..1; only these rows are written
+ * @param out     three planes of width x height in the order that `sites` counts them; not clipped: an
+ *                overshoot at an edge or noise may leave 0..1; only these rows are written
  * @throws {InputError} for fewer than 2 x 2 pixels
  */
 export function demosaicRows(
@@ -44,7 +46,8 @@ export function demosaicRows(
     load(row + 2, rows[4]);
     const left = sites[2 * (row & 1)];
     const right = sites[2 * (row & 1) + 1];
-    // red or blue: `own` is the one that this row sees beside green, `other` the one of the rows above and below
+    // red or blue: `own` is the one that this row sees beside green, `other` the one of the rows above and
+    // below
     const ownPhase = left === green ? 1 : 0;
     const own = left === green ? right : left;
     const other = 3 - green - own;
@@ -77,7 +80,7 @@ function fillOwnSites(
   }
 }
 
-/** Pixels that see green: red and blue are missing, one beside it along the row, the other along the column. */
+/** Pixels that see green: red and blue are missing, one beside it in the row, the other in the column. */
 function fillGreenSites(
   rows: readonly Float64Array[],
   phase: number,

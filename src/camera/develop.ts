@@ -3,15 +3,18 @@ import { rawLevels } from './converter.js';
 import { demosaicRows } from './demosaic.js';
 import type { Exposure } from './exposure.js';
 
-/** Develop rows rowStart <= row < rowEnd: subtract the black level, scale so that the scene's white is 1, and fill in the colours of a
- * mosaic. A mosaic needs two rows more of `raw` on either side, so expose every row first.
+/** Develop rows rowStart <= row < rowEnd: subtract the black level, scale so that the scene's white is 1, and
+ * fill in the colours of a mosaic. A mosaic needs two rows more of `raw` on either side, so expose every row
+ * first.
  *
- * The scale is that of the light that went in, so without noise the picture is the scene to within half a raw number. Only where white_e
- * is more than the well holds does the scale follow the well, and a saturated pixel is white.
+ * The scale is that of the light that went in, so without noise the picture is the scene to within half a raw
+ * number. Only where white_e is more than the well holds does the scale follow the well, and a saturated
+ * pixel is white.
  *
  * @param raw      from `exposeRows`, with the same `exposure`
- * @param picture  one plane a band, width x height, linear; not clipped: noise goes a little below 0 and above 1, and cutting it off
- *                 would falsify means; whoever encodes the picture clips it; only these rows are written
+ * @param picture  one plane a band, width x height, linear; not clipped: noise goes a little below 0 and
+ *                 above 1, and cutting it off would falsify means; whoever encodes the picture clips it; only
+ *                 these rows are written
  * @throws {InputError} for a mosaic on fewer than 2 x 2 pixels
  */
 export function developRows(

@@ -8,20 +8,23 @@ import type { Exposure } from './exposure.js';
 const FIXED_PATTERN_STREAM = 1;
 const TEMPORAL_STREAM = 2;
 
-/** Expose rows rowStart <= row < rowEnd: the linear camera model of EMVA 1288 (release 4.0 Linear; cited from memory).
+/** Expose rows rowStart <= row < rowEnd: the linear camera model of EMVA 1288 (release 4.0 Linear; cited from
+ * memory).
  *
  *     charge  = min(full_well_e, Poisson(white_e value (1 + PRNU) + dark_e))
  *     DN      = round(offset + K (charge + DSNU + dark_noise_e N(0, 1))), clipped to 0..white level
  *
- * PRNU is a spread of the photo-response, so it multiplies the light and not the dark signal. DSNU is a spread of the dark signal's
- * mean; it may be negative, so it is added as an offset behind the well rather than to the mean of a Poisson count, which leaves its
- * size free of the temporal noise. The dark signal dark_e has its shot noise; dark_noise_e is the read-out's.
+ * PRNU is a spread of the photo-response, so it multiplies the light and not the dark signal. DSNU is a
+ * spread of the dark signal's mean; it may be negative, so it is added as an offset behind the well rather
+ * than to the mean of a Poisson count, which leaves its size free of the temporal noise. The dark signal
+ * dark_e has its shot noise; dark_noise_e is the read-out's.
  *
- * The noise of a pixel depends on (seed, plane, row, column) alone, and its fixed pattern on (camera seed, plane, row, column): any split
- * into rows gives the same numbers, and a mosaic gives at each site the very number of the full-colour picture.
+ * The noise of a pixel depends on (seed, plane, row, column) alone, and its fixed pattern on (camera seed,
+ * plane, row, column): any split into rows gives the same numbers, and a mosaic gives at each site the very
+ * number of the full-colour picture.
  *
- * @param light  linear light 0..1, relative illumination applied; one plane a band, row-major, width x height; values below 0 and NaN
- *               count as dark
+ * @param light  linear light 0..1, relative illumination applied; one plane a band, row-major, width x
+ *               height; values below 0 and NaN count as dark
  * @param raw    one plane with a mosaic, else one a band; width x height; only these rows are written
  */
 export function exposeRows(

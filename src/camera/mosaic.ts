@@ -2,14 +2,17 @@
 import { InputError } from '../errors.js';
 import type { Mosaic } from '../optics/rig.js';
 
-/** The plane that each site of the repeating 2 x 2 square sees: row 0 column 0, row 0 column 1, row 1 column 0, row 1 column 1. */
+/** The plane that each site of the repeating 2 x 2 square sees: the upper two from the left,
+ * then the lower two. */
 export type MosaicSites = readonly [number, number, number, number];
 
 const BAND_OF_LETTER: Readonly<Record<string, string>> = { r: 'red', g: 'green', b: 'blue' };
 
-/** The sites of a mosaic: its four letters name the colours of the top left 2 x 2 pixels row by row (common practice).
+/** The sites of a mosaic: its four letters name the colours of the top left 2 x 2 pixels row by row (common
+ * practice).
  *
- * @param bandNames  names of the planes, in their order; three with `red`, `green` and `blue` where there is a mosaic
+ * @param bandNames  names of the planes, in their order; three with `red`, `green` and `blue` where there is
+ *                   a mosaic
  * @returns undefined without a mosaic
  * @throws {InputError} where the bands are not red, green and blue
  */
@@ -28,8 +31,8 @@ export function mosaicSites(mosaic: Mosaic, bandNames: readonly string[]): Mosai
   return [plane(a), plane(b), plane(c), plane(d)];
 }
 
-/** What a mosaic leaves of a full-colour picture: each pixel keeps the value of its own colour. For pictures without noise; a sensor
- * with noise is sampled by `exposeRows`.
+/** What a mosaic leaves of a full-colour picture: each pixel keeps the value of its own colour. For pictures
+ * without noise; a sensor with noise is sampled by `exposeRows`.
  *
  * @param planes  row-major, `width` samples a row
  * @param out     one plane of the same size; only rows rowStart <= row < rowEnd are written

@@ -20,8 +20,8 @@ export interface FlatFieldSignal {
  * With mu_e photo-electrons and quantisation variance 1/12 DN^2:
  * mean = offset + K (dark + mu_e); temporal variance = K^2 (sigma_d^2 + dark + mu_e) + 1/12;
  * spatial variance = K^2 (DSNU^2 + PRNU^2 mu_e^2); SNR = mu_e / sqrt(sigma_d^2 + dark + 1/(12 K^2) + mu_e).
- * Source: EMVA 1288 release 3.1 section 2 and release 4.0 Linear (from memory). The 1/12 holds while the total noise is above about
- * 0.6 DN; the full well is not looked at.
+ * Source: EMVA 1288 release 3.1 section 2 and release 4.0 Linear (from memory). The 1/12 holds while the
+ * total noise is above about 0.6 DN; the full well is not looked at.
  *
  * @param value  linear light 0..1, relative illumination included
  */

@@ -14,8 +14,8 @@ export interface SensorPicture {
   picture: Float32Array[];
 }
 
-/** Expose and develop all rows on this thread. Many threads share the work by calling `exposeRows` and, when every row is exposed,
- * `developRows`, each on rows of its own; the numbers are the same.
+/** Expose and develop all rows on this thread. Many threads share the work by calling `exposeRows` and, when
+ * every row is exposed, `developRows`, each on rows of its own; the numbers are the same.
  *
  * @param light  linear light 0..1, one plane a band, row-major, width x height of `exposure`; not changed
  */

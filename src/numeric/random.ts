@@ -13,11 +13,12 @@ const LARGE_MEAN = 10;
 const SMALL_MEAN_COUNTS = 128;
 const RECIPROCAL = Float64Array.from({ length: SMALL_MEAN_COUNTS + 1 }, (_, k) => 1 / k);
 
-/** A family of independent random sequences, one for each item (a pixel, a picture), keyed by a seed and a stream.
+/** A family of independent random sequences, one for each item (a pixel, a picture), keyed by a seed and a
+ * stream.
  *
- * `start(item)` goes to the beginning of that item's own sequence; the draws that follow depend on (seed, stream, item) and on
- * nothing else. So any thread may take any item in any order. Words come from the counter-based Threefry-4x32-20.
- * One object serves one thread.
+ * `start(item)` goes to the beginning of that item's own sequence; the draws that follow depend on (seed,
+ * stream, item) and on nothing else. So any thread may take any item in any order. Words come from the
+ * counter-based Threefry-4x32-20. One object serves one thread.
  */
 export class CounterRandom {
   private readonly key0: number;
@@ -74,7 +75,7 @@ export class CounterRandom {
     return (high * 2 ** 20 + low + 0.5) * 2 ** -52;
   }
 
-  /** Standard normal, by the ziggurat: 8 bits choose the layer and 24 others the place in it, in steps below 5e-7. */
+  /** Standard normal, by the ziggurat: 8 bits choose the layer and 24 others the place in it, steps below 5e-7. */
   normal(): number {
     const word = this.word();
     const layer = word & 255;
@@ -92,8 +93,8 @@ export class CounterRandom {
     return low + this.uniform() * (high - low) < bell(x) ? x : this.normal();
   }
 
-  /** The tail beyond the ziggurat. Source: G. Marsaglia, "Generating a Variable from the Tail of the Normal Distribution",
-   * Technometrics 6 (1964) 101 (from memory). */
+  /** The tail beyond the ziggurat. Source: G. Marsaglia, "Generating a Variable from the Tail of the Normal
+   * Distribution", Technometrics 6 (1964) 101 (from memory). */
   private normalTail(): number {
     for (;;) {
       const x = -Math.log(this.uniform()) / TAIL_START;
@@ -102,15 +103,15 @@ export class CounterRandom {
     }
   }
 
-  /** A Poisson count, exact for every mean up to about 1e9 but for the grain of the uniforms (2^-52 and 2^-32).
+  /** A Poisson count, exact up to means of about 1e9 but for the grain of the uniforms (2^-52, 2^-32).
    * @param mean  below or at 0, or not a number: 0 counts */
   poisson(mean: number): number {
     if (!(mean > 0)) return 0;
     return mean < LARGE_MEAN ? this.poissonByInversion(mean) : this.poissonByRejection(mean);
   }
 
-  /** Sequential search up the distribution function. Source: Devroye, Non-Uniform Random Variate Generation (1986), X.3 (from
-   * memory). */
+  /** Sequential search up the distribution function. Source: Devroye, Non-Uniform Random Variate Generation
+   * (1986), X.3 (from memory). */
   private poissonByInversion(mean: number): number {
     let left = this.uniform52();
     let share = Math.exp(-mean);
@@ -123,9 +124,9 @@ export class CounterRandom {
     return count;
   }
 
-  /** Transformed rejection with squeeze, PTRS. Source: W. Hörmann, "The transformed rejection method for generating Poisson
-   * random variables", Insurance: Mathematics and Economics 12 (1993) 39 (constants from memory; the tests hold the result against
-   * the exact distribution). */
+  /** Transformed rejection with squeeze, PTRS. Source: W. Hörmann, "The transformed rejection method for
+   * generating Poisson random variables", Insurance: Mathematics and Economics 12 (1993) 39 (constants from
+   * memory; the tests hold the result against the exact distribution). */
   private poissonByRejection(mean: number): number {
     const b = 0.931 + 2.53 * Math.sqrt(mean);
     const a = -0.059 + 0.02483 * b;

@@ -5,12 +5,14 @@ function rotl(x: number, n: number): number {
   return (x << n) | (x >>> (32 - n));
 }
 
-/** Threefry-4x32 with 20 rounds: 128 bits of counter to 128 random bits, keyed by 128 bits. Any counter, in any order.
+/** Threefry-4x32 with 20 rounds: 128 bits of counter to 128 random bits, keyed by 128 bits. Any counter, in
+ * any order.
  *
- * Source: J. K. Salmon, M. A. Moraes, R. O. Dror and D. E. Shaw, "Parallel Random Numbers: As Easy as 1, 2, 3", SC11 (2011),
- * section 4.2; rotation constants and the parity constant of the key schedule from the same (all from memory; the published
- * known answers are in the tests). It needs nothing but add, rotate and exclusive-or, which JavaScript does in one machine
- * instruction each; the sibling with multiplications, Philox, takes about twice as long here.
+ * Source: J. K. Salmon, M. A. Moraes, R. O. Dror and D. E. Shaw, "Parallel Random Numbers: As Easy as 1, 2,
+ * 3", SC11 (2011), section 4.2; rotation constants and the parity constant of the key schedule from the same
+ * (all from memory; the published known answers are in the tests). It needs nothing but add, rotate and
+ * exclusive-or, which JavaScript does in one machine instruction each; the sibling with multiplications,
+ * Philox, takes about twice as long here.
  *
  * The rounds are written out: a loop over the eight rotation pairs also takes twice as long.
  *

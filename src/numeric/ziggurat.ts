@@ -1,7 +1,8 @@
-/** The tables of the ziggurat under the normal distribution: 256 layers of equal area, the lowest with the tail.
+/** The tables of the ziggurat under the normal distribution: 256 layers of one area, the lowest with the tail.
  *
- * Source: G. Marsaglia and W. W. Tsang, "The Ziggurat Method for Generating Random Variables", J. Statistical Software 5 (2000) 8, and
- * J. A. Doornik, "An Improved Ziggurat Method to Generate Normal Random Samples" (2005), whose form this is (both from memory).
+ * Source: G. Marsaglia and W. W. Tsang, "The Ziggurat Method for Generating Random Variables", J. Statistical
+ * Software 5 (2000) 8, and J. A. Doornik, "An Improved Ziggurat Method to Generate Normal Random Samples"
+ * (2005), whose form this is (both from memory).
  */
 
 /** f(x) = exp(-x^2 / 2), the density without its constant. */
@@ -15,7 +16,8 @@ export const TAIL_START = 3.6541528853610088;
 /** Area of each layer under `bell`: r f(r) and the tail beyond r = TAIL_START. */
 const LAYER_AREA = 0.00492867323399;
 
-/** Half widths of the layers from the lowest up: [0] that of a rectangle of the lowest layer's area, [1] TAIL_START, ..., [256] 0. */
+/** Half widths of the layers from the lowest up: [0] that of a rectangle of the lowest layer's area, [1]
+ * TAIL_START, ..., [256] 0. */
 export const HALF_WIDTH = new Float64Array(257);
 
 /** The share of each layer's width that lies wholly under the curve. */

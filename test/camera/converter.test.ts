@@ -26,7 +26,8 @@ describe('converterFor', () => {
           expect(Math.abs(offsetDn + gainDnPerE * fullWellE - whiteLevelDn)).toBeLessThan(1e-10);
           const deviationDn = gainDnPerE * Math.sqrt(darkNoiseE ** 2 + dsnuE ** 2);
           expect(offsetDn).toBeGreaterThanOrEqual(6 * deviationDn - 1e-9);
-          // and no higher than the next whole number, but for the share of the noise in the well, by which that number lowers the gain
+          // and no higher than the next whole number, but for the share of the noise in the well, by which
+          // that number lowers the gain
           expect(offsetDn).toBeLessThanOrEqual(6 * deviationDn + 1.2);
         },
       ),

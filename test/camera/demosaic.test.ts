@@ -113,7 +113,8 @@ describe('demosaicRows', () => {
   });
 
   it('mirrors the border without shifting the colours', () => {
-    // A picture that is mirrored already goes on past its border just as the rule says: its inner part must come out the same.
+    // A picture that is mirrored already goes on past its border just as the rule says: its inner part must
+    // come out the same.
     const [w, h] = [6, 4];
     const small = [1, 2, 3].map((seed) => speckle([w, h], seed));
     const fold = (i: number, n: number) => (i < 0 ? -i : i >= n ? 2 * (n - 1) - i : i);

@@ -134,8 +134,9 @@ describe('exposeRows', () => {
     const sensor = { ...SENSOR, whiteE: 30_000, darkNoiseE: 50, prnuPercent: 10, dsnuE: 0 };
     const shot = exposure(pixels, { sensor });
     const [raw] = expose([flat(pixels, 1)], shot);
-    // The well is full in every pixel, so only read-out noise is left, and the converter cuts off its upper half and the half step that
-    // rounds up. It is 50 e or 18 DN, far from the 36 DN of the shot noise and the 370 DN and more of PRNU.
+    // The well is full in every pixel, so only read-out noise is left, and the converter cuts off its upper
+    // half and the half step that rounds up. It is 50 e or 18 DN, far from the 36 DN of the shot noise and
+    // the 370 DN and more of PRNU.
     const noiseDn = 50 * shot.converter.gainDnPerE;
     const full = raw.filter((number) => number === 4095).length;
     const shareFull = 0.5 + 0.5 / noiseDn / Math.sqrt(2 * Math.PI);

@@ -6,8 +6,9 @@ import { logFactorial } from '../../src/numeric/log-factorial.js';
 import { CounterRandom } from '../../src/numeric/random.js';
 import { threefry4x32 } from '../../src/numeric/threefry.js';
 
-// Seeds are fixed, so each statistical test gives the same figure every time. Its limits are those that a right generator would pass
-// with nearly any seed: 4 to 5 standard errors, or a probability of 1e-4 at either end.
+// Seeds are fixed, so each statistical test gives the same figure every time. Its limits are those that a
+// right generator would pass with nearly any seed: 4 to 5 standard errors, or a probability of 1e-4 at either
+// end.
 
 describe('threefry4x32', () => {
   const PI = [0x243f6a88, 0x85a308d3, 0x13198a2e, 0x03707344, 0xa4093822, 0x299f31d0, 0x082efa98, 0xec4e6c89];
@@ -17,7 +18,8 @@ describe('threefry4x32', () => {
     ['ones', [-1, -1, -1, -1], [-1, -1, -1, -1], '2a881696 57012287 f6c7446e a16a6732'],
     ['the digits of pi', PI.slice(0, 4), PI.slice(4), '59cd1dbb b8879579 86b5d00c ac8b6d84'],
   ])('gives the known answer for %s', (_name, counter, key, expected) => {
-    // Source: known-answer vectors of the authors' library Random123 for Threefry-4x32 with 20 rounds (from memory)
+    // Source: known-answer vectors of the authors' library Random123 for Threefry-4x32 with 20 rounds (from
+    // memory)
     const out = new Int32Array(4);
     const [k0, k1, k2, k3] = key.map((word) => word | 0);
     const [c0, c1, c2, c3] = counter.map((word) => word | 0);
@@ -141,7 +143,8 @@ describe('normal', () => {
 });
 
 describe('poisson', () => {
-  // either side of the change of method at 10, the means that a dark, a grey and a full pixel have, and a large well
+  // either side of the change of method at 10, the means that a dark, a grey and a full pixel have, and a
+  // large well
   const means = [0.1, 1, 4, 9.999, 10, 11.3, 30, 200, 1440, 10_000, 100_000];
 
   it.each(means)('follows the exact distribution at a mean of %s', (mean) => {
@@ -158,7 +161,8 @@ describe('poisson', () => {
   });
 
   it.each([10, 12, 40, 300, 10_000])('rejects the right share of the unit square at a mean of %s', (mean) => {
-    // The two uniforms of a try come from an even lattice instead of chance: ten times sharper with the same number of tries.
+    // The two uniforms of a try come from an even lattice instead of chance: ten times sharper with the same
+    // number of tries.
     const n = 250_000;
     const lattice = new LatticePairs();
     const accepted: number[] = [];
@@ -179,8 +183,8 @@ describe('poisson', () => {
   it.each(means)('has mean, variance, skewness and excess of a mean of %s', (mean) => {
     const n = 200_000;
     const counts = items(n, new CounterRandom(32, 0), (r) => r.poisson(mean));
-    // central moments: mean, mean, mean, mean + 3 mean^2 (Abramowitz and Stegun 26.1.22, from memory); each is held to 5 standard errors
-    // as found from the sample's own spread
+    // central moments: mean, mean, mean, mean + 3 mean^2 (Abramowitz and Stegun 26.1.22, from memory); each
+    // is held to 5 standard errors as found from the sample's own spread
     const exact = [0, mean, mean, mean + 3 * mean * mean];
     const sums = new Float64Array(4);
     const squares = new Float64Array(4);
@@ -236,7 +240,8 @@ describe('logFactorial', () => {
   });
 });
 
-/** Uniforms in pairs from a Kronecker lattice on the unit square, steps 1/p and 1/p^2 with p the plastic number (root of p^3 = p + 1). */
+/** Uniforms in pairs from a Kronecker lattice on the unit square, steps 1/p and 1/p^2 with p the plastic
+ * number (root of p^3 = p + 1). */
 class LatticePairs extends CounterRandom {
   private pair = 0;
   private drawn = 0;
@@ -292,21 +297,21 @@ function chiSquare(observed: Float64Array, expected: Float64Array): number {
   return observed.reduce((sum, count, i) => sum + (count - expected[i]) ** 2 / expected[i], 0);
 }
 
-/** A chi-square that chance would bring: neither end of its distribution holds it with less than 1e-4. Source of the distribution
- * function: jstat 1.9.6. */
+/** A chi-square that chance would bring: neither end of its distribution holds it with less than 1e-4. Source
+ * of the distribution function: jstat 1.9.6. */
 function expectPlausible(value: number, degreesOfFreedom: number): void {
   const p = jstat.chisquare.cdf(value, degreesOfFreedom);
   expect(p).toBeGreaterThan(1e-4);
   expect(p).toBeLessThan(1 - 1e-4);
 }
 
-/** P(count <= k) = 1 - P(k + 1, mean), P the regularised incomplete gamma function (Abramowitz and Stegun 26.4.21, from memory), as
- * computed by jstat 1.9.6. */
+/** P(count <= k) = 1 - P(k + 1, mean), P the regularised incomplete gamma function (Abramowitz and Stegun
+ * 26.4.21, from memory), as computed by jstat 1.9.6. */
 function poissonCdf(k: number, mean: number): number {
   return 1 - jstat.lowRegGamma(k + 1, mean);
 }
 
-/** Bins of counts with at least 0.5 % and 25 draws each: `last` count of each bin and its expected share of n. */
+/** Bins of counts with at least 0.5 % and 25 draws each: `last` count of each bin and its share of n. */
 function poissonBins(mean: number, n: number): { last: number[]; expected: Float64Array } {
   const least = Math.max(0.005, 25 / n);
   const step = Math.max(1, Math.floor(Math.sqrt(mean) / 10));

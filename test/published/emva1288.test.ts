@@ -1,7 +1,9 @@
-/** The camera against EMVA 1288: the model's formulas, and a bench that measures the simulated camera as the standard measures a real one.
+/** The camera against EMVA 1288: the model's formulas, and a bench that measures the simulated camera as the
+ * standard measures a real one.
  *
- * Source throughout: EMVA Standard 1288, release 3.1 section 2 and release 4.0 Linear (from memory). Seeds are fixed, so each figure is
- * the same every time; the limits are the ones asked for, and each test says how many standard errors they are.
+ * Source throughout: EMVA Standard 1288, release 3.1 section 2 and release 4.0 Linear (from memory). Seeds
+ * are fixed, so each figure is the same every time; the limits are the ones asked for, and each test says how
+ * many standard errors they are.
  */
 import { describe, expect, it } from 'vitest';
 import { type Converter, converterFor } from '../../src/camera/converter.js';
@@ -54,7 +56,8 @@ function variance(samples: ArrayLike<number>): number {
   return sum / (samples.length - 1);
 }
 
-/** Mean and temporal variance of two frames of one exposure: half the variance of their difference, which no fixed pattern enters. */
+/** Mean and temporal variance of two frames of one exposure: half the variance of their difference, which no
+ * fixed pattern enters. */
 function photonTransferPoint(
   sensor: Sensor,
   value: number,
@@ -100,8 +103,9 @@ describe('the linear camera model', () => {
     const side = 256;
     const n = side * side;
     const point = photonTransferPoint(sensor, (0.6 * photons) / 40_000, side, 2 * photons, converter);
-    // 2 n samples of the mean, n of the variance: 4 standard errors each. At 10 photons the noise is 0.6 DN, where a rounding is no longer
-    // independent of what it rounds and the true variance lies 0.7 % above the model.
+    // 2 n samples of the mean, n of the variance: 4 standard errors each. At 10 photons the noise is 0.6 DN,
+    // where a rounding is no longer independent of what it rounds and the true variance lies 0.7 % above the
+    // model.
     expect(Math.abs(point.mean - meanDn)).toBeLessThan(4 * Math.sqrt(varianceDn2 / (2 * n)));
     const allowed = 4 * Math.sqrt(2 / n) + (photons === 10 ? 0.007 : 0);
     expect(Math.abs(point.variance / varianceDn2 - 1)).toBeLessThan(allowed);
@@ -136,7 +140,8 @@ describe('photon transfer', () => {
 
   it('gives back the gain K within 1 %', () => {
     expect(fitted).toHaveLength(7);
-    // a variance from n pixels has a standard error of sqrt(2/n) = 0.44 %; seven of them, weighted by the fit, leave 0.24 %
+    // a variance from n pixels has a standard error of sqrt(2/n) = 0.44 %; seven of them, weighted by the
+    // fit, leave 0.24 %
     expect(Math.abs(gain / converter.gainDnPerE - 1)).toBeLessThan(0.01);
   });
 
@@ -147,8 +152,9 @@ describe('photon transfer', () => {
   });
 
   it('gives back the full well within 1 %', () => {
-    // Electrons at the level where the mean stops to rise. The standard's own mark, the exposure of the largest variance, lies lower by
-    // about three standard deviations of the shot noise: 3 % of a well of 10 000 e, see below.
+    // Electrons at the level where the mean stops rising. The standard's own mark, the exposure of the
+    // largest variance, lies lower by about three standard deviations of the shot noise: 3 % of a well of 10 000 e,
+    // see below.
     expect(points[10].mean / saturated.mean).toBeCloseTo(1, 3);
     const fullWellE = (saturated.mean - dark.mean) / gain;
     expect(Math.abs(fullWellE / SENSOR.fullWellE - 1)).toBeLessThan(0.01);
@@ -177,7 +183,8 @@ describe('photon transfer', () => {
     for (const value of [0.96, 0.98, 0.99, 1]) {
       const exact = clippedPoisson(10_000 * value, 10_000);
       const point = photonTransferPoint(sensor, value, 200, 500);
-      // 4 standard errors; the cut distribution has thinner tails than the normal one whose error is used for the variance
+      // 4 standard errors; the cut distribution has thinner tails than the normal one whose error is used for
+      // the variance
       const m = 40_000;
       expect(Math.abs(point.mean / gainDnPerE - exact.mean)).toBeLessThan(4 * Math.sqrt(exact.variance / m));
       expect(Math.abs(point.variance / gainDnPerE ** 2 / exact.variance - 1)).toBeLessThan(
@@ -247,7 +254,8 @@ describe('non-uniformity', () => {
         [0, 64],
       ])
         expect(Math.abs(correlation(picture, dx, dy))).toBeLessThan(limit);
-      // means of rows and of columns scatter by deviation / sqrt(side): their variance is known to sqrt(2 / side) = 11 %
+      // means of rows and of columns scatter by deviation / sqrt(side): their variance is known to sqrt(2 /
+      // side) = 11 %
       for (const along of [rowMeans(picture), columnMeans(picture)]) {
         const ratio = (variance(along) * side) / variance(picture);
         expect(Math.abs(ratio - 1)).toBeLessThan(4 * Math.sqrt(2 / side));
