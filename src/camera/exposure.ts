@@ -26,7 +26,7 @@ export interface Seeds {
 }
 
 /** The exposure of a camera.
- * @throws {InputError} for a seed that is no such number, a sensor without range or a mosaic without its bands */
+ * @throws {InputError} for another seed, a sensor without range or a mosaic without its bands */
 export function exposureFor(camera: Camera, seeds: Seeds): Exposure {
   checkSeed(seeds.seed);
   checkSeed(seeds.cameraSeed, 'camera seed');

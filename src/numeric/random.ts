@@ -75,7 +75,7 @@ export class CounterRandom {
     return (high * 2 ** 20 + low + 0.5) * 2 ** -52;
   }
 
-  /** Standard normal, by the ziggurat: 8 bits choose the layer and 24 others the place in it, steps below 5e-7. */
+  /** Standard normal, by the ziggurat: 8 bits choose the layer, 24 the place in it, in steps below 5e-7. */
   normal(): number {
     const word = this.word();
     const layer = word & 255;

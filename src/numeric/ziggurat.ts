@@ -1,4 +1,4 @@
-/** The tables of the ziggurat under the normal distribution: 256 layers of one area, the lowest with the tail.
+/** Tables of the ziggurat under the normal distribution: 256 layers of one area, the tail in the lowest.
  *
  * Source: G. Marsaglia and W. W. Tsang, "The Ziggurat Method for Generating Random Variables", J. Statistical
  * Software 5 (2000) 8, and J. A. Doornik, "An Improved Ziggurat Method to Generate Normal Random Samples"
