@@ -6,17 +6,17 @@
  *
  *     [exp(i alpha - i beta) h(l - r) - exp(i alpha + i beta) h(l + r)] / r,   r = sqrt(alpha), l = |beta| / (2 r), where l >= r;
  *
- * where l < r the stationary point lies inside and adds sqrt(pi / alpha) exp(i pi/4 - i l^2), and the first term changes its sign. h is
- * smooth, so nothing cancels but where alpha is nearly 0; there the first two terms of its power series take over.
+ * where l < r the stationary point lies inside and adds sqrt(pi / alpha) exp(i pi/4 - i l^2), and the first term changes its sign (all this
+ * for psi = 0, alpha >= 0 and beta >= 0). h is smooth, so nothing cancels but where alpha is nearly 0; there the first two terms of its power series take over.
  *
  * @param out two numbers, real and imaginary part
  * Source: M. Abramowitz and I. A. Stegun, Handbook of Mathematical Functions, 7.3 (auxiliary functions; cited from memory)
  */
 export function quadraticPhaseIntegral(psi: number, alpha: number, beta: number, out: Float64Array): void {
   // the conjugate integral serves alpha < 0; beta's sign is free because t runs both ways
-  const mirror = alpha < 0 ? -1 : 1;
-  const a = mirror * alpha;
-  const p = mirror * psi;
+  const isMirrored = alpha < 0;
+  const a = Math.abs(alpha);
+  const p = isMirrored ? -psi : psi;
   const b = Math.abs(beta);
   if (a < SMALL_ALPHA) {
     nearlyLinearPhase(p, a, b, out);
@@ -25,18 +25,20 @@ export function quadraticPhaseIntegral(psi: number, alpha: number, beta: number,
     const l = (0.5 * b) / r;
     const inside = l < r;
     fresnelTail(l + r);
-    let re = -(Math.cos(p + a + b) * tail[0] - Math.sin(p + a + b) * tail[1]);
-    let im = -(Math.sin(p + a + b) * tail[0] + Math.cos(p + a + b) * tail[1]);
+    const farC = Math.cos(p + a + b);
+    const farS = Math.sin(p + a + b);
+    let re = farS * tail[1] - farC * tail[0];
+    let im = -farS * tail[0] - farC * tail[1];
     if (b === 0) {
       re *= 2;
       im *= 2;
     } else {
       fresnelTail(inside ? r - l : l - r);
       const sign = inside ? -1 : 1;
-      const c = sign * Math.cos(p + a - b);
-      const s = sign * Math.sin(p + a - b);
-      re += c * tail[0] - s * tail[1];
-      im += s * tail[0] + c * tail[1];
+      const nearC = sign * Math.cos(p + a - b);
+      const nearS = sign * Math.sin(p + a - b);
+      re += nearC * tail[0] - nearS * tail[1];
+      im += nearS * tail[0] + nearC * tail[1];
     }
     if (inside) {
       const stationary = p - l * l + Math.PI / 4;
@@ -46,7 +48,7 @@ export function quadraticPhaseIntegral(psi: number, alpha: number, beta: number,
     out[0] = re / r;
     out[1] = im / r;
   }
-  out[1] *= mirror;
+  if (isMirrored) out[1] = -out[1];
 }
 
 const SQRT_PI = Math.sqrt(Math.PI);

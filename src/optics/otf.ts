@@ -1,5 +1,5 @@
 /** The optical transfer function of a field point: how much contrast the lens and the camera keep at a spatial frequency. */
-import { gaussLegendre, nodesForPhase } from '../numeric/gauss-legendre.js';
+import { type Accuracy, gaussLegendre, nodesForPhase } from '../numeric/gauss-legendre.js';
 import { quadraticPhaseIntegral } from '../numeric/quadratic-phase.js';
 import type { WavefrontLine } from './psf.js';
 import { type Band, type Camera, pixelPitchMm, type Rig } from './rig.js';
@@ -26,7 +26,13 @@ export type Direction = 'tangential' | 'sagittal' | number;
  * @param out two numbers, real and imaginary part
  * Source: H. H. Hopkins, Proc. R. Soc. A 231 (1955) 91; J. W. Goodman, Introduction to Fourier Optics, 6.4 (both cited from memory)
  */
-export function otf(wavefront: LocalWavefront, nu: number, direction: Direction, out: Float64Array): void {
+export function otf(
+  wavefront: LocalWavefront,
+  nu: number,
+  direction: Direction,
+  out: Float64Array,
+  accuracy: Accuracy = 'full',
+): void {
   out[0] = 0;
   out[1] = 0;
   if (nu >= 1) return;
@@ -46,7 +52,7 @@ export function otf(wavefront: LocalWavefront, nu: number, direction: Direction,
 
   const widest = Math.acos(nu);
   const steepest = steepestPhase(nu, linear, square, cubic, bend, skew, shear);
-  const { nodes, weights } = gaussLegendre(nodesForPhase(0.5 * steepest * widest));
+  const { nodes, weights } = gaussLegendre(nodesForPhase(0.5 * steepest * widest, accuracy));
   // without these three the halves p < 0 and p > 0 are conjugate
   const isOdd = constant === 0 && square === 0 && bend === 0;
   const inner = innerIntegral;
@@ -131,11 +137,12 @@ export function bandOtf(
   lpPerMm: number,
   direction: Direction,
   out: Float64Array,
+  accuracy: Accuracy = 'full',
 ): void {
   let re = 0;
   let im = 0;
   for (const { nm, weight, wavefront } of lines) {
-    otf(wavefront, normalisedFrequency(lpPerMm, nm, fNumber), direction, out);
+    otf(wavefront, normalisedFrequency(lpPerMm, nm, fNumber), direction, out, accuracy);
     re += weight * out[0];
     im += weight * out[1];
   }
@@ -149,8 +156,9 @@ export function bandMtf(
   fNumber: number,
   lpPerMm: number,
   direction: Direction,
+  accuracy: Accuracy = 'full',
 ): number {
-  bandOtf(lines, fNumber, lpPerMm, direction, bandSum);
+  bandOtf(lines, fNumber, lpPerMm, direction, bandSum, accuracy);
   return Math.sqrt(bandSum[0] * bandSum[0] + bandSum[1] * bandSum[1]);
 }
 
