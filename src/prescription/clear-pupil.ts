@@ -17,9 +17,8 @@ export interface PupilSamples {
 export interface ClearPupil {
   /** Open share of the stop's area. */
   share: number;
-  /** Solid angle of the cone on the sensor side, projected on the sensor: the area that the open part fills in direction cosines. Illuminance
-   * under an even, diffuse object is proportional to it. */
-  projectedSolidAngle: number;
+  /** Area of the beam in `FieldTracer.lightCoordinates`: proportional to the light that an even, diffuse object sends from here through the lens. */
+  light: number;
   samples: PupilSamples;
 }
 
@@ -31,21 +30,22 @@ export function clearPupil(tracer: FieldTracer): ClearPupil | undefined {
   const middle = openMiddle(tracer);
   if (middle === undefined) return undefined;
   const edge = new Float64Array(SPOKES);
-  const L = new Float64Array(SPOKES);
-  const M = new Float64Array(SPOKES);
+  const across = new Float64Array(SPOKES);
+  const along = new Float64Array(SPOKES);
   let area = 0;
   for (let j = 0; j < SPOKES; j++) {
     const angle = spokeAngle(j);
     edge[j] = openReach(tracer, middle, Math.cos(angle), Math.sin(angle));
     const probe = edge[j] * DRAWN_IN;
     tracer.passes(middle + probe * Math.cos(angle), probe * Math.sin(angle));
-    L[j] = tracer.direction.across;
-    M[j] = tracer.direction.along;
+    const coordinates = tracer.lightCoordinates;
+    across[j] = coordinates.across;
+    along[j] = coordinates.along;
     area += (edge[j] ** 2 * Math.PI) / SPOKES; // both halves
   }
   return {
     share: area / Math.PI,
-    projectedSolidAngle: mirroredPolygonArea(L, M),
+    light: mirroredPolygonArea(across, along),
     samples: samplesWithin(middle, edge, area),
   };
 }
@@ -105,11 +105,11 @@ function samplesWithin(middle: number, edge: Float64Array, area: number): PupilS
   return samples;
 }
 
-/** Area of the polygon through points (L, M) and their mirror images (-L, M). */
-function mirroredPolygonArea(L: Float64Array, M: Float64Array): number {
-  const last = L.length - 1;
+/** Area of the polygon through points (x, y) and their mirror images (-x, y). */
+function mirroredPolygonArea(x: Float64Array, y: Float64Array): number {
+  const last = x.length - 1;
   // the shoelace formula: the mirrored half adds what the first half does, and two edges join a point with its own mirror image
-  let area = L[last] * M[last] - L[0] * M[0];
-  for (let j = 0; j < last; j++) area += L[j] * M[j + 1] - L[j + 1] * M[j];
+  let area = x[last] * y[last] - x[0] * y[0];
+  for (let j = 0; j < last; j++) area += x[j] * y[j + 1] - x[j + 1] * y[j];
   return Math.abs(area);
 }

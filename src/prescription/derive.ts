@@ -139,8 +139,8 @@ function fitAt(
 }
 
 function illuminationTable(fields: readonly ExactField[]): RelativeIllumination {
-  const axis = fields[0].projectedSolidAngle;
-  return fields.map(({ h, projectedSolidAngle }) => [h, projectedSolidAngle / axis] as const);
+  const axis = fields[0].illuminance;
+  return fields.map(({ h, illuminance }) => [h, illuminance / axis] as const);
 }
 
 /** What of the prescription itself the user should look at again. */

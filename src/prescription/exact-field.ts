@@ -15,8 +15,8 @@ export interface ExactField {
   idealHeightMm: number;
   /** Share of the stop that is open, 0..1. */
   openShare: number;
-  /** See `ClearPupil.projectedSolidAngle`; 0 where no light gets through. */
-  projectedSolidAngle: number;
+  /** Proportional to the illuminance at the image point under an even, diffuse object; 0 where no light gets through. */
+  illuminance: number;
 }
 
 /** @throws {InputError} where a ray that nothing cuts misses a surface or is totally reflected */
@@ -32,8 +32,18 @@ export function exactField(lens: LensAt, h: number): ExactField {
     chiefHeightMm: tracer.chiefHeightMm,
     idealHeightMm: h * lens.paraxial.imageHeightMm,
     openShare: pupil?.share ?? 0,
-    projectedSolidAngle: pupil?.projectedSolidAngle ?? 0,
+    illuminance: (pupil?.light ?? 0) / arealStretch(lens, tracer),
   };
+}
+
+/** How much larger an element of area is imaged than without distortion: (r'/r) (dr'/dr). */
+function arealStretch(lens: LensAt, tracer: FieldTracer): number {
+  const { imageHeightMm } = lens.paraxial;
+  if (tracer.h === 0) return 1;
+  const step = 1e-3 * tracer.h; // one-sided, to stay inside the field: distortion bends so slowly that 1e-5 is lost at most
+  const inside = new FieldTracer(lens, tracer.h - step).chiefHeightMm;
+  const radial = (tracer.chiefHeightMm - inside) / (step * imageHeightMm);
+  return (tracer.chiefHeightMm / (tracer.h * imageHeightMm)) * radial;
 }
 
 /** What each of five terms and defocus adds to W at a place of the pupil and field, for a coefficient of 1. Order of `FITTED_TERMS`. */

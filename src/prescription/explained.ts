@@ -51,7 +51,7 @@ export function explain(
       distortionPercent: h === 0 ? 0 : (100 * (chiefHeightMm - idealHeightMm)) / idealHeightMm,
       distortionOfTermsPercent: (100 * shift) / lens.fullFieldMm,
       openShare: field.openShare,
-      relativeIllumination: field.projectedSolidAngle / onAxis.projectedSolidAngle,
+      relativeIllumination: field.illuminance / onAxis.illuminance,
     };
   });
 }

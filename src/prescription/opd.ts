@@ -62,9 +62,15 @@ export class FieldTracer {
     return this.#chiefPath - this.#pathToSphere();
   }
 
-  /** Direction cosines behind the lens of the ray traced last, across and along the field. */
-  get direction(): { across: number; along: number } {
-    return { across: this.#ray.L, along: this.#ray.M };
+  /** The ray sought last in front of the lens, in coordinates in which equal areas carry equal light from this field point: direction cosines where
+   * the object is near; where it is distant, the place in the plane of the first vertex times cos^2 of the field angle (one cosine for the beam's
+   * width and three for the solid angle that an element of the image plane takes up, on two coordinates). */
+  get lightCoordinates(): { across: number; along: number } {
+    const { system, paraxial } = this.lens;
+    launch(this.#ray, system, this.h * paraxial.fieldScale, this.#start[0], this.#start[1]);
+    const { x, y, L, M, N } = this.#ray;
+    if (system.objectDistance === Number.POSITIVE_INFINITY) return { across: x * N * N, along: y * N * N };
+    return { across: L, along: M };
   }
 
   #seek(m: number, s: number): boolean {
