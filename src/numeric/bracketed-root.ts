@@ -1,6 +1,7 @@
 /** A zero between two points at which a function has different signs. */
 
-/** x in [a, b] with f(x) = 0, to a relative `tolerance`: false position that halves the weight of an end kept twice (the Illinois method).
+/** x in [a, b] with f(x) = 0, to a relative `tolerance`: false position that halves the weight of an end kept
+ * twice (the Illinois method).
  * Source: G. Dahlquist and A. Bjorck, Numerical Methods, 6.2 (cited from memory)
  * @param fa, fb f(a) and f(b), of different sign
  */

@@ -1,4 +1,5 @@
-/** Gauss-Legendre rules: the nodes and weights that integrate polynomials up to degree 2n - 1 over [-1, 1] without error. */
+/** Gauss-Legendre rules: the nodes and weights that integrate polynomials up to degree 2n - 1 over [-1, 1]
+ * without error. */
 
 export interface QuadratureRule {
   /** In rising order, symmetric about 0. */
@@ -12,7 +13,8 @@ const rules = new Map<number, QuadratureRule>();
 /** The rule with n nodes, computed once for each n.
  *
  * Newton's iteration on P_n from the guess cos(pi (i - 1/4) / (n + 1/2)); w = 2 / ((1 - x^2) P_n'(x)^2).
- * Source: M. Abramowitz and I. A. Stegun, Handbook of Mathematical Functions, 25.4.29 and 22.16.6 (cited from memory).
+ * Source: M. Abramowitz and I. A. Stegun, Handbook of Mathematical Functions, 25.4.29 and 22.16.6 (cited from
+ * memory).
  */
 export function gaussLegendre(n: number): QuadratureRule {
   let rule = rules.get(n);
@@ -28,9 +30,9 @@ export type Accuracy = 'full' | 'rough';
 
 /** Number of nodes for exp(i phase) over [-1, 1], given the steepest slope of the phase there, in radians.
  *
- * n nodes can follow a slope of 2 n at best. Half as many again and ten more left 2e-7 at worst and 1e-8 in 99 of 100 cases, a tenth as many
- * again and five more 1e-3 at worst, measured on the autocorrelation of random wavefronts of up to 60 waves a term. Even, and rounded up so
- * that few rules are computed.
+ * n nodes can follow a slope of 2 n at best. Half as many again and ten more left 2e-7 at worst and 1e-8 in
+ * 99 of 100 cases, a tenth as many again and five more 1e-3 at worst, measured on the autocorrelation of
+ * random wavefronts of up to 60 waves a term. Even, and rounded up so that few rules are computed.
  */
 export function nodesForPhase(steepest: number, accuracy: Accuracy = 'full'): number {
   const n = Math.ceil(accuracy === 'full' ? 10 + 0.75 * steepest : 5 + 0.55 * steepest);

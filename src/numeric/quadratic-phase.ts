@@ -1,16 +1,21 @@
-/** Integrals of exp(i phase) over an interval on which the phase is quadratic: Fresnel's integral, ready for hot loops. */
+/** Integrals of exp(i phase) over an interval on which the phase is quadratic: Fresnel's integral, ready for
+ * hot loops. */
 
 /** out = integral over t from -1 to 1 of exp(i (psi + alpha t^2 + beta t)) dt, to about 1e-9.
  *
- * With F(x) = integral from x to infinity of exp(i t^2) dt = exp(i x^2) h(x) for x >= 0, completing the square gives
+ * With F(x) = integral from x to infinity of exp(i t^2) dt = exp(i x^2) h(x) for x >= 0, completing the
+ * square gives
  *
- *     [exp(i alpha - i beta) h(l - r) - exp(i alpha + i beta) h(l + r)] / r,   r = sqrt(alpha), l = |beta| / (2 r), where l >= r;
+ *     [exp(i alpha - i beta) h(l - r) - exp(i alpha + i beta) h(l + r)] / r,
+ *     r = sqrt(alpha), l = beta / (2 r), where l >= r;
  *
- * where l < r the stationary point lies inside and adds sqrt(pi / alpha) exp(i pi/4 - i l^2), and the first term changes its sign (all this
- * for psi = 0, alpha >= 0 and beta >= 0). h is smooth, so nothing cancels but where alpha is nearly 0; there the first two terms of its power series take over.
+ * where l < r the stationary point lies inside and adds sqrt(pi / alpha) exp(i pi/4 - i l^2), and the first
+ * term changes its sign (all this for psi = 0, alpha >= 0 and beta >= 0). h is smooth, so nothing cancels but
+ * where alpha is nearly 0; there the first two terms of its power series take over.
  *
  * @param out two numbers, real and imaginary part
- * Source: M. Abramowitz and I. A. Stegun, Handbook of Mathematical Functions, 7.3 (auxiliary functions; cited from memory)
+ * Source: M. Abramowitz and I. A. Stegun, Handbook of Mathematical Functions, 7.3 (auxiliary functions; cited
+ * from memory)
  */
 export function quadraticPhaseIntegral(psi: number, alpha: number, beta: number, out: Float64Array): void {
   // the conjugate integral serves alpha < 0; beta's sign is free because t runs both ways
@@ -62,7 +67,7 @@ function nearlyLinearPhase(p: number, a: number, b: number, out: Float64Array): 
   const moment0 = b === 0 ? 2 : (2 * Math.sin(b)) / b;
   const moment2 =
     b < 1
-      ? 2 / 3 - b2 * (1 / 5 - b2 * (1 / 84 - b2 / 3240)) // the closed form loses digits here; a multiplies the rest, 4e-6
+      ? 2 / 3 - b2 * (1 / 5 - b2 * (1 / 84 - b2 / 3240)) // the closed form loses digits here
       : moment0 + (4 * Math.cos(b) - 2 * moment0) / b2;
   const c = Math.cos(p);
   const s = Math.sin(p);
@@ -70,7 +75,8 @@ function nearlyLinearPhase(p: number, a: number, b: number, out: Float64Array): 
   out[1] = s * moment0 + c * a * moment2;
 }
 
-/** h(x) as the last call of `fresnelTail` left it, real and imaginary part: typed, so that the hottest function allocates nothing. */
+/** h(x) as the last call of `fresnelTail` left it, real and imaginary part: typed, so that the hottest
+ * function allocates nothing. */
 const tail = new Float64Array(2);
 
 /** h(x) = exp(-i x^2) * integral from x to infinity of exp(i t^2) dt, x >= 0, to about 1e-11. */
@@ -101,12 +107,13 @@ function fresnelTail(x: number): void {
 /** The Taylor series about the middle of a cell leaves 1e-12 at its ends. */
 const ORDER = 7;
 const CELLS_PER_UNIT = 16;
-/** Here the first term left out of the asymptotic series, 135135 / (2 x^2)^7, is 2e-10 of h, which is 0.06. */
+/** Here the first term left out of the asymptotic series, 135135 / (2 x^2)^7, is 2e-10 of h. */
 const TABLE_END = 8;
 const TABLE = taylorTable();
 
-/** Taylor coefficients of h about the middle of each cell, from h(0) = sqrt(pi/8) (1 + i) and h' = -1 - 2 i x h, which gives all higher
- * derivatives: (k + 1) c[k+1] = -2 i (x c[k] + c[k-1]). A series of order 14 carries h from one middle to the next. */
+/** Taylor coefficients of h about the middle of each cell, from h(0) = sqrt(pi/8) (1 + i) and h' = -1 - 2 i x
+ * h, which gives all higher derivatives: (k + 1) c[k+1] = -2 i (x c[k] + c[k-1]). A series of order 14
+ * carries h from one middle to the next. */
 function taylorTable(): Float64Array {
   const cells = TABLE_END * CELLS_PER_UNIT;
   const table = new Float64Array(2 * cells * (ORDER + 1));
@@ -116,7 +123,8 @@ function taylorTable(): Float64Array {
   let hRe = Math.sqrt(Math.PI / 8);
   let hIm = hRe;
   for (let cell = -1; cell < cells; cell++) {
-    const x = Math.max(0, (cell + 0.5) / CELLS_PER_UNIT); // the first turn goes from 0 to the middle of the first cell
+    // the first turn goes from 0 to the middle of the first cell
+    const x = Math.max(0, (cell + 0.5) / CELLS_PER_UNIT);
     re[0] = hRe;
     im[0] = hIm;
     re[1] = -1 + 2 * x * hIm;

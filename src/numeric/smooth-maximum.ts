@@ -2,8 +2,9 @@
 
 /** The place of the maximum of f over [from, to], the ends included.
  *
- * f is replaced by its interpolant at Chebyshev points, on which the search costs nothing. Good where f bends little over the interval: a
- * function whose spectrum ends at k radians a unit is followed to about (k (to - from) / 8)^n / n!, relative to its size.
+ * f is replaced by its interpolant at Chebyshev points, on which the search costs nothing. Good where f bends
+ * little over the interval: a function whose spectrum ends at k radians a unit is followed to about (k (to -
+ * from) / 8)^n / n!, relative to its size.
  * Source: L. N. Trefethen, Approximation Theory and Approximation Practice, ch. 3 and 4 (cited from memory)
  *
  * @param count number of points, n

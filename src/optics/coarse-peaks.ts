@@ -1,4 +1,5 @@
-/** Where the peaks of a PSF lie, roughly: a map of it over all the image points that the pupil's slopes can reach. */
+/** Where the peaks of a PSF lie, roughly: a map of it over all the image points that the pupil's slopes can
+ * reach. */
 import { FftPlan, nextPowerOfTwo } from '../numeric/fft.js';
 import type { WavefrontLine } from './psf.js';
 import type { LocalWavefront } from './wavefront.js';
@@ -34,17 +35,19 @@ export function slopeRange({ w40, w31, w22, w20, w11 }: LocalWavefront): SlopeRa
 
 const COSINES = Array.from({ length: 13 }, (_, step) => Math.cos((Math.PI * step) / 12));
 
-/** Samples of the map per lambda N of the shortest line. A peak is about 1 lambda N wide at half its height. */
+/** Samples of the map per lambda N of the shortest line. A peak is about 1 lambda N wide at half height. */
 const SAMPLES = 2;
 
 /** Room around the reach of the slopes, in lambda N. */
 const MARGIN = 2;
 
-/** A peak whose estimated height is below this share of the highest estimate is not the highest: the estimates are good to a few percent. */
+/** A peak whose estimated height is below this share of the highest estimate is not the highest: the
+ * estimates are good to a few percent. */
 const LEAST_SHARE = 0.85;
 const MOST_PEAKS = 8;
 
-/** Starting points for the search for the highest peak, the most promising first: [along, across] in um, across >= 0.
+/** Starting points for the search for the highest peak, the most promising first: [along, across] in um,
+ * across >= 0.
  *
  * The PSF is even across the radius, so rows s >= 0 of the pupil and columns y >= 0 of the map are enough.
  */
@@ -80,8 +83,8 @@ export function findCoarsePeaks(
   return peaksOf(map, columns, rows).map(([x, y]) => [firstUm + x * stepUm, y * stepUm]);
 }
 
-/** Add weight |a|^2 of one line to a map, columns x rows samples, column by column: a at u = u0 + j step, v = l step, in waves of tilt.
- * Only the relation of the heights matters. */
+/** Add weight |a|^2 of one line to a map, columns x rows samples, column by column: a at u = u0 + j step, v =
+ * l step, in waves of tilt. Only the relation of the heights matters. */
 function addIntensity(
   map: Float64Array,
   columns: number,
@@ -149,7 +152,8 @@ function planOf(size: number): FftPlan {
   return plan;
 }
 
-/** Local maxima of the map, in samples, the highest first, refined by the parabola through the logarithms of three neighbours. */
+/** Local maxima of the map, in samples, the highest first, refined by the parabola through the logarithms of
+ * three neighbours. */
 function peaksOf(map: Float64Array, columns: number, rows: number): [x: number, y: number][] {
   const at = (x: number, y: number) => (x < 0 || x >= columns || y >= rows ? 0 : map[x * rows + Math.abs(y)]);
   const peaks: { x: number; y: number; height: number }[] = [];

@@ -2,7 +2,8 @@
 import { InputError } from '../errors.js';
 import { isSymmetric, pixelPitchMm, type Rig } from './rig.js';
 
-/** The places of a sensor by name: which side of it in x and in y. The middle has no name, since `axis` is where the optical axis is. */
+/** The places of a sensor by name: which side of it in x and in y. The middle has no name, since `axis` is
+ * where the optical axis is. */
 const SIDES = {
   top: [0, -1],
   bottom: [0, 1],
@@ -19,7 +20,8 @@ export type Place = 'axis' | keyof typeof SIDES;
 /** Every place by name, in the order in which reports list them. */
 export const PLACES: readonly Place[] = ['axis', ...(Object.keys(SIDES) as (keyof typeof SIDES)[])];
 
-/** The farthest field that is taken at its word. Figures past h = 1 are extrapolated; past this they say nothing at all. */
+/** The farthest field that is taken at its word. Figures past h = 1 are extrapolated; past this they say
+ * nothing at all. */
 export const LARGEST_FIELD = 10;
 
 /** A field point as it was asked for, not yet on a sensor. */
@@ -27,7 +29,8 @@ export type FieldRequest =
   | { place: Place; field?: undefined; azimuthDeg?: undefined }
   | { place?: undefined; field: number; azimuthDeg: number };
 
-/** What names a field point: h along +x; text such as `0.7`, `0.7@90` or `top_right`; or what `parseFieldPoint` made of it. */
+/** What names a field point: h along +x; text such as `0.7`, `0.7@90` or `top_right`; or what
+ * `parseFieldPoint` made of it. */
 export type FieldSpec = number | string | FieldRequest;
 
 /** A field point on a rig's sensor, in ideal coordinates: where its light lands without distortion. */
@@ -43,7 +46,8 @@ export interface FieldPoint {
   yMm: number;
 }
 
-/** Reads a field point: `0.7` is h = 0.7 along +x, `0.7@90` at an azimuth of 90 degrees from +x toward +y; else the name of a place.
+/** Reads a field point: `0.7` is h = 0.7 along +x, `0.7@90` at an azimuth of 90 degrees from +x toward +y;
+ * else the name of a place.
  * @throws {InputError} where it is none of these, or h is negative, not finite or above 10 */
 export function parseFieldPoint(spec: FieldSpec): FieldRequest {
   if (typeof spec === 'number') return checkedRequest(spec, 0, String(spec));
@@ -77,12 +81,15 @@ function refusal(message: string, found: string): InputError {
     key: 'field point',
     message,
     found: `'${found}'`,
-    allowed: `h from 0 to ${LARGEST_FIELD}, alone or with an azimuth in degrees (0.7, 0.7@90), or ${PLACES.join(', ')}`,
+    allowed:
+      `h from 0 to ${LARGEST_FIELD}, alone or with an azimuth in degrees (0.7, 0.7@90), ` +
+      `or ${PLACES.join(', ')}`,
     advice: near === undefined ? undefined : `Did you mean '${near}'?`,
   });
 }
 
-/** The place whose letters are nearest, in whatever order: `right-top` and `topright` are likelier slips than a wrong letter. */
+/** The place whose letters are nearest, in whatever order: `right-top` and `topright` are likelier slips than
+ * a wrong letter. */
 function nearestPlace(text: string): Place | undefined {
   const ranked = PLACES.map((place) => ({ place, differ: lettersApart(text.toLowerCase(), place) }));
   const best = ranked.reduce((a, b) => (b.differ < a.differ ? b : a));
@@ -135,8 +142,8 @@ function wholeTurn(degrees: number): number {
   return turned === 360 ? 0 : turned; // -1e-20 rounds up to a full turn
 }
 
-/** The field points of a rig where none are named: axis, top, right and top_right where the lens does the same in all four quadrants, else all
- * nine places. */
+/** The field points of a rig where none are named: axis, top, right and top_right where the lens does the
+ * same in all four quadrants, else all nine places. */
 export function defaultFields(rig: Rig): readonly Place[] {
   return isSymmetric(rig) ? ['axis', 'top', 'right', 'top_right'] : PLACES;
 }

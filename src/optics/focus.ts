@@ -9,11 +9,13 @@ import { defocusWaves, type LocalWavefront } from './wavefront.js';
 /** Directions in which focus is looked for. */
 type FieldDirection = Exclude<Direction, number>;
 
-/** The sensor shift, from where the sensor stands, at which the MTF of a band is highest at one frequency, in um, + away from the lens.
+/** The sensor shift, from where the sensor stands, at which the MTF of a band is highest at one frequency, in
+ * um, + away from the lens.
  *
- * Contrast has many maxima over focus once aberrations are strong. So the range between the foci of every part of the pupil and every line is scanned in steps
- * of a quarter of the depth of focus, and each peak of the scan that may be the highest is refined, to far better than 0.01 um. The
- * pixel's MTF does not depend on focus, so the answer is the same for the lens and for lens and camera. Of two equal maxima (a strong
+ * Contrast has many maxima over focus once aberrations are strong. So the range between the foci of every
+ * part of the pupil and every line is scanned in steps of a quarter of the depth of focus, and each peak of
+ * the scan that may be the highest is refined, to far better than 0.01 um. The pixel's MTF does not depend on
+ * focus, so the answer is the same for the lens and for lens and camera. Of two equal maxima (a strong
  * spherical aberration has such twins) the one nearer to the sensor is given.
  *
  * @returns null where no focus brings any contrast, at and above the cut-off
@@ -53,15 +55,16 @@ export function bestFocusUm(
   return best.shiftUm;
 }
 
-/** How high a sample next to the highest peak must stand at least. Along focus the MTF has no spectrum above some 4 radians a depth of focus,
- * so (Bernstein's inequality) it cannot bend down by more than 16/2 (1/8)^2 of its height over half a step; the rest is for the scan's
- * rough integrals. */
+/** How high a sample next to the highest peak must stand at least. Along focus the MTF has no spectrum above
+ * some 4 radians a depth of focus, so (Bernstein's inequality) it cannot bend down by more than 16/2 (1/8)^2
+ * of its height over half a step; the rest is for the scan's rough integrals. */
 const LEAST_SHARE = 0.86;
 
-/** Where to look: from the first to the last focus of any part of the pupil, and half a depth of focus beyond.
+/** Where to look: from the first to the last focus of any part of the pupil, and half a depth of focus
+ * beyond.
  *
- * The depth is where a defocused OTF has its first zero, close to W020 nu (1 - nu) = 0.16 (0.16 to 0.161 from the exact zeros at 0.75, 1
- * and 2 waves).
+ * The depth is where a defocused OTF has its first zero, close to W020 nu (1 - nu) = 0.16 (0.16 to 0.161 from
+ * the exact zeros at 0.75, 1 and 2 waves).
  */
 function focusRange(
   lines: readonly WavefrontLine[],
@@ -80,7 +83,8 @@ function focusRange(
     const isTangential = direction === 'tangential';
     const paraxial = -w20 - (isTangential ? w22 : 0);
     const marginal = paraxial - 2 * w40;
-    const coma = (isTangential ? 3 : 1) * Math.abs(w31); // coma puts either half of the pupil out of focus, in opposite senses
+    // coma puts either half of the pupil out of focus, in opposite senses
+    const coma = (isTangential ? 3 : 1) * Math.abs(w31);
     fromUm = Math.min(fromUm, umPerWave * (Math.min(paraxial, marginal) - coma - 0.5 * depthWaves));
     toUm = Math.max(toUm, umPerWave * (Math.max(paraxial, marginal) + coma + 0.5 * depthWaves));
     depthUm = Math.min(depthUm, umPerWave * depthWaves);
@@ -96,7 +100,8 @@ class ShiftedLines {
 
   constructor(lines: readonly WavefrontLine[], fNumber: number) {
     this.#lines = lines.map(({ nm, weight, wavefront }) => {
-      // spelt out, so that these objects are of the same make as all others: the engine's compiled code takes one make
+      // spelt out, so that these objects are of the same make as all others: the engine's compiled code takes
+      // one make
       const { w40, w31, w22, w20, w11, cos, sin } = wavefront;
       return { nm, weight, wavefront: { w40, w31, w22, w20, w11, cos, sin } };
     });
@@ -113,7 +118,8 @@ class ShiftedLines {
 
 /** The first frequency at which the MTF of lens and camera falls to a half, in line pairs per mm.
  *
- * Steps of a fifth of the frequency at which a blur of the same variance would reach it find the place; the root is then exact to 1e-7.
+ * Steps of a fifth of the frequency at which a blur of the same variance would reach it find the place; the
+ * root is then exact to 1e-7.
  */
 export function mtf50LpPerMm(
   lines: readonly WavefrontLine[],
@@ -137,8 +143,9 @@ export function mtf50LpPerMm(
 
 /** Where a Gaussian with the variance of the blur has fallen to a half: sqrt(ln 2 / 2) / (pi sigma).
  *
- * The variance is that of the transverse aberrations eps = -2 N lambda dW over the pupil, of the lateral colour within the band, of the
- * pixel's box, and (0.464 lambda N)^2 for diffraction, which puts its half where diffractionMtf has it, at nu = 0.404.
+ * The variance is that of the transverse aberrations eps = -2 N lambda dW over the pupil, of the lateral
+ * colour within the band, of the pixel's box, and (0.464 lambda N)^2 for diffraction, which puts its half
+ * where diffractionMtf has it, at nu = 0.404.
  */
 function gaussianMtf50(
   lines: readonly WavefrontLine[],
@@ -151,7 +158,8 @@ function gaussianMtf50(
   for (const { nm, weight, wavefront } of lines) {
     const { w40, w31, w22, w20, w11 } = wavefront;
     const focus = w20 + (isTangential ? w22 : 0);
-    // variance over the unit pupil of dW/dm or dW/ds; coma does not mix with the rest, which is odd where coma is even
+    // variance over the unit pupil of dW/dm or dW/ds; coma does not mix with the rest, which is odd where
+    // coma is even
     const spherical = 2 * w40 * w40 + (8 / 3) * w40 * focus + focus * focus;
     const coma = (w31 * w31) / (isTangential ? 2 : 6);
     const slope2 = Math.max(0, spherical) + coma + (isTangential ? w11 * w11 : 0);

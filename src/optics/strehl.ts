@@ -5,22 +5,26 @@ import type { WavefrontLine } from './psf.js';
 
 /** The highest point of a band's PSF. */
 export interface PsfPeak {
-  /** Its height over the height without any aberration, defocus or colour, at the same stop and wavelengths. */
+  /** Its height over the one without aberration, defocus or colour, at the same stop and wavelengths. */
   strehl: number;
-  /** Where it lies, from the distorted image point, in um: along the radius, + outward, and across it (either sign where not 0). */
+  /** Where it lies, from the distorted image point, in um: along the radius, + outward, and across it (either
+   * sign where not 0). */
   alongUm: number;
   acrossUm: number;
 }
 
 /** The true peak of the PSF of a band, wherever it lies, to 1e-5.
  *
- * A line of wavelength lambda with unit energy has the height pi / (4 lambda^2 N^2) |a|^2 at an image point (x, y), with
+ * A line of wavelength lambda with unit energy has the height pi / (4 lambda^2 N^2) |a|^2 at an image point
+ * (x, y), with
  *
  *     a = (1/pi) integral over the unit pupil of exp(i 2 pi [W + (x m + y s) / (2 lambda N)]),
  *
- * so its share in the band counts with weight / lambda^2. A transform of the sampled pupil finds all peaks that may be the highest;
- * each is then climbed with a, its gradient and its second derivatives from a Gauss-Legendre rule over the pupil.
- * Source: J. W. Goodman, Introduction to Fourier Optics, 6.2 to 6.4; Born and Wolf, Principles of Optics, 9.1 (both cited from memory)
+ * so its share in the band counts with weight / lambda^2. A transform of the sampled pupil finds all peaks
+ * that may be the highest; each is then climbed with a, its gradient and its second derivatives from a
+ * Gauss-Legendre rule over the pupil.
+ * Source: J. W. Goodman, Introduction to Fourier Optics, 6.2 to 6.4; Born and Wolf, Principles of Optics, 9.1
+ * (both cited from memory)
  */
 export function psfPeak(lines: readonly WavefrontLine[], fNumber: number): PsfPeak {
   const slopes = lines.map(({ wavefront }) => slopeRange(wavefront));
@@ -29,7 +33,7 @@ export function psfPeak(lines: readonly WavefrontLine[], fNumber: number): PsfPe
   let best: PsfPeak = { strehl: 0, alongUm: 0, acrossUm: 0 };
   for (const [xUm, yUm] of starts) {
     const peak = climb(pupils, xUm, yUm);
-    if (peak.strehl > best.strehl + 1e-9) best = peak; // of equal twins the first, nearer to the axis of the field
+    if (peak.strehl > best.strehl + 1e-9) best = peak; // of equal twins the first, nearer to the axis
   }
   return best;
 }
@@ -39,8 +43,8 @@ export function strehlRatio(lines: readonly WavefrontLine[], fNumber: number): n
   return psfPeak(lines, fNumber).strehl;
 }
 
-/** Height of the PSF at the reference point, where a ray without aberration lands, over the height without aberration. At most the Strehl
- * ratio, and much less where tilt or coma moves the peak. */
+/** Height of the PSF at the reference point, where a ray without aberration lands, over the height without
+ * aberration. At most the Strehl ratio, and much less where tilt or coma moves the peak. */
 export function strehlAtReference(lines: readonly WavefrontLine[], fNumber: number): number {
   const pupils = lines.map((line) => {
     const slope = slopeRange(line.wavefront);
@@ -51,7 +55,7 @@ export function strehlAtReference(lines: readonly WavefrontLine[], fNumber: numb
   return heightAt(pupils, 0, 0, new Float64Array(6));
 }
 
-/** The pupil function of one line at the nodes of a rule over the half s >= 0 of the pupil (W is even in s). */
+/** The pupil function of one line at the nodes of a rule over the half s >= 0 of the pupil (W is even). */
 class PupilNodes {
   /** Share of the line in the height without aberration, not yet divided by the sum over the lines. */
   readonly share: number;
@@ -68,8 +72,8 @@ class PupilNodes {
     const lambdaUm = nm / 1000;
     this.share = weight / (lambdaUm * lambdaUm);
     this.radPerUm = Math.PI / (lambdaUm * fNumber);
-    // m = -cos phi, s = t sin phi: the rim is smooth in phi and t. At a peak, the tilt of which is taken out, about half of the range of
-    // slopes is left on either side; phi moves along m and, at the rim, along s
+    // m = -cos phi, s = t sin phi: the rim is smooth in phi and t. At a peak, the tilt of which is taken out,
+    // about half of the range of slopes is left on either side; phi moves along m and, at the rim, along s
     const slopeAlong = 0.5 * (slope.alongMax - slope.alongMin);
     const slopeAny = Math.sqrt(slopeAlong * slopeAlong + slope.acrossMax * slope.acrossMax);
     const along = gaussLegendre(nodesForPhase(Math.PI * Math.PI * slopeAny));
@@ -100,7 +104,8 @@ class PupilNodes {
     }
   }
 
-  /** Add this line's height at an image point, with its derivatives, to out: height, d/dx, d/dy, d2/dx2, d2/dxdy, d2/dy2 (per um). */
+  /** Add this line's height at an image point, with its derivatives, to out: height, d/dx, d/dy, d2/dx2,
+   * d2/dxdy, d2/dy2 (per um). */
   addHeight(xUm: number, yUm: number, out: Float64Array): void {
     this.#sum(xUm * this.radPerUm, yUm * this.radPerUm);
     const a = this.#moments; // a of P, then of m P, s P, m^2 P, m s P and s^2 P, real and imaginary parts
@@ -116,7 +121,8 @@ class PupilNodes {
     out[5] += second * (a[4] * a[4] + a[5] * a[5] - a[0] * a[10] - a[1] * a[11]);
   }
 
-  /** Moments 1, m, s, m^2, m s, s^2 of P exp(i (u m + v s)) over the pupil; the sums over +s and -s leave cos(v s) or i sin(v s). */
+  /** Moments 1, m, s, m^2, m s, s^2 of P exp(i (u m + v s)) over the pupil; the sums over +s and -s leave
+   * cos(v s) or i sin(v s). */
   #sum(u: number, v: number): void {
     const moments = this.#moments.fill(0);
     const half = this.#acrossCount;
@@ -178,8 +184,9 @@ function heightAt(pupils: readonly PupilNodes[], xUm: number, yUm: number, out: 
 
 /** Climb from a point on the slope of a peak to its top.
  *
- * Newton's method with the curvatures taken as if all bent down (each step goes uphill, also off a saddle or along the crest of a ring),
- * inside a reach that shrinks after a step too far and grows again after a good one.
+ * Newton's method with the curvatures taken as if all bent down (each step goes uphill, also off a saddle or
+ * along the crest of a ring), inside a reach that shrinks after a step too far and grows again after a good
+ * one.
  * Source: J. Nocedal and S. J. Wright, Numerical Optimization, 3.4 and 4.1 (cited from memory)
  */
 function climb(pupils: readonly PupilNodes[], startX: number, startY: number): PsfPeak {
@@ -221,7 +228,8 @@ function uphill(h: Float64Array, isOnRadius: boolean, reach: number, step: Float
     const angle = 0.5 * Math.atan2(hxy, 0.5 * (hxx - hyy)); // of the direction that bends by mean + spread
     const c = Math.cos(angle);
     const s = Math.sin(angle);
-    const least = 1e-6 * (Math.abs(mean) + spread) + Number.MIN_VALUE; // along the crest of a ring nothing bends
+    // along the crest of a ring nothing bends
+    const least = 1e-6 * (Math.abs(mean) + spread) + Number.MIN_VALUE;
     const first = (c * gx + s * gy) / Math.max(Math.abs(mean + spread), least);
     const second = (c * gy - s * gx) / Math.max(Math.abs(mean - spread), least);
     step[0] = c * first - s * second;

@@ -1,4 +1,4 @@
-/** Contrast by field zone: what the lens, and lens and camera together, do at each field point in each band. */
+/** Contrast by field zone: what the lens, and lens and camera together, do at a field point in a band. */
 import { InputError } from '../errors.js';
 import { bandLateralColourUm } from './colour.js';
 import { distortionPercent } from './distortion.js';
@@ -49,7 +49,8 @@ export interface Zone {
   mtf: ZoneMtf[];
   /** The first frequency at which lens and camera together keep half of the contrast. */
   mtf50LpPerMm: BothDirections;
-  /** Sensor shift, from where the sensor stands, of the highest contrast at the middle frequency; null at frequencies that the stop cuts off. */
+  /** Sensor shift, from where the sensor stands, of the highest contrast at the middle frequency; null at
+   * frequencies that the stop cuts off. */
   bestFocusUm: BothDirections<number | null>;
 }
 
@@ -66,15 +67,17 @@ export interface ZonesReport {
 export interface ZonesOptions {
   /** Left out: axis, top, right and top_right of a symmetric rig, all nine places of another. */
   fields?: readonly FieldSpec[];
-  /** Frequencies on the sensor; left out: 1/8, 1/4 and 1/2 of a cycle a pixel. Focus is judged at the middle one in size, of an even number
-   * at the lower of the two middle ones. */
+  /** Frequencies on the sensor; left out: 1/8, 1/4 and 1/2 of a cycle a pixel. Focus is judged at the middle
+   * one in size, of an even number at the lower of the two middle ones. */
   lpPerMm?: readonly number[];
 }
 
 /** All figures of `zones` for a rig.
  *
- * The order of third-order theory is kept apart for each term: the MTF by `otf.ts`, the Strehl ratio by `strehl.ts`, focus and MTF50 by `focus.ts`.
- * @throws {InputError} for a field point or frequency that is none, and for a wavefront too steep to be computed
+ * With the camera's MTF goes the sinc of its pixels along their rows and columns, in every direction of the
+ * field.
+ * @throws {InputError} for a field point or frequency that is none, and for a wavefront too steep to be
+ *   computed
  */
 export function zonesOf(rig: Rig, options: ZonesOptions = {}): ZonesReport {
   const { camera, lens, mount } = rig;
@@ -195,8 +198,8 @@ function warningsFor(rig: Rig, points: readonly FieldPoint[], frequencies: reado
   const above = frequencies.filter((lpPerMm) => lpPerMm > nyquist * (1 + 1e-9));
   if (above.length > 0)
     warnings.push(
-      `${above.map((lpPerMm) => `${lpPerMm} lp/mm`).join(', ')}: above half a cycle a pixel (${nyquist.toFixed(1)} lp/mm), ` +
-        'where the camera shows aliases and not the detail itself.',
+      `${above.map((lpPerMm) => `${lpPerMm} lp/mm`).join(', ')}: above half a cycle a pixel ` +
+        `(${nyquist.toFixed(1)} lp/mm), where the camera shows aliases and not the detail itself.`,
     );
   return warnings;
 }

@@ -3,7 +3,8 @@ import { gaussLegendre } from '../../src/numeric/gauss-legendre.js';
 
 describe('gaussLegendre', () => {
   it('has the closed-form nodes and weights of 2 and 3 points', () => {
-    // Source: Abramowitz and Stegun, Handbook of Mathematical Functions, table 25.4 (from memory); rounding only
+    // Source: Abramowitz and Stegun, Handbook of Mathematical Functions, table 25.4 (from memory); rounding
+    // only
     const two = gaussLegendre(2);
     expect(two.nodes[1]).toBeCloseTo(Math.sqrt(1 / 3), 14);
     expect(two.weights[0]).toBeCloseTo(1, 14);

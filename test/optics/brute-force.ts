@@ -1,10 +1,13 @@
-/** The optics the slow way, straight from their definitions on a sampled pupil: what the fast ways are held against. */
+/** The optics the slow way, straight from their definitions on a sampled pupil: what the fast ways are held
+ * against. */
 import type { WavefrontLine } from '../../src/optics/psf.js';
 import { type LocalWavefront, opticalPathWaves } from '../../src/optics/wavefront.js';
 
-/** The OTF as the autocorrelation of a pupil of n x n samples: the sum over the samples of which both shifted copies lie in the pupil.
+/** The OTF as the autocorrelation of a pupil of n x n samples: the sum over the samples of which both shifted
+ * copies lie in the pupil.
  *
- * The edge of the overlap is as ragged as the samples: at n = 400 the sum is within some 3e-4 of the integral.
+ * The edge of the overlap is as ragged as the samples: at n = 400 the sum is within some 3e-4 of the
+ * integral.
  * @param angleDeg of the modulation from the outward radius
  */
 export function autocorrelation(
@@ -31,7 +34,8 @@ export function autocorrelation(
   return [re * area, im * area];
 }
 
-/** Heights of a band's PSF on a grid of image points over the height without aberration, by plain sums over n x n pupil samples.
+/** Heights of a band's PSF on a grid of image points over the height without aberration, by plain sums over n
+ * x n pupil samples.
  * @returns heights[i][j] at along[i], across[j] in um */
 export function psfHeights(
   lines: readonly WavefrontLine[],

@@ -115,7 +115,8 @@ describe('mtf50LpPerMm', () => {
 
   it('of a sharp lens before large pixels is where sinc is a half', () => {
     const large = { ...camera, pixelPitchUm: 100 };
-    // sinc x = 1/2 at x = 0.6033545644016 (solved by bisection); at f/1 the lens takes 0.3 % at that frequency
+    // sinc x = 1/2 at x = 0.6033545644016 (solved by bisection); at f/1 the lens takes 0.3 % at that
+    // frequency
     const expected = 0.6033545644016 / 0.1;
     expect(Math.abs(mtf50LpPerMm(line(), 1, large, 'sagittal') / expected - 1)).toBeLessThan(0.004);
   });

@@ -1,4 +1,5 @@
-/** Small makers of what the optics take: a wavefront, the lines of a band, a rig. What is not named is 0 or plain. */
+/** Small makers of what the optics take: a wavefront, the lines of a band, a rig. What is not named is 0 or
+ * plain. */
 import type { WavefrontLine } from '../../src/optics/psf.js';
 import type { Camera, Lens, Mount, Rig, Waves } from '../../src/optics/rig.js';
 import type { LocalWavefront } from '../../src/optics/wavefront.js';

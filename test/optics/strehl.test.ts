@@ -59,7 +59,8 @@ describe('psfPeak', () => {
         (terms) => {
           const peak = strehlRatio(line(terms), 4);
           const grid = highestOnGrid(line(terms), 4);
-          // sums over 72 samples across the pupil are good to 1 %; a grid of 0.3 lambda N misses up to 12 % of a peak
+          // sums over 72 samples across the pupil are good to 1 %; a grid of 0.3 lambda N misses up to 12 %
+          // of a peak
           expect(peak).toBeGreaterThan(0.985 * grid);
           expect(grid).toBeGreaterThan(0.86 * peak);
         },
@@ -103,7 +104,8 @@ describe('psfPeak', () => {
       { nm: 600, weight: 0.4, wavefront: wavefront({ w11: -4 }) },
     ];
     const peak = psfPeak(lines, 4);
-    // the line of 500 nm alone holds 0.6 / 500^2 of the sum; the rings of the other add little 30 lambda N away
+    // the line of 500 nm alone holds 0.6 / 500^2 of the sum; the rings of the other add little 30 lambda N
+    // away
     const share = 0.6 / 500 ** 2 / (0.6 / 500 ** 2 + 0.4 / 600 ** 2);
     expect(peak.strehl).toBeGreaterThan(share);
     expect(peak.strehl).toBeLessThan(share + 1e-3);
@@ -190,7 +192,8 @@ describe('strehlAtReference', () => {
     const lines = bandLines(rig, 3, 2, band);
     const ideal = lines.map((one) => ({ ...one, wavefront: wavefront() }));
     const reference = strehlAtReference(lines, 4);
-    expect(Math.abs(volume(lines) / volume(ideal) - reference)).toBeLessThan(1e-4); // steps of the sum over frequencies
+    // 1e-4: steps of the sum over frequencies
+    expect(Math.abs(volume(lines) / volume(ideal) - reference)).toBeLessThan(1e-4);
     expect(strehlRatio(lines, 4)).toBeGreaterThan(reference);
   });
 
@@ -222,7 +225,7 @@ describe('slopeRange', () => {
           const [m, s] = [rho * Math.cos(theta), rho * Math.sin(theta)];
           const along = (opticalPathWaves(terms, m + 1e-5, s) - opticalPathWaves(terms, m - 1e-5, s)) / 2e-5;
           const across = (opticalPathWaves(terms, m, s + 1e-5) - opticalPathWaves(terms, m, s - 1e-5)) / 2e-5;
-          const slack = 0.3; // looked up on rings 1/8 and spokes 15 degrees apart: the margin of the map is larger
+          const slack = 0.3; // rings 1/8 and spokes 15 degrees apart: the margin of the map is larger
           expect(along).toBeGreaterThan(alongMin - slack);
           expect(along).toBeLessThan(alongMax + slack);
           expect(Math.abs(across)).toBeLessThan(acrossMax + slack);
@@ -246,7 +249,8 @@ describe('findCoarsePeaks', () => {
   });
 });
 
-/** Integral of Re OTF over all frequencies: half a turn counts for the whole, since the other half is conjugate. */
+/** Integral of Re OTF over all frequencies: half a turn counts for the whole, since the other half is
+ * conjugate. */
 function volume(lines: readonly WavefrontLine[]): number {
   const cutOff = 1e6 / (450 * 4);
   const { nodes, weights } = gaussLegendre(60);

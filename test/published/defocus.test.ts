@@ -8,8 +8,8 @@ import { line, sampleRig, wavefront } from '../optics/samples.js';
 const S = [0.05, 0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9];
 
 describe('OTF of a defocused lens', () => {
-  // Source: the Bessel series of H. H. Hopkins, Proc. R. Soc. A 231 (1955) 91 (cited from memory), re-derived and summed, and
-  // confirmed by direct quadrature to 3e-15
+  // Source: the Bessel series of H. H. Hopkins, Proc. R. Soc. A 231 (1955) 91 (cited from memory), re-derived
+  // and summed, and confirmed by direct quadrature to 3e-15
   it.each([
     [
       0.25,

@@ -3,8 +3,8 @@ import { describe, expect, it } from 'vitest';
 import { bandMtf, diffractionMtf, normalisedFrequency, otf, pixelMtf } from '../../src/optics/otf.js';
 import { line, sampleRig, wavefront } from '../optics/samples.js';
 
-// Source: (2/pi)(acos s - s sqrt(1 - s^2)), H. H. Hopkins, Proc. R. Soc. A 231 (1955) 91; J. W. Goodman, Introduction to Fourier
-// Optics, 6.3 (both cited from memory); the figures worked out in double precision
+// Source: (2/pi)(acos s - s sqrt(1 - s^2)), H. H. Hopkins, Proc. R. Soc. A 231 (1955) 91; J. W. Goodman,
+// Introduction to Fourier Optics, 6.3 (both cited from memory); the figures worked out in double precision
 const MTF = [
   [0.05, 0.9363645585431667],
   [0.1, 0.8728885715695383],

@@ -14,10 +14,12 @@ function focus(waves: Partial<Waves>, h: number, lpPerMm: number) {
 }
 
 describe('astigmatic foci and field curvature', () => {
-  // Source: W. T. Welford, Aberrations of Optical Systems (cited from memory), confirmed by close real rays: sensor shift to the sagittal
-  // focus -8 N^2 lambda W220 h^2, to the tangential focus -8 N^2 lambda (W220 + W222) h^2
+  // Source: W. T. Welford, Aberrations of Optical Systems (cited from memory), confirmed by close real rays:
+  // sensor shift to the sagittal focus -8 N^2 lambda W220 h^2, to the tangential focus -8 N^2 lambda (W220 +
+  // W222) h^2
   it.each([0.3, 0.7, 1])('at h = %f', (h) => {
-    // without spherical aberration and coma the phase across the overlap is linear, so the foci are those of rays at any frequency
+    // without spherical aberration and coma the phase across the overlap is linear, so the foci are those of
+    // rays at any frequency
     for (const lpPerMm of [5, 40, 144]) {
       const { tangential, sagittal } = focus({ W222: 0.9, W220: 0.6 }, h, lpPerMm);
       expect(Math.abs(sagittal! + WAVE_UM * 0.6 * h * h)).toBeLessThan(0.01); // the accuracy of best focus
@@ -39,8 +41,9 @@ describe('astigmatic foci and field curvature', () => {
 
 describe('focus of spherical aberration', () => {
   it('is at the least r.m.s. of the rays, W020 = -4/3 W040, at low frequencies', () => {
-    // Source: Born and Wolf, 5.3; Welford (cited from memory). Where geometry rules, an MTF falls as 1 - 2 pi^2 f^2 <eps^2>; what is left
-    // goes with the frequency, as the rim that the shifted pupils do not share does: 1.7 nu of the shift measured
+    // Source: Born and Wolf, 5.3; Welford (cited from memory). Where geometry rules, an MTF falls as 1 - 2
+    // pi^2 f^2 <eps^2>; what is left goes with the frequency, as the rim that the shifted pupils do not share
+    // does: 1.7 nu of the shift measured
     for (const W040 of [0.5, 1, -1])
       for (const lpPerMm of [1, 3, 9]) {
         const { tangential, sagittal } = focus({ W040 }, 0, lpPerMm);
@@ -56,7 +59,8 @@ describe('focus of spherical aberration', () => {
   });
 
   it.each([
-    // Source: none outside; the MTF at W040 = 1, W020 = 0 and -1 from the table of the aberrated MTF, own integration
+    // Source: none outside; the MTF at W040 = 1, W020 = 0 and -1 from the table of the aberrated MTF, own
+    // integration
     [0.1, 0.38070697957664446, 0.7812588207545564],
     [0.3, 0.09367841526004628, 0.4618866987872385],
     [0.5, 0.007822320769742425, 0.3172242155955889],

@@ -14,8 +14,8 @@ interface Case {
 
 const NONE = S.map(() => 0);
 
-// Source: none outside; own integration of the pupil's autocorrelation in two dimensions at two orders (2e-14 apart) and by a
-// transform of a sampled pupil (3e-5 apart), done apart from this project's code
+// Source: none outside; own integration of the pupil's autocorrelation in two dimensions at two orders (2e-14
+// apart) and by a transform of a sampled pupil (3e-5 apart), done apart from this project's code
 const CASES: Case[] = [
   {
     terms: { w40: 0.5 },
@@ -143,7 +143,8 @@ describe('complex OTF of aberrated lenses', () => {
     const out = new Float64Array(2);
     S.forEach((s, i) => {
       otf(wavefront(terms), s, 'tangential', out);
-      expect(Math.hypot(out[0] - tangential.re[i], out[1] - tangential.im[i])).toBeLessThan(5e-8); // quadrature; 7e-9 measured
+      // quadrature; 7e-9 measured
+      expect(Math.hypot(out[0] - tangential.re[i], out[1] - tangential.im[i])).toBeLessThan(5e-8);
       otf(wavefront(terms), s, 'sagittal', out);
       expect(Math.hypot(out[0] - sagittal[i], out[1])).toBeLessThan(5e-8);
     });
@@ -151,7 +152,8 @@ describe('complex OTF of aberrated lenses', () => {
 });
 
 describe('astigmatism W222 = w alone', () => {
-  // Source: derived from the autocorrelation integral: along the radius W222 acts as a defocus, across it not at all
+  // Source: derived from the autocorrelation integral: along the radius W222 acts as a defocus, across it not
+  // at all
   const values = (terms: Partial<LocalWavefront>, direction: 'tangential' | 'sagittal') =>
     S.map((s) => {
       const out = new Float64Array(2);

@@ -5,8 +5,9 @@ import type { Waves } from '../../src/optics/rig.js';
 import { type LocalWavefront, wavefrontAt } from '../../src/optics/wavefront.js';
 import { sampleRig } from '../optics/samples.js';
 
-// Source: Born and Wolf, Principles of Optics, 5.3 (cited from memory): W040, W131, W222, W220 go with aperture r and field h as
-// r^4 h^0, r^3 h^1, r^2 h^2, r^2 h^2; halving the aperture divides them by 16, 8, 4, 4, halving the field by 1, 2, 4, 4
+// Source: Born and Wolf, Principles of Optics, 5.3 (cited from memory): W040, W131, W222, W220 go with
+// aperture r and field h as r^4 h^0, r^3 h^1, r^2 h^2, r^2 h^2; halving the aperture divides them by 16, 8,
+// 4, 4, halving the field by 1, 2, 4, 4
 const LAWS: [keyof Waves, keyof LocalWavefront, number, number][] = [
   ['W040', 'w40', 4, 0],
   ['W131', 'w31', 3, 1],
@@ -20,9 +21,10 @@ describe('power laws', () => {
       const rig = sampleRig({ waves: { [coefficient]: 0.9 }, mount: { fNumber: 4 * stop } });
       return wavefrontAt(rig, 4 * h, 0, 550)[term];
     };
+    // 1e-12: rounding
     for (const h of [0.25, 0.5, 1])
       for (const stop of [1, 1.4, 2, 4])
-        expect(Math.abs(at(h, stop) - 0.9 * h ** inField * stop ** -inAperture)).toBeLessThan(1e-12); // rounding
+        expect(Math.abs(at(h, stop) - 0.9 * h ** inField * stop ** -inAperture)).toBeLessThan(1e-12);
   });
 
   it('the transverse blur of a term goes with the aperture as one power less', () => {

@@ -1,4 +1,5 @@
-/** RMS of the wavefront, the Strehl ratio at the reference point and at the true peak, and what ties them together. */
+/** RMS of the wavefront, the Strehl ratio at the reference point and at the true peak, and what ties them
+ * together. */
 import { describe, expect, it } from 'vitest';
 import { psfPeak, strehlAtReference, strehlRatio } from '../../src/optics/strehl.js';
 import { type LocalWavefront, wavefrontRmsWaves } from '../../src/optics/wavefront.js';
@@ -17,8 +18,8 @@ const DEFOCUS: Terms = (a) => ({ w20: a });
 const AMPLITUDES = [0.1, 0.25, 0.5, 1, 2];
 
 describe('RMS of the wavefront, piston and tilt taken out', () => {
-  // Source: V. N. Mahajan, JOSA 73 (1983) 860; Born and Wolf, Principles of Optics, 9.3 (both cited from memory); confirmed by
-  // quadrature over the pupil. Coma's is the one with its balancing tilt
+  // Source: V. N. Mahajan, JOSA 73 (1983) 860; Born and Wolf, Principles of Optics, 9.3 (both cited from
+  // memory); confirmed by quadrature over the pupil. Coma's is the one with its balancing tilt
   it.each([
     ['W040', SPHERICAL, 2 / (3 * Math.sqrt(5))],
     ['W040 with W020 = -W040', SPHERICAL_BALANCED, 1 / (6 * Math.sqrt(5))],
@@ -27,7 +28,7 @@ describe('RMS of the wavefront, piston and tilt taken out', () => {
     ['W222 with W020 = -W222/2', ASTIGMATISM_BALANCED, 1 / (2 * Math.sqrt(6))],
     ['W220 or W020', DEFOCUS, 1 / (2 * Math.sqrt(3))],
   ] as [string, Terms, number][])('of 1 wave of %s', (_, terms, sigma) => {
-    expect(Math.abs(wavefrontRmsWaves(wavefront(terms(1))) - sigma)).toBeLessThan(1e-12); // closed forms: rounding
+    expect(Math.abs(wavefrontRmsWaves(wavefront(terms(1))) - sigma)).toBeLessThan(1e-12); // rounding
     expect(Math.abs(wavefrontRmsWaves(wavefront(terms(-3))) - 3 * sigma)).toBeLessThan(1e-12);
   });
 
@@ -37,8 +38,8 @@ describe('RMS of the wavefront, piston and tilt taken out', () => {
 });
 
 describe('Strehl ratio at the reference point', () => {
-  // Source: none outside; one-dimensional Fresnel and Bessel integrals in 30 digits against two-dimensional quadrature, 8e-15 apart,
-  // done apart from this project's code. The product promises 0.002
+  // Source: none outside; one-dimensional Fresnel and Bessel integrals in 30 digits against two-dimensional
+  // quadrature, 8e-15 apart, done apart from this project's code. The product promises 0.002
   it.each([
     [
       'W040',
@@ -110,8 +111,8 @@ describe('Strehl ratio at the true peak', () => {
   });
 
   it.each([
-    // Source: criterion of Marechal (Rev. Opt. 26 (1947) 257) as in Born and Wolf, 9.3 (both cited from memory): sigma = 1/14 wave;
-    // the coefficients and the exact ratios there own
+    // Source: criterion of Marechal (Rev. Opt. 26 (1947) 257) as in Born and Wolf, 9.3 (both cited from
+    // memory): sigma = 1/14 wave; the coefficients and the exact ratios there own
     ['W040', SPHERICAL, 0.23957871187497745, 0.8152009059129719, 0.25021041428514806],
     [
       'W040 with W020 = -W040',
@@ -142,8 +143,9 @@ describe('Strehl ratio at the true peak', () => {
   );
 
   it('lies between the approximations of Marechal and of Mahajan for small aberrations', () => {
-    // Source: (1 - x/2)^2 Marechal (1947), exp(-x) Mahajan (1983), x = (2 pi sigma)^2 (cited from memory); at sigma = 1/14 they are
-    // 0.80872206 and 0.81756857, and the exact ratios above fall between them but for W222's 2e-4
+    // Source: (1 - x/2)^2 Marechal (1947), exp(-x) Mahajan (1983), x = (2 pi sigma)^2 (cited from memory); at
+    // sigma = 1/14 they are 0.80872206 and 0.81756857, and the exact ratios above fall between them but for
+    // W222's 2e-4
     for (const terms of [SPHERICAL, COMA_BALANCED, ASTIGMATISM_BALANCED, DEFOCUS]) {
       const sigma = wavefrontRmsWaves(wavefront(terms(1)));
       const x = (2 * Math.PI) ** 2 / 14 ** 2;
@@ -154,7 +156,8 @@ describe('Strehl ratio at the true peak', () => {
   });
 
   it('over focus of W040 alone: one maximum at W020 = -W040 up to 2.36 waves, twins beyond', () => {
-    // Source: V. N. Mahajan, JOSA 72 (1982) 1258, about 2.3 waves (cited from memory); 2.361585 and the rows own
+    // Source: V. N. Mahajan, JOSA 72 (1982) 1258, about 2.3 waves (cited from memory); 2.361585 and the rows
+    // own
     const onAxis = (w40: number, offset: number) => strehlAtReference(line({ w40, w20: -w40 + offset }), 4);
     for (const [w40, middle] of [
       [2, 0.39474132088736275],
