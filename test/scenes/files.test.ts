@@ -1,0 +1,104 @@
+import {
+  copyFileSync,
+  mkdirSync,
+  mkdtempSync,
+  readdirSync,
+  readFileSync,
+  rmSync,
+  writeFileSync,
+} from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import { fileURLToPath } from 'node:url';
+import { afterAll, describe, expect, it } from 'vitest';
+import { cocoText, toCoco } from '../../scenes/draw/labels.js';
+import { DEMO_SCENES, START_SCENES } from '../../scenes/draw/pictures.js';
+import { loadRecipe } from '../../src/files/load-recipe.js';
+import { loadRig } from '../../src/files/load-rig.js';
+import { loadTask } from '../../src/files/load-task.js';
+import { colourWarnings } from '../../src/optics/limits.js';
+import type { Rig } from '../../src/optics/rig.js';
+import { pixelPitchMm } from '../../src/optics/rig.js';
+
+const folder = (name: string) => fileURLToPath(new URL(`../../scenes/${name}/`, import.meta.url));
+const HALL = folder('packhouse');
+const START = folder('start');
+const scratch = mkdtempSync(join(tmpdir(), 'scenes-'));
+afterAll(() => rmSync(scratch, { recursive: true }));
+
+/** Which scene belongs to which rig. */
+const PAIRS = [
+  { rig: join(HALL, 'tags-green.rig.yaml'), scene: scene(DEMO_SCENES, 'crate-tags') },
+  { rig: join(HALL, 'tags-green.rig.yaml'), scene: scene(DEMO_SCENES, 'test-chart') },
+  { rig: join(HALL, 'belt-colour.rig.yaml'), scene: scene(DEMO_SCENES, 'apple-belt') },
+  { rig: join(START, 'tags.rig.yaml'), scene: scene(START_SCENES, 'crate-tags') },
+  { rig: join(START, 'belt.rig.yaml'), scene: scene(START_SCENES, 'apples-1') },
+  { rig: join(START, 'belt.rig.yaml'), scene: scene(START_SCENES, 'apples-2') },
+];
+
+describe('the rigs of the packing hall', () => {
+  it.each(PAIRS)('$scene.file has as many pixels as the camera', ({ rig, scene }) => {
+    const { width, height } = scene.draw();
+    expect(loadRig(rig).camera.pixels).toEqual([width, height]);
+  });
+
+  it.each(PAIRS)('no figure of the lens is used past its range ($rig)', ({ rig }) => {
+    const loaded = loadRig(rig);
+    expect(cornerField(loaded)).toBeLessThanOrEqual(1);
+    expect(cornerField(loaded)).toBeGreaterThan(0.99); // so that h = 1 is the corner, as the comments say
+    expect(colourWarnings(loaded)).toEqual([]);
+  });
+});
+
+describe('the tasks and recipes', () => {
+  it('load', () => {
+    expect(loadTask(join(HALL, 'read-tags.task.yaml')).rules).toHaveLength(4);
+    expect(loadTask(join(START, 'read-tags.task.yaml')).rules).toHaveLength(4);
+    expect(loadRecipe(join(START, 'training.recipe.yaml')).rigs).toEqual([join(START, 'belt.rig.yaml')]);
+  });
+
+  it('load beside what the demo has drawn', () => {
+    for (const name of ['training.recipe.yaml', 'belt-colour.rig.yaml']) {
+      copyFileSync(join(HALL, name), join(scratch, name));
+    }
+    mkdirSync(join(scratch, 'out/scenes/belt'), { recursive: true });
+    writeFileSync(join(scratch, 'out', scene(DEMO_SCENES, 'apple-belt').labels!), '{}');
+    expect(loadRecipe(join(scratch, 'training.recipe.yaml')).count).toBe(500);
+  });
+
+  it('vary a lens about the figures of its own rig', () => {
+    const { vary } = loadRecipe(join(START, 'training.recipe.yaml'));
+    const { waves } = loadRig(join(START, 'belt.rig.yaml')).lens;
+    for (const name of ['W131', 'W222'] as const) {
+      const entry = vary.find(({ key }) => key === `lens.waves.${name}`);
+      expect(entry?.distribution).toMatchObject({ kind: 'normal', mean: waves[name] });
+    }
+  });
+});
+
+describe('the folder of `foreglass start`', () => {
+  it('has labels that match its scenes', () => {
+    const entries = START_SCENES.filter(({ labels }) => labels !== undefined).map(({ file, draw }) => {
+      const { width, height, labels } = draw();
+      return { file: file.slice(file.lastIndexOf('/') + 1), width, height, labels };
+    });
+    expect(readFileSync(join(START, 'belt-labels.json'), 'utf8')).toBe(cocoText(toCoco(entries)));
+    expect(readdirSync(join(START, 'scenes/belt')).sort()).toEqual(entries.map(({ file }) => file));
+  });
+
+  it('is small enough to ship', () => {
+    for (const { file } of START_SCENES) {
+      expect(readFileSync(join(START, file)).length, file).toBeLessThan(300_000); // a tenth of a common picture of a phone
+    }
+  });
+});
+
+function scene(list: typeof DEMO_SCENES, name: string) {
+  return list.find(({ file }) => file.endsWith(`/${name}.png`))!;
+}
+
+/** h of the sensor's corner. */
+function cornerField({ camera, lens }: Rig): number {
+  const [width, height] = camera.pixels;
+  return (Math.hypot((width - 1) / 2, (height - 1) / 2) * pixelPitchMm(camera)) / lens.fullFieldMm;
+}
