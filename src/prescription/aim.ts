@@ -6,14 +6,17 @@ import type { LensAt } from './lens-model.js';
 /** Steps of the search for one ray: a rim ray of a wide lens needs about 8. */
 const MAX_STEPS = 40;
 
-/** Leaves `ray` launched and traced up to the stop at (across, along) times the stop's radius, across the field and along it (outward, as the
- * paraxial pupil has it), and returns true; or false where no such ray was found (`ray` then holds the last failure, if there was one).
+/** Leaves `ray` launched and traced up to the stop at (across, along) times the stop's radius, across the
+ * field and along it (outward, as the paraxial pupil has it), and returns true; or false where no such ray
+ * was found (`ray` then holds the last failure, if there was one).
  *
- * A secant method in two dimensions (Broyden's rank-one update, Math. Comp. 19 (1965) 577, cited from memory), from the paraxial ray and the paraxial
- * Jacobian. A step after which the ray fails is halved; where the start itself fails, field and pupil are grown from nothing in small steps.
+ * A secant method in two dimensions (Broyden's rank-one update, Math. Comp. 19 (1965) 577, cited from
+ * memory), from the paraxial ray and the paraxial Jacobian. A step after which the ray fails is halved; where
+ * the start itself fails, field and pupil are grown from nothing in small steps.
  *
  * @param h      field
- * @param start  x and y in the plane of the first vertex: from where to begin; where the ray was found, on return
+ * @param start  x and y in the plane of the first vertex: from where to begin; where the ray was found, on
+ *   return
  */
 export function aim(
   ray: Ray,
@@ -67,7 +70,8 @@ function search(
   const targetY = along * marginal.y[system.stop];
   let a = start[0];
   let b = start[1];
-  // W is hardly touched: a ray that is off by e of the radius has its path off by e times the slope of W. Rounding sets the second part
+  // W is hardly touched: a ray that is off by e of the radius has its path off by e times the slope of W.
+  // Rounding sets the second part
   const tolerance = 1e-12 * stopRadiusMm + 1e-14 * (Math.abs(a) + Math.abs(b));
   launch(ray, system, field, a, b);
   if (!trace(ray, system, end)) return false;

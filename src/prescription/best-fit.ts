@@ -6,12 +6,13 @@ import { FITTED_TERMS, meanSquare, removePistonAndTilt, termValues } from './exa
 
 /** Least-squares coefficients for the exact wavefronts of several field points.
  *
- * Each field point counts with what it leaves against what it has, 1 / (variance + (wavelength / 14)^2): so a corner with ten waves does not
- * settle the terms at the expense of a middle with a tenth of one. The 1/14 wave, Marechal's limit, is where a wavefront starts to be good
- * enough not to matter.
+ * Each field point counts with what it leaves against what it has, 1 / (variance + (wavelength / 14)^2): so a
+ * corner with ten waves does not settle the terms at the expense of a middle with a tenth of one. The 1/14
+ * wave, Marechal's limit, is where a wavefront starts to be good enough not to matter.
  *
- * Piston and tilt of each field point are free, so that distortion beyond the third order does not leak into coma. W311 then comes from those
- * tilts: the best a h^3 for what the fit leaves of tilt, so that the image point lies where the spot is. W111 stays 0.
+ * Piston and tilt of each field point are free, so that distortion beyond the third order does not leak into
+ * coma. W311 then comes from those tilts: the best a h^3 for what the fit leaves of tilt, so that the image
+ * point lies where the spot is. W111 stays 0.
  *
  * @param fields        at least two different ones that light reaches, of which one is not the axis
  * @param wavelengthNm  in whose waves the result is counted
@@ -68,7 +69,8 @@ function basisOf({ h, samples }: ExactField): Float64Array[] {
 }
 
 /** Solve columns * x = right by orthogonal columns (modified Gram-Schmidt, the right side carried along).
- * Source: A. Bjorck, "Solving linear least squares problems by Gram-Schmidt orthogonalization", BIT 7 (1967) 1 (cited from memory).
+ * Source: A. Bjorck, "Solving linear least squares problems by Gram-Schmidt orthogonalization", BIT 7 (1967)
+ * 1 (cited from memory).
  */
 function leastSquares(columns: Float64Array[], right: Float64Array): Float64Array {
   const count = columns.length;

@@ -5,7 +5,8 @@ import type { Aperture, FieldSize, Glass, Prescription, Surface } from './prescr
 import { ASPHERIC_TERMS } from './prescription.js';
 
 /** Check a prescription.
- * @throws {InputError} with all faults that were found, each with the path of its key (`surfaces[0]` is surface 1)
+ * @throws {InputError} with all faults that were found, each with the path of its key (`surfaces[0]` is
+ *   surface 1)
  */
 export function checkPrescription(prescription: Prescription): void {
   const { surfaces, wavelengthNm } = prescription;

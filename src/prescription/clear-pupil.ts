@@ -2,8 +2,8 @@
 import { gaussLegendre } from '../numeric/gauss-legendre.js';
 import type { FieldTracer } from './opd.js';
 
-/** Half-plane spokes (the other half mirrors them) and rings. Rings integrate rho^22, spokes cos^47, without error; where vignetting puts
- * corners into the outline, 24 spokes leave an area off by some 0.2 %. */
+/** Half-plane spokes (the other half mirrors them) and rings. Rings integrate rho^22, spokes cos^47, without
+ * error; where vignetting puts corners into the outline, 24 spokes leave an area off by some 0.2 %. */
 const SPOKES = 24;
 const RINGS = 6;
 
@@ -17,13 +17,15 @@ export interface PupilSamples {
 export interface ClearPupil {
   /** Open share of the stop's area. */
   share: number;
-  /** Area of the beam in `FieldTracer.lightCoordinates`: proportional to the light that an even, diffuse object sends from here through the lens. */
+  /** Area of the beam in `FieldTracer.lightCoordinates`: proportional to the light that an even, diffuse
+   * object sends from here through the lens. */
   light: number;
   samples: PupilSamples;
 }
 
-/** Find the open part of the stop: along the meridian first, then along spokes from the middle of what is open there. It is taken to be one
- * piece that its middle sees all of, which holds for what the round rims of surfaces leave.
+/** Find the open part of the stop: along the meridian first, then along spokes from the middle of what is
+ * open there. It is taken to be one piece that its middle sees all of, which holds for what the round rims of
+ * surfaces leave.
  * @returns undefined where no light gets through
  */
 export function clearPupil(tracer: FieldTracer): ClearPupil | undefined {
@@ -108,7 +110,8 @@ function samplesWithin(middle: number, edge: Float64Array, area: number): PupilS
 /** Area of the polygon through points (x, y) and their mirror images (-x, y). */
 function mirroredPolygonArea(x: Float64Array, y: Float64Array): number {
   const last = x.length - 1;
-  // the shoelace formula: the mirrored half adds what the first half does, and two edges join a point with its own mirror image
+  // the shoelace formula: the mirrored half adds what the first half does, and two edges join a point with
+  // its own mirror image
   let area = x[last] * y[last] - x[0] * y[0];
   for (let j = 0; j < last; j++) area += x[j] * y[j + 1] - x[j + 1] * y[j];
   return Math.abs(area);

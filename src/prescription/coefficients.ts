@@ -14,11 +14,12 @@ export function referenceSums(model: LensModel): SeidelTable {
 
 /** The third-order terms at a wavelength, as optical path in waves of the lens's own wavelength.
  *
- * Stop and object are the same at all wavelengths, so rho and h mean the same everywhere. W020 is what the sensor's place adds where the
- * prescription states it, the same at all wavelengths: axial colour is a table of its own.
+ * Stop and object are the same at all wavelengths, so rho and h mean the same everywhere. W020 is what the
+ * sensor's place adds where the prescription states it, the same at all wavelengths: axial colour is a table
+ * of its own.
  *
- * An image point moves by -2 N lambda W311 with the N of the wavelength at hand, but who uses a lens knows its own N only: so W311 is given the factor
- * N(wavelength)/N.
+ * An image point moves by -2 N lambda W311 with the N of the wavelength at hand, but who uses a lens knows
+ * its own N only: so W311 is given the factor N(wavelength)/N.
  */
 export function thirdOrderWaves(model: LensModel, lens: LensAt): Waves {
   const waves = wavesFromSums(seidelTable(lens, lens, lens).total, model.prescription.wavelengthNm);
@@ -40,8 +41,9 @@ export function axialColourMm(model: LensModel, lens: LensAt): number {
   return (lens.paraxial.imageDistanceMm - paraxial.imageDistanceMm) * system.index[system.count];
 }
 
-/** How far the chief ray of h = 1 lands on the sensor from where it does at the lens's own wavelength, mm, + outward. Taken in the plane of the
- * sensor, not at each wavelength's own focus: there a defocused spot has its middle. */
+/** How far the chief ray of h = 1 lands on the sensor from where it does at the lens's own wavelength, mm, +
+ * outward. Taken in the plane of the sensor, not at each wavelength's own focus: there a defocused spot has
+ * its middle. */
 export function lateralColourMm(model: LensModel, lens: LensAt): number {
   return lens.paraxial.imageHeightMm - model.reference.paraxial.imageHeightMm;
 }

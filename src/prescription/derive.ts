@@ -1,4 +1,6 @@
-/** From surfaces to a lens that the rest of the program takes as it is, with an account of how far it can be trusted. */
+/** From surfaces to a lens that the rest of the program takes as it is, with an account of how far it can be
+ * trusted. */
+import { InputError } from '../errors.js';
 import type { Lens, RelativeIllumination, Waves } from '../optics/rig.js';
 import { bestFit } from './best-fit.js';
 import {
@@ -10,7 +12,7 @@ import {
   thirdOrderWaves,
 } from './coefficients.js';
 import type { ExactField } from './exact-field.js';
-import { exactField } from './exact-field.js';
+import { exactField, recoloured } from './exact-field.js';
 import type { Explained } from './explained.js';
 import { explain, explainedWarnings } from './explained.js';
 import { ABBE_RANGE_NM } from './glass.js';
@@ -26,14 +28,16 @@ export const EXACT_FIELDS: readonly number[] = [0, 0.3, 0.5, 0.7, 0.8, 0.9, 1];
 export interface DeriveOptions {
   /** At which the coefficients are traced, beside the lens's own. */
   wavelengthsNm?: readonly number[];
-  /** h of the exact check, of the fit and of the table of relative illumination (0 and 1 are added to that). */
+  /** h of the exact check, of the fit and of the table of relative illumination (0 and 1 are added to that).
+   */
   fields?: readonly number[];
   /** Fit the terms to the exact wavefront instead of summing them up. */
   bestFit?: boolean;
 }
 
 export interface Derivation {
-  /** For a rig: with the coefficients of each wavelength and, as relative illumination, what exact rays say. */
+  /** For a rig: with the coefficients of each wavelength and, as relative illumination, what exact rays say.
+   */
   lens: Lens;
   paraxial: Paraxial;
   /** The terms in `lens.waves`: from the sums, or from the fit. */
@@ -47,16 +51,18 @@ export interface Derivation {
 }
 
 /** Derive a lens from its surfaces.
- * @throws {InputError} for a faulty prescription, for surfaces that form no image, and for exact rays that miss a surface or are totally reflected
+ * @throws {InputError} for a faulty prescription, for surfaces that form no image, for exact rays that miss a
+ *   surface or are totally reflected, and for fields or wavelengths that cannot be
  */
 export function deriveLens(prescription: Prescription, options: DeriveOptions = {}): Derivation {
+  checkOptions(options);
   const model = lensModel(prescription);
   const hs = [...(options.fields ?? EXACT_FIELDS)].sort((a, b) => a - b);
   const all = [...new Set([0, ...hs, 1])].sort((a, b) => a - b).map((h) => exactField(model.reference, h));
   const fields = hs.map((h) => all.find((field) => field.h === h) as ExactField);
   const fitted = options.bestFit ?? false;
   const lens: Lens = {
-    ...lensOf(model, options.wavelengthsNm ?? [], fitted ? fitAt(hs, fields) : thirdOrderWaves),
+    ...lensOf(model, options.wavelengthsNm ?? [], fitted ? fitAt(fields) : thirdOrderWaves),
     relativeIllumination: illuminationTable(all),
   };
   const { surfaces, total } = referenceSums(model);
@@ -122,13 +128,11 @@ function lensOf(
   };
 }
 
-/** The fit at each wavelength; at the lens's own the rays are there already. What the fit finds of axial colour is given back: it has its table. */
-function fitAt(
-  hs: readonly number[],
-  known: readonly ExactField[],
-): (model: LensModel, lens: LensAt) => Waves {
+/** The fit at each wavelength, from the field points traced at the lens's own. What it finds of axial colour
+ * is given back: that has its table. */
+function fitAt(known: readonly ExactField[]): (model: LensModel, lens: LensAt) => Waves {
   return (model, lens) => {
-    const fields = lens === model.reference ? known : hs.map((h) => exactField(lens, h));
+    const fields = lens === model.reference ? known : known.map((field) => recoloured(field, lens));
     const waves = bestFit(fields, model.prescription.wavelengthNm);
     return {
       ...waves,
@@ -138,6 +142,20 @@ function fitAt(
   };
 }
 
+function checkOptions({ fields, wavelengthsNm }: DeriveOptions): void {
+  const refuse = (key: string, message: string, found: unknown, allowed: string) => {
+    throw new InputError({ key, message, found: String(found), allowed });
+  };
+  if (fields?.length === 0) refuse('--fields', 'no field point is named', '[]', 'at least one');
+  for (const h of fields ?? [])
+    if (!(Number.isFinite(h) && h >= 0))
+      refuse('--fields', 'this field is not possible', h, '0 (axis) to 1 (full field), or a little more');
+  for (const nm of wavelengthsNm ?? [])
+    if (!(Number.isFinite(nm) && nm > 0))
+      refuse('wavelengths', 'this wavelength is not possible', nm, 'a number above 0, in nm');
+}
+
+/** @param fields the axis first: there the chief ray always gets through, so there is light */
 function illuminationTable(fields: readonly ExactField[]): RelativeIllumination {
   const axis = fields[0].illuminance;
   return fields.map(({ h, illuminance }) => [h, illuminance / axis] as const);

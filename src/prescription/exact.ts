@@ -2,7 +2,8 @@
 import { InputError } from '../errors.js';
 import type { OpticalSystem } from './system.js';
 
-/** A ray under way: where it is, where it goes, what path it has behind it. One object is used again and again by the hot loops. */
+/** A ray under way: where it is, where it goes, what path it has behind it. One object is used again and
+ * again by the hot loops. */
 export class Ray {
   /** Point on the surface reached last, from its vertex, mm. */
   x = 0;
@@ -12,8 +13,8 @@ export class Ray {
   L = 0;
   M = 0;
   N = 1;
-  /** Optical path so far beyond that along the axis, mm. Path lengths of 100 mm that differ by a millionth of a wave would lose 10 of 16 digits;
-   * their excesses over the axis are small from the start. */
+  /** Optical path so far beyond that along the axis, mm. Path lengths of 100 mm that differ by a millionth of
+   * a wave would lose 10 of 16 digits; their excesses over the axis are small from the start. */
   excess = 0;
   /** First surface whose semi-diameter cuts the ray; -1: none. The ray goes on all the same. */
   blockedAt = -1;
@@ -24,8 +25,8 @@ export class Ray {
 
 /** Start a ray of an object point through (x, y) in the plane of the first vertex.
  *
- * @param field  slope of the chief ray for a distant object; for a near one the height of the object over its distance, both with the sign that images
- *   a positive field outward (`Paraxial.fieldScale` times h)
+ * @param field  slope of the chief ray for a distant object; for a near one the height of the object over its
+ *   distance, both with the sign that images a positive field outward (`Paraxial.fieldScale` times h)
  */
 export function launch(ray: Ray, system: OpticalSystem, field: number, x: number, y: number): void {
   const l = system.objectDistance;
@@ -47,14 +48,15 @@ export function launch(ray: Ray, system: OpticalSystem, field: number, x: number
   ray.failedAt = -1;
 }
 
-/** Trace a launched ray through surfaces 0 to `end - 1`; it ends on the last of them, its direction being that behind it.
+/** Trace a launched ray through surfaces 0 to `end - 1`; it ends on the last of them, its direction being
+ * that behind it.
  *
  * The start of the conic's intersection and the laws of refraction and reflection in vector form:
- * W. T. Welford, Aberrations of Optical Systems (1986), ch. 4 (cited from memory). The intersection is written so that the sag comes out of the
- * division without cancellation.
+ * W. T. Welford, Aberrations of Optical Systems (1986), ch. 4 (cited from memory). The intersection is
+ * written so that the sag comes out of the division without cancellation.
  *
- * @returns whether it got through; where not, `ray.failedAt` and `ray.failure` say why. A surface with a semi-diameter that is missed altogether
- *   counts as cutting the ray: `blockedAt` is set too.
+ * @returns whether it got through; where not, `ray.failedAt` and `ray.failure` say why. A surface with a
+ *   semi-diameter that is missed altogether counts as cutting the ray: `blockedAt` is set too.
  */
 export function trace(ray: Ray, system: OpticalSystem, end: number = system.count): boolean {
   const { curvature, conic, aspheric, thickness, index, semiDiameter } = system;
@@ -117,7 +119,8 @@ export function trace(ray: Ray, system: OpticalSystem, end: number = system.coun
   return true;
 }
 
-/** The error for a ray that does not get through. @param which  the ray, in words: `the chief ray of field 1` */
+/** The error for a ray that does not get through. @param which  the ray, in words: `the chief ray of field 1`
+ */
 export function rayError(ray: Ray, which: string): InputError {
   const surface = ray.failedAt + 1;
   return new InputError({
@@ -135,7 +138,8 @@ function fail(ray: Ray, system: OpticalSystem, i: number, failure: Ray['failure'
   return false;
 }
 
-/** Newton's iteration for the path s from the vertex plane to an aspheric surface; NaN where it finds none. */
+/** Newton's iteration for the path s from the vertex plane to an aspheric surface; NaN where it finds none.
+ */
 function meetAsphere(
   c: number,
   k: number,

@@ -5,8 +5,8 @@ import { meanSquare, modelWavefront, removePistonAndTilt } from './exact-field.j
 
 export interface Explained {
   field: number;
-  /** Share of the exact wavefront's variance over the open pupil that the terms explain: 1 all of it, below 0 worse than no terms at all. Piston
-   * and tilt are taken out of both. Null where no light gets through. */
+  /** Share of the exact wavefront's variance over the open pupil that the terms explain: 1 all of it, below 0
+   * worse than no terms at all. Piston and tilt are taken out of both. Null where no light gets through. */
   share: number | null;
   /** RMS that the terms leave, in waves. */
   rmsLeftWaves: number | null;

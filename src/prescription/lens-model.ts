@@ -7,7 +7,8 @@ import type { Prescription } from './prescription.js';
 import type { OpticalSystem } from './system.js';
 import { scaleSurfaces, systemAt } from './system.js';
 
-/** The lens at one wavelength: same stop, same object, same place of the sensor as at the lens's own wavelength. */
+/** The lens at one wavelength: same stop, same object, same place of the sensor as at the lens's own
+ * wavelength. */
 export interface LensAt {
   system: OpticalSystem;
   paraxial: Paraxial;
@@ -18,12 +19,14 @@ export interface LensModel {
   prescription: Prescription;
   /** At the lens's own wavelength. */
   reference: LensAt;
-  /** How far the sensor stands behind the paraxial focus of the lens's own wavelength, + away from the lens; 0 where the focus was solved. */
+  /** How far the sensor stands behind the paraxial focus of the lens's own wavelength, + away from the lens;
+   * 0 where the focus was solved. */
   defocusMm: number;
 }
 
 /** Check a prescription, scale it, put the sensor at its place and find its first-order optics.
- * @throws {InputError} for what `checkPrescription` and `paraxial` refuse; for a focal length that cannot be scaled
+ * @throws {InputError} for what `checkPrescription` and `paraxial` refuse; for a focal length that cannot be
+ *   scaled
  */
 export function lensModel(given: Prescription): LensModel {
   checkPrescription(given);

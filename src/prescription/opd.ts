@@ -4,7 +4,8 @@ import { aim, paraxialStart } from './aim.js';
 import { launch, Ray, rayError, trace } from './exact.js';
 import type { LensAt } from './lens-model.js';
 
-/** The rays of one field point. Pupil coordinates are places in the stop over its radius: m along the field, outward; s across it. */
+/** The rays of one field point. Pupil coordinates are places in the stop over its radius: m along the field,
+ * outward; s across it. */
 export class FieldTracer {
   readonly lens: LensAt;
   readonly h: number;
@@ -38,9 +39,10 @@ export class FieldTracer {
 
   /** Trace the ray through (m, s) of the stop.
    *
-   * @returns whether it reaches the sensor with nothing in its way. False also where surfaces in front bend all light away from that place of
-   *   the stop, so that no ray goes there
-   * @throws {InputError} where it misses a surface without semi-diameter, or is totally reflected where no semi-diameter cuts it before
+   * @returns whether it reaches the sensor with nothing in its way. False also where surfaces in front bend
+   *   all light away from that place of the stop, so that no ray goes there
+   * @throws {InputError} where it misses a surface without semi-diameter, or is totally reflected where no
+   *   semi-diameter cuts it before
    */
   passes(m: number, s: number): boolean {
     const found = this.#seek(m, s);
@@ -50,10 +52,12 @@ export class FieldTracer {
     return true;
   }
 
-  /** W = path of the chief ray less that of the ray through (m, s), to the reference sphere, in mm: positive for an undercorrected lens.
+  /** W = path of the chief ray less that of the ray through (m, s), to the reference sphere, in mm: positive
+   * for an undercorrected lens.
    *
-   * The sphere is centred on the ideal image point, h times `Paraxial.imageHeightMm` in the plane of the sensor, and passes through the centre
-   * of the exit pupil. So W holds the tilt of distortion and the defocus of a sensor that is off the focus. Vignetting is not looked at.
+   * The sphere is centred on the ideal image point, h times `Paraxial.imageHeightMm` in the plane of the
+   * sensor, and passes through the centre of the exit pupil. So W holds the tilt of distortion and the
+   * defocus of a sensor that is off the focus. Vignetting is not looked at.
    * Source: W. T. Welford, Aberrations of Optical Systems (1986), ch. 7 (cited from memory).
    * @throws {InputError} where the ray misses a surface or is totally reflected
    */
@@ -62,9 +66,10 @@ export class FieldTracer {
     return this.#chiefPath - this.#pathToSphere();
   }
 
-  /** The ray sought last in front of the lens, in coordinates in which equal areas carry equal light from this field point: direction cosines where
-   * the object is near; where it is distant, the place in the plane of the first vertex times cos^2 of the field angle (one cosine for the beam's
-   * width and three for the solid angle that an element of the image plane takes up, on two coordinates). */
+  /** The ray sought last in front of the lens, in coordinates in which equal areas carry equal light from
+   * this field point: direction cosines where the object is near; where it is distant, the place in the plane
+   * of the first vertex times cos^2 of the field angle (one cosine for the beam's width and three for the
+   * solid angle that an element of the image plane takes up, on two coordinates). */
   get lightCoordinates(): { across: number; along: number } {
     const { system, paraxial } = this.lens;
     launch(this.#ray, system, this.h * paraxial.fieldScale, this.#start[0], this.#start[1]);
@@ -113,11 +118,13 @@ export class FieldTracer {
   }
 }
 
-/** Optical path of a ray that was traced through a lens, up to a reference sphere, less the length of the axis and the sphere's radius; mm.
+/** Optical path of a ray that was traced through a lens, up to a reference sphere, less the length of the
+ * axis and the sphere's radius; mm.
  *
- * With q from the point on the last surface to the centre of the sphere, b = q.d and e the distance at which the ray passes the centre, the ray
- * meets the sphere sqrt(R^2 - e^2) before the foot of the perpendicular, so its path there is b - R + e^2 / (R + sqrt(R^2 - e^2)). In 1/R this
- * serves an exit pupil at infinity, too.
+ * With q from the point on the last surface to the centre of the sphere, b = q.d and e the distance at which
+ * the ray passes the centre, the ray meets the sphere sqrt(R^2 - e^2) before the foot of the perpendicular,
+ * so its path there is b - R + e^2 / (R + sqrt(R^2 - e^2)). In 1/R this serves an exit pupil at infinity,
+ * too.
  *
  * @param centreY    centre of the sphere in the plane of the sensor, in the meridian of the field, mm
  * @param curvature  1/R; negative where the exit pupil lies behind the image

@@ -1,4 +1,5 @@
-/** First-order optics: where image and pupils lie, and the two rays from which the third-order sums are made. */
+/** First-order optics: where image and pupils lie, and the two rays from which the third-order sums are made.
+ */
 import { InputError } from '../errors.js';
 import type { Aperture, FieldSize } from './prescription.js';
 import type { OpticalSystem } from './system.js';
@@ -13,11 +14,12 @@ export interface ParaxialRay {
 
 /** The aperture, or a stop of known radius: what stays when only the wavelength changes. */
 export type ApertureOrStop = Aperture | { stopRadiusMm: number };
-/** The field, or a chief ray scale H/y (see `Paraxial.fieldScale`): what stays when only the wavelength changes. */
+/** The field, or a chief ray scale H/y (see `Paraxial.fieldScale`): what stays when only the wavelength
+ * changes. */
 export type FieldOrScale = FieldSize | { fieldScale: number };
 
-/** First-order properties at one wavelength. Distances run along +z like thicknesses: so behind an odd number of mirrors those in front of the
- * light are negative. A point at infinity has an infinite distance. */
+/** First-order properties at one wavelength. Distances run along +z like thicknesses: so behind an odd number
+ * of mirrors those in front of the light are negative. A point at infinity has an infinite distance. */
 export interface Paraxial {
   focalLengthMm: number;
   /** From the last surface to the focus of an object at infinity. */
@@ -38,7 +40,8 @@ export interface Paraxial {
   imageDistanceMm: number;
   /** 1 / (2 |n' u'|). */
   workingFNumber: number;
-  /** n' u' of the rim ray towards the object side over that at the image: transverse magnification; 0 for an object at infinity. */
+  /** Transverse magnification n u / (n' u'): negative for a real object imaged upside down; 0 for an object
+   * at infinity. */
   magnification: number;
   /** Lagrange invariant H = n (ubar y - u ybar), > 0. */
   lagrangeMm: number;
@@ -50,9 +53,11 @@ export interface Paraxial {
   objectHeightMm: number;
   /** Angle of the chief ray at h = 1 to the axis in front of the lens. */
   halfFieldDeg: number;
-  /** Slope of the chief ray of an object at infinity, or of the line from the first vertex to the object: both are fixed by the object alone. */
+  /** Slope of the chief ray of an object at infinity, or of the line from the first vertex to the object:
+   * both are fixed by the object alone. */
   fieldScale: number;
-  /** +1 where an object point below the axis is imaged above it, -1 where it is not: the outward direction on the sensor for this chief ray. */
+  /** +1 where an object point below the axis is imaged above it, -1 where it is not: the outward direction on
+   * the sensor for this chief ray. */
   outward: 1 | -1;
   marginal: ParaxialRay;
   chief: ParaxialRay;
@@ -72,7 +77,8 @@ export function traceParaxial(system: OpticalSystem, y: number, u: number): Para
   return ray;
 }
 
-/** Petzval sum, -sum of c (1/n' - 1/n), in 1/mm: S_IV = H^2 P. Source: Born and Wolf, Principles of Optics, 5.5.3 (cited from memory). */
+/** Petzval sum, -sum of c (1/n' - 1/n), in 1/mm: S_IV = H^2 P. Source: Born and Wolf, Principles of Optics,
+ * 5.5.3 (cited from memory). */
 export function petzvalSum({ count, curvature, index }: OpticalSystem): number {
   let sum = 0;
   for (let i = 0; i < count; i++) sum -= curvature[i] * (1 / index[i + 1] - 1 / index[i]);
@@ -81,12 +87,13 @@ export function petzvalSum({ count, curvature, index }: OpticalSystem): number {
 
 /** First-order properties of a lens for its aperture and field.
  *
- * Every ray from the object is a sum of two: one from the object's axial point (a), one through the first vertex (b). The chief ray is the sum that
- * crosses the axis in the stop, so the stop may lie anywhere, also where a pupil is at infinity.
+ * Every ray from the object is a sum of two: one from the object's axial point (a), one through the first
+ * vertex (b). The chief ray is the sum that crosses the axis in the stop, so the stop may lie anywhere, also
+ * where a pupil is at infinity.
  *
  * @param system  its last thickness may be NaN: the sensor then stands at the paraxial image
- * @throws {InputError} where no beam forms an image: stop at an image of the object, light that does not converge, aperture or field that the
- *   conjugate does not have
+ * @throws {InputError} where no beam forms an image: stop at an image of the object, light that does not
+ *   converge, aperture or field that the conjugate does not have
  */
 export function paraxial(system: OpticalSystem, aperture: ApertureOrStop, field: FieldOrScale): Paraxial {
   const { count, index, stop, objectDistance, thickness } = system;
@@ -140,7 +147,7 @@ export function paraxial(system: OpticalSystem, aperture: ApertureOrStop, field:
     stopRadiusMm: Math.abs(marginal.y[stop]),
     imageDistanceMm,
     workingFNumber: 1 / (2 * Math.abs(marginal.u[count])),
-    magnification: axial.u[0] / (nImage * axial.u[count]),
+    magnification: axial.u[0] === 0 ? 0 : axial.u[0] / (nImage * axial.u[count]),
     lagrangeMm: marginalScale * fieldScale,
     petzvalRadiusMm: petzval === 0 ? Number.POSITIVE_INFINITY : 1 / petzval,
     imageHeightMm: fieldScale * Math.abs(sensorHeight),

@@ -26,15 +26,18 @@ export interface SeidelTable {
  * E = (k c^3 + 8 A4) d(n) y^4 for a conic or aspheric surface:
  *
  *     S_I   = -A^2 y d(u/n) + E                    S_IV = -H^2 c d(1/n)
- *     S_II  = -A B y d(u/n) + E (ybar/y)           S_V  = -B [B^2 y d(1/n^2) - (H + B y) ybar c d(1/n)] + E (ybar/y)^3
+ *     S_II  = -A B y d(u/n) + E (ybar/y)           S_V  = -B [B^2 y d(1/n^2) - (H + B y) ybar c d(1/n)]
+ *                                                          + E (ybar/y)^3
  *     S_III = -B^2 y d(u/n) + E (ybar/y)^2
  *     C_I   = A y d(dn/n)                          C_II = B y d(dn/n),   dn = n(short) - n(long)
  *
- * This form of S_V divides neither by A nor by B. The sign of n turns at a mirror. Positive: undercorrected (S_I), flare toward the axis (S_II),
- * barrel (S_V), short-wave focus nearer the lens (C_I).
- * Source: H. H. Hopkins, Wave Theory of Aberrations (1950); W. T. Welford, Aberrations of Optical Systems (1986), ch. 8 (cited from memory).
+ * This form of S_V divides neither by A nor by B. The sign of n turns at a mirror. Positive: undercorrected
+ * (S_I), flare toward the axis (S_II), barrel (S_V), short-wave focus nearer the lens (C_I).
+ * Source: H. H. Hopkins, Wave Theory of Aberrations (1950); W. T. Welford, Aberrations of Optical Systems
+ * (1986), ch. 8 (cited from memory).
  *
- * @param short,long  the lens at the two wavelengths between which the chromatic sums are taken (commonly F and C)
+ * @param short,long  the lens at the two wavelengths between which the chromatic sums are taken (commonly F
+ *   and C)
  */
 export function seidelTable(lens: LensAt, short: LensAt, long: LensAt): SeidelTable {
   const { system, paraxial } = lens;
@@ -72,7 +75,8 @@ export function seidelTable(lens: LensAt, short: LensAt, long: LensAt): SeidelTa
   return { surfaces, total };
 }
 
-/** The five terms in waves: W040 = S_I/8, W131 = S_II/2, W222 = S_III/2, W220 = (S_III + S_IV)/4, W311 = S_V/2. W020 and W111 are 0. */
+/** The five terms in waves: W040 = S_I/8, W131 = S_II/2, W222 = S_III/2, W220 = (S_III + S_IV)/4, W311 =
+ * S_V/2. W020 and W111 are 0. */
 export function wavesFromSums(sums: SeidelSums, wavelengthNm: number): Waves {
   const perMm = 1e6 / wavelengthNm;
   return {

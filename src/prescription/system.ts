@@ -16,8 +16,8 @@ export interface OpticalSystem {
   aspheric: readonly (Float64Array | undefined)[];
   /** Distance to the next surface along z; the last entry reaches to the sensor (NaN until that is known). */
   thickness: Float64Array;
-  /** `index[i]` lies before surface i, `index[count]` behind the last. It changes its sign at each mirror (light runs to the left where it is
-   * negative), which lets one formula serve refraction and reflection. */
+  /** `index[i]` lies before surface i, `index[count]` behind the last. It changes its sign at each mirror
+   * (light runs to the left where it is negative), which lets one formula serve refraction and reflection. */
   index: Float64Array;
   /** Position of the stop in the list. */
   stop: number;

@@ -23,7 +23,8 @@ test('the ray found passes the stop where it was asked to', () => {
         paraxialStart(lens, h, across, along, start);
         expect(aim(ray, lens, h, across, along, start)).toBe(true);
         const radius = lens.paraxial.marginal.y[lens.system.stop];
-        expect(Math.abs(ray.x / radius - across)).toBeLessThan(2e-12); // as stated there, for coordinates of a radius
+        // as stated there, for coordinates of a radius
+        expect(Math.abs(ray.x / radius - across)).toBeLessThan(2e-12);
         expect(Math.abs(ray.y / radius - along)).toBeLessThan(2e-12);
       },
     ),

@@ -8,7 +8,8 @@ import { packhouseLens } from './lenses.js';
 
 const pupil = (lens: Prescription, h: number) => clearPupil(new FieldTracer(lensModel(lens).reference, h));
 
-/** A round hole of `semiDiameterMm` 10 mm in front of a stop of radius 5: at the field tan = 1 it sits `offset` stop radii off. */
+/** A round hole of `semiDiameterMm` 10 mm in front of a stop of radius 5: at the field tan = 1 it sits
+ * `offset` stop radii off. */
 const holeAndStop = (semiDiameterMm: number): Prescription => ({
   name: 'hole',
   wavelengthNm: 550,
@@ -87,7 +88,8 @@ describe('illuminance', () => {
   // Source: Born and Wolf, Principles of Optics, 4.8.3 (cited from memory)
   test.each([5, 10, 20])('of a thin lens at %f degrees falls as cos^4', (degrees) => {
     const angle = (degrees * Math.PI) / 180;
-    // the two vertices coincide but not the surfaces: the sag of the stop's rim (0.005 mm of 100) shifts and distorts by about 1e-4
+    // the two vertices coincide but not the surfaces: the sag of the stop's rim (0.005 mm of 100) shifts and
+    // distorts by about 1e-4
     expect(Math.abs(relative(thin(), Math.tan(angle)) / Math.cos(angle) ** 4 - 1)).toBeLessThan(5e-4);
   });
 
@@ -98,7 +100,8 @@ describe('illuminance', () => {
   });
 
   test('barrel distortion gathers light: the illuminance is that of cos^4 over the change of area', () => {
-    // a paraboloid with its stop in the focus images tan(field) with known distortion; the stop is outside the lens, its size that of the beam
+    // a paraboloid with its stop in the focus images tan(field) with known distortion; the stop is outside
+    // the lens, its size that of the beam
     const lens: Prescription = {
       name: 'mirror',
       wavelengthNm: 550,
@@ -117,6 +120,7 @@ describe('illuminance', () => {
     const stretch = (chiefHeightMm / idealHeightMm) * slope;
     expect(Math.abs(stretch - 1)).toBeGreaterThan(0.01); // there is something to see
     const expected = Math.cos((15 * Math.PI) / 180) ** 4 / stretch;
-    expect(Math.abs(relative(lens, 1) / expected - 1)).toBeLessThan(2e-3); // the slope above is taken over 2 % of the field
+    // the slope above is taken over 2 % of the field
+    expect(Math.abs(relative(lens, 1) / expected - 1)).toBeLessThan(2e-3);
   });
 });

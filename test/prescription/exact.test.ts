@@ -102,7 +102,8 @@ describe('optical path', () => {
           launch(ray, at, field, x, y);
           trace(ray, at, i + 1);
           const t = i === 0 ? 0 : at.thickness[i - 1];
-          const direction = i === 0 ? Math.sign(ray.z) || 1 : 1; // from the plane of the vertex the surface may lie behind
+          // from the plane of the vertex the surface may lie behind
+          const direction = i === 0 ? Math.sign(ray.z) || 1 : 1;
           sum +=
             direction * at.index[i] * Math.hypot(ray.x - before.x, ray.y - before.y, t + ray.z - before.z);
           axis += at.index[i] * t;

@@ -25,7 +25,8 @@ export function sixSurfaceLens(overrides: Partial<Prescription> = {}): Prescript
   };
 }
 
-/** The same with its stop in the plane `z` of the entrance pupil, measured from the first surface of glass. */
+/** The same with its stop in the plane `z` of the entrance pupil, measured from the first surface of glass.
+ */
 export function withStopAt(lens: Prescription, z: number): Prescription {
   const surfaces: Surface[] = [
     { stop: true, thicknessMm: -z },
@@ -83,8 +84,8 @@ export function thinLensSurfaces(glass: Glass, n: number, q: number, focalMm: nu
   ];
 }
 
-/** A three-element lens of f 12 mm at f/4 to 4.6 mm image height, for a camera over the belt of a packing hall. Its rims cut a little of the beam in
- * the corners. */
+/** A three-element lens of f 12 mm at f/4 to 4.6 mm image height, for a camera over the belt of a packing
+ * hall. Its rims cut a little of the beam in the corners. */
 export function packhouseLens(overrides: Partial<Prescription> = {}): Prescription {
   const crown = { nd: 1.6935, vd: 53.2 };
   const flint = { nd: 1.6727, vd: 32.2 };

@@ -129,7 +129,8 @@ test('defocus of a sensor off the focus: W020 = delta / (8 N^2 lambda)', () => {
 });
 
 test('rays land where the slope of the wavefront says: eps = -2 N lambda grad W', () => {
-  // exact at any aperture in the direction cosines; in stop coordinates only as the third order allows, so f/40
+  // exact at any aperture in the direction cosines; in stop coordinates only as the third order allows, so
+  // f/40
   const model = small(packhouseLens(), 1 / 10);
   const { system, paraxial } = model.reference;
   const tracer = new FieldTracer(model.reference, 1);
@@ -143,7 +144,8 @@ test('rays land where the slope of the wavefront says: eps = -2 N lambda grad W'
     launch(ray, system, paraxial.fieldScale, s * marginal.y[0], chief.y[0] + m * marginal.y[0]);
     trace(ray, system);
     const reach = (system.thickness[6] - ray.z) / ray.N;
-    const size = 2 * paraxial.workingFNumber * 8 * 3.8 * 550e-6 * 1e-4; // field curvature of 3.8 waves, 1e-4 of it at this scale
+    // field curvature of 3.8 waves, 1e-4 of it at this scale
+    const size = 2 * paraxial.workingFNumber * 8 * 3.8 * 550e-6 * 1e-4;
     expect(
       Math.abs(ray.y + ray.M * reach - paraxial.imageHeightMm + 2 * paraxial.workingFNumber * slopeM),
     ).toBeLessThan(0.02 * size);

@@ -20,7 +20,8 @@ const thick = (overrides: Partial<Prescription> = {}): Prescription => ({
 });
 
 test('thick lens: power, foci and principal planes', () => {
-  // phi = phi1 + phi2 - (t/n) phi1 phi2; planes at f phi2 t/n from the first and -f phi1 t/n from the last vertex.
+  // phi = phi1 + phi2 - (t/n) phi1 phi2; planes at f phi2 t/n from the first and -f phi1 t/n from the last
+  // vertex.
   // Source: Born and Wolf, Principles of Optics, 4.4.3 (cited from memory)
   const phi1 = 0.6 / 60;
   const phi2 = 0.6 / 90;
@@ -74,7 +75,8 @@ test('field: image height, angle and object height ask for the same chief ray', 
 });
 
 describe('pupils at infinity', () => {
-  /** Thin lens of f 100 mm, stop in its focus on the object side (image side telecentric) or on the image side. */
+  /** Thin lens of f 100 mm, stop in its focus on the object side (image side telecentric) or on the image
+   * side. */
   const telecentric = (side: 'object' | 'image'): Prescription => {
     const lens: Surface = { radiusMm: 50, thicknessMm: 0, glass: { n: 1.5 } };
     return {

@@ -1,5 +1,6 @@
 /** Aplanatic conjugates of a refracting sphere.
- * Source: Born and Wolf, Principles of Optics, 4.2.3; Welford, Aberrations of Optical Systems (cited from memory).
+ * Source: Born and Wolf, Principles of Optics, 4.2.3; Welford, Aberrations of Optical Systems (cited from
+ * memory).
  */
 import { expect, test } from 'vitest';
 import { referenceSums } from '../../src/prescription/coefficients.js';
@@ -7,8 +8,8 @@ import { lensModel } from '../../src/prescription/lens-model.js';
 import { FieldTracer } from '../../src/prescription/opd.js';
 import { D_LINE } from '../prescription/lenses.js';
 
-/** A sphere from air to n, virtual object at `objectMm` behind the vertex, entrance pupil of radius 5 at z -10, object height 4. The image lies in the
- * glass: a flat exit at the image adds nothing, there y is 0. */
+/** A sphere from air to n, virtual object at `objectMm` behind the vertex, entrance pupil of radius 5 at z
+ * -10, object height 4. The image lies in the glass: a flat exit at the image adds nothing, there y is 0. */
 function sphereModel(n: number, radiusMm: number, objectMm: number, imageMm: number) {
   return lensModel({
     name: 'sphere',

@@ -17,17 +17,20 @@ const FUSED_SILICA: Glass = {
   sellmeier: { B: [0.6961663, 0.4079426, 0.8974794], CUm2: [0.0684043, 0.1162414, 9.896161].map(square) },
 };
 
-/** A borosilicate crown, n_d 1.51680, V_d 64.17. Source: the Sellmeier coefficients of N-BK7 in the Schott catalogue (from memory). */
+/** A borosilicate crown, n_d 1.51680, V_d 64.17. Source: the Sellmeier coefficients of N-BK7 in the Schott
+ * catalogue (from memory). */
 const CROWN: Glass = {
   sellmeier: { B: [1.03961212, 0.231792344, 1.01046945], CUm2: [0.00600069867, 0.0200179144, 103.560653] },
 };
 
-/** A flint, n_d 1.62004, V_d 36.37. Source: the Sellmeier coefficients of F2 in the Schott catalogue (from memory). */
+/** A flint, n_d 1.62004, V_d 36.37. Source: the Sellmeier coefficients of F2 in the Schott catalogue (from
+ * memory). */
 const FLINT: Glass = {
   sellmeier: { B: [1.34533359, 0.209073176, 0.937357162], CUm2: [0.00997743871, 0.0470450767, 111.886764] },
 };
 
-/** A dense flint, n_d 1.78472, V_d 25.68. Source: the Sellmeier coefficients of SF11 in the Schott catalogue (from memory). */
+/** A dense flint, n_d 1.78472, V_d 25.68. Source: the Sellmeier coefficients of SF11 in the Schott catalogue
+ * (from memory). */
 const DENSE_FLINT: Glass = {
   sellmeier: { B: [1.73759695, 0.313747346, 1.89878101], CUm2: [0.013188707, 0.0623068142, 155.23629] },
 };

@@ -1,5 +1,6 @@
 /** Concave mirrors, an object at infinity, and the ellipsoid without spherical aberration.
- * Source: Schroeder, Astronomical Optics; Welford, Aberrations of Optical Systems; Born and Wolf, Principles of Optics, 4.2.3 (cited from memory).
+ * Source: Schroeder, Astronomical Optics; Welford, Aberrations of Optical Systems; Born and Wolf, Principles
+ * of Optics, 4.2.3 (cited from memory).
  */
 import { describe, expect, test } from 'vitest';
 import { referenceSums } from '../../src/prescription/coefficients.js';

@@ -1,5 +1,6 @@
 /** Petzval sum of thin lenses, and lenses symmetrical about their stop.
- * Source: Petzval (1843); Born and Wolf, Principles of Optics, 5.5.3; Kingslake, Lens Design Fundamentals (cited from memory).
+ * Source: Petzval (1843); Born and Wolf, Principles of Optics, 5.5.3; Kingslake, Lens Design Fundamentals
+ * (cited from memory).
  */
 import { expect, test } from 'vitest';
 import { referenceSums } from '../../src/prescription/coefficients.js';
@@ -54,7 +55,8 @@ test('Petzval radius of a lens is n f, and S_IV = H^2 P', () => {
   );
 });
 
-// Invented lens, R 40, 60, -60, -40, used at unit magnification; the object distance makes the rim ray parallel to the axis at the stop
+// Invented lens, R 40, 60, -60, -40, used at unit magnification; the object distance makes the rim ray
+// parallel to the axis at the stop
 const symmetrical: Prescription = {
   name: 'symmetrical',
   wavelengthNm: D_LINE,

@@ -1,7 +1,8 @@
 /** Third-order sums against exact rays as aperture and field shrink.
  *
- * The sums are the leading terms of the exact wavefront: what a fit of the five terms to exact rays finds differs from them by terms of two orders more,
- * so by the square of the scale. Source: Hopkins, Wave Theory of Aberrations (1950); Welford, Aberrations of Optical Systems (1986) (cited from memory).
+ * The sums are the leading terms of the exact wavefront: what a fit of the five terms to exact rays finds
+ * differs from them by terms of two orders more, so by the square of the scale. Source: Hopkins, Wave Theory
+ * of Aberrations (1950); Welford, Aberrations of Optical Systems (1986) (cited from memory).
  */
 import { describe, expect, test } from 'vitest';
 import { bestFit } from '../../src/prescription/best-fit.js';
@@ -67,7 +68,8 @@ describe('fit to exact rays at 1/20 of aperture and field', () => {
     const at20 = differences(lens, 1 / 20);
     const at40 = differences(lens, 1 / 40);
     expect(worst(at20)).toBeLessThan(1e-3);
-    // what differs is the next order and nothing else: a quarter at half the scale. The order after it is 1/400 of that, rounding 1e-9
+    // what differs is the next order and nothing else: a quarter at half the scale. The order after it is
+    // 1/400 of that, rounding 1e-9
     at20.forEach((difference, i) => {
       expect(Math.abs(at40[i] - difference / 4)).toBeLessThan(0.02 * Math.abs(difference) + 1e-8);
     });

@@ -1,7 +1,8 @@
 /** A complete invented lens (`sixSurfaceLens`), surface by surface and by exact rays.
  *
- * No outside source for the lens: the figures were computed apart from this code in 60-digit arithmetic, where sums and fits to exact rays agree to
- * 3.5e-18 of the largest coefficient. Formulas: Hopkins, Wave Theory of Aberrations (1950); Welford, Aberrations of Optical Systems (1986), cited from memory.
+ * No outside source for the lens: the figures were computed apart from this code in 60-digit arithmetic,
+ * where sums and fits to exact rays agree to 3.5e-18 of the largest coefficient. Formulas: Hopkins, Wave
+ * Theory of Aberrations (1950); Welford, Aberrations of Optical Systems (1986), cited from memory.
  */
 import { describe, expect, test } from 'vitest';
 import { referenceSums, thirdOrderWaves } from '../../src/prescription/coefficients.js';

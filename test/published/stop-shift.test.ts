@@ -1,4 +1,5 @@
-/** Stop-shift equations. Source: Welford, Aberrations of Optical Systems; Hopkins, Wave Theory of Aberrations (1950) (cited from memory). */
+/** Stop-shift equations. Source: Welford, Aberrations of Optical Systems; Hopkins, Wave Theory of Aberrations
+ * (1950) (cited from memory). */
 import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import { referenceSums } from '../../src/prescription/coefficients.js';
@@ -19,7 +20,8 @@ function shifted({ S_I, S_II, S_III, S_IV, S_V }: FiveSums, Q: number): FiveSums
 }
 
 describe('six-surface lens, entrance pupil moved, its radius kept at 6.25', () => {
-  // [z of the entrance pupil from surface 1, Q, S_I ... S_V in mm], computed apart from this code in 60-digit arithmetic
+  // [z of the entrance pupil from surface 1, Q, S_I ... S_V in mm], computed apart from this code in 60-digit
+  // arithmetic
   test.each<[number, number, number[]]>([
     [
       0,

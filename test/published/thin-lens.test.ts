@@ -1,5 +1,6 @@
 /** Thin lens: third-order sums against bending and conjugate.
- * Source: Coddington (1829); Jenkins and White, Fundamentals of Optics, ch. 9; Welford, Aberrations of Optical Systems (all cited from memory).
+ * Source: Coddington (1829); Jenkins and White, Fundamentals of Optics, ch. 9; Welford, Aberrations of
+ * Optical Systems (all cited from memory).
  */
 import { describe, expect, test } from 'vitest';
 import { referenceSums } from '../../src/prescription/coefficients.js';
