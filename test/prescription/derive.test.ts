@@ -2,10 +2,13 @@ import { describe, expect, test } from 'vitest';
 import { InputError } from '../../src/errors.js';
 import { lateralColourUm } from '../../src/optics/colour.js';
 import { distortionPercent } from '../../src/optics/distortion.js';
+import type { Rig } from '../../src/optics/rig.js';
+import { opticalPathWaves, wavefrontAt } from '../../src/optics/wavefront.js';
 import { referenceSums, thirdOrderWaves } from '../../src/prescription/coefficients.js';
 import { deriveLens, EXACT_FIELDS, toLens } from '../../src/prescription/derive.js';
 import { SPECTRAL_LINES_NM } from '../../src/prescription/glass.js';
 import { atWavelength, lensModel } from '../../src/prescription/lens-model.js';
+import { FieldTracer } from '../../src/prescription/opd.js';
 import type { Prescription, Surface } from '../../src/prescription/prescription.js';
 import { SEIDEL_SUMS } from '../../src/prescription/seidel.js';
 import { doublet, packhouseLens, singlet, sixSurfaceLens, withStopAt } from './lenses.js';
@@ -230,6 +233,32 @@ test.each<[string, Parameters<typeof deriveLens>[1], RegExp]>([
 });
 
 describe('toLens', () => {
+  test('what the optics make of it is the exact wavefront of small aperture and field, at other wavelengths too', () => {
+    const small = packhouseLens({ aperture: { fNumber: 40 }, field: { imageHeightMm: 0.46 } });
+    const lens = toLens(small, [450, 650]);
+    const rig = {
+      lens,
+      mount: { fNumber: lens.fNumber, sensorShiftUm: 0, sensorTiltDeg: [0, 0], axisPx: [0, 0] },
+    } as unknown as Rig; // the wavefront looks at no camera
+    for (const nm of [450, 550, 650])
+      for (const h of [0, 0.7, 1]) {
+        const tracer = new FieldTracer(atWavelength(lensModel(small), nm), h);
+        const local = wavefrontAt(rig, 0, h * lens.fullFieldMm, nm);
+        for (const [m, s] of [
+          [1, 0],
+          [0.6, 0.8],
+          [0, 0.9],
+        ]) {
+          // the half that is even in m: tilt is left to the warp
+          const exact = (1e6 / nm) * (tracer.wavefrontMm(m, s) + tracer.wavefrontMm(-m, -s));
+          const terms = opticalPathWaves(local, m, s) + opticalPathWaves(local, -m, -s);
+          // f/40: 1e-3 waves of the five terms, which leave 5e-6; 5e-3 of axial colour at 450 nm, where the true N
+          // is 0.3 % off the lens's own, twice that in defocus
+          expect(Math.abs(exact - terms)).toBeLessThan(nm === 550 ? 6e-6 : 4e-5);
+        }
+      }
+  });
+
   test('is the derived lens without the account', () => {
     const nm = [450, 520, 650];
     const { lens } = deriveLens(packhouseLens(), { wavelengthsNm: nm });
