@@ -25,18 +25,18 @@ import {
 /** Forward transform of a panel of n rows whose rows from `used` on count as zero and are never read.
  * Row r is multiplied by weights[r] (float32) on the way. `target` may be `source`. */
 export function forward(source: usize, weights: usize, used: u32, target: usize, n: u32): void {
-  forwardFirst(source, weights, used, target, n);
+  forwardFirst(source, weights, weights, used, target, n);
   forwardMiddle(target, n);
   forwardLast(target, n);
 }
 
-/** As `forward`, with the spectrum written as lines: four neighbouring positions become the lanes of one line.
- * The work is done in `panel`. Line m (positions 4m ... 4m + 3) starts at lines + m lineBytes; the four columns become
- * four complex rows of it, one after another. */
+/** As `forward`, with weights of their own for the real and the imaginary parts, and the spectrum written as lines: four
+ * neighbouring positions become the lanes of one line. The work is done in `panel`. Line m (positions 4m ... 4m + 3)
+ * starts at lines + m lineBytes; the four columns become four complex rows of it, one after another. */
 export function forwardToLines(
-  source: usize, weights: usize, used: u32, panel: usize, n: u32, lines: usize, lineBytes: usize,
+  source: usize, weightsRe: usize, weightsIm: usize, used: u32, panel: usize, n: u32, lines: usize, lineBytes: usize,
 ): void {
-  forwardFirst(source, weights, used, panel, n);
+  forwardFirst(source, weightsRe, weightsIm, used, panel, n);
   forwardMiddle(panel, n);
   forwardLastToLines(panel, n, lines, lineBytes);
 }
@@ -58,46 +58,76 @@ export function inverseFromLines(lines: usize, lineBytes: usize, panel: usize, n
 // Forward stages
 
 /** First stage: butterflies over rows j, j + n/4, j + n/2, j + 3n/4, of which only those below `used` are not zero. */
-function forwardFirst(source: usize, weights: usize, used: u32, target: usize, n: u32): void {
+function forwardFirst(
+  source: usize, weightsRe: usize, weightsIm: usize, used: u32, target: usize, n: u32,
+): void {
   const quarter = n / 4;
   const terms = used / quarter;
   const reach = used % quarter; // the first rows of a quarter have one term more
-  firstButterflies(source, weights, target, n, 0, reach, terms + 1);
-  firstButterflies(source, weights, target, n, reach, quarter, terms);
+  firstButterflies(source, weightsRe, weightsIm, target, n, 0, reach, terms + 1);
+  firstButterflies(source, weightsRe, weightsIm, target, n, reach, quarter, terms);
 }
 
 /** The butterflies j = from ... to - 1 of the first stage, with `terms` inputs that are not zero. */
 function firstButterflies(
-  source: usize, weights: usize, target: usize, n: u32, from: u32, to: u32, terms: u32,
+  source: usize, weightsRe: usize, weightsIm: usize, target: usize, n: u32, from: u32, to: u32, terms: u32,
 ): void {
-  const quarter = <usize>(n / 4);
-  const roots = rootsOf(n);
-  for (let j = <usize>from; j < to; j++) {
-    const x = source + j * ROW;
-    const g = weights + j * 4;
-    const y = target + j * ROW;
-    const w = roots + j * ROOTS;
-    if (terms == 4) firstButterfly(x, g, y, quarter, w, 4);
-    else if (terms == 3) firstButterfly(x, g, y, quarter, w, 3);
-    else if (terms == 2) firstButterfly(x, g, y, quarter, w, 2);
-    else if (terms == 1) firstButterfly(x, g, y, quarter, w, 1);
-    else firstButterfly(x, g, y, quarter, w, 0);
+  const x = source + <usize>from * ROW;
+  const end = source + <usize>to * ROW;
+  const gRe = weightsRe + (<usize>from << 2);
+  const gIm = weightsIm + (<usize>from << 2);
+  const y = target + <usize>from * ROW;
+  const w = rootsOf(n) + <usize>from * ROOTS;
+  if (terms == 4) fourTerms(x, end, gRe, gIm, y, n, w);
+  else if (terms == 3) threeTerms(x, end, gRe, gIm, y, n, w);
+  else if (terms == 2) twoTerms(x, end, gRe, gIm, y, n, w);
+  else if (terms == 1) oneTerm(x, end, gRe, gIm, y, n, w);
+  else for (let q: u32 = 0; q < 4; q++) memory.fill(y + <usize>(q * (n / 4)) * ROW, 0, end - x);
+}
+
+// One function for each number of terms, so that each is compiled with what it needs and nothing else.
+
+function fourTerms(x: usize, end: usize, gRe: usize, gIm: usize, y: usize, n: u32, w: usize): void {
+  firstButterfliesOf(4, x, end, gRe, gIm, y, n, w);
+}
+
+function threeTerms(x: usize, end: usize, gRe: usize, gIm: usize, y: usize, n: u32, w: usize): void {
+  firstButterfliesOf(3, x, end, gRe, gIm, y, n, w);
+}
+
+function twoTerms(x: usize, end: usize, gRe: usize, gIm: usize, y: usize, n: u32, w: usize): void {
+  firstButterfliesOf(2, x, end, gRe, gIm, y, n, w);
+}
+
+function oneTerm(x: usize, end: usize, gRe: usize, gIm: usize, y: usize, n: u32, w: usize): void {
+  firstButterfliesOf(1, x, end, gRe, gIm, y, n, w);
+}
+
+@inline
+function firstButterfliesOf(
+  terms: u32, x: usize, end: usize, gRe: usize, gIm: usize, y: usize, n: u32, w: usize,
+): void {
+  const step = <usize>(n / 4) * ROW;
+  const gStep = <usize>(n / 4) * 4;
+  for (; x < end; x += ROW, y += ROW, w += ROOTS, gRe += 4, gIm += 4) {
+    firstButterfly(terms, x, step, gRe, gIm, gStep, y, w);
   }
 }
 
-/** The forward butterfly of g0 x0, g1 x1 ... with real weights g, where x[p] = 0 from p = `terms` on. */
+/** The forward butterfly over the weighted rows gRe Re x + i gIm Im x, where x[p] = 0 from p = `terms` on. */
 @inline
-function firstButterfly(x: usize, g: usize, y: usize, quarter: usize, w: usize, terms: u32): void {
-  const step = quarter * ROW;
+function firstButterfly(
+  terms: u32, x: usize, step: usize, gRe: usize, gIm: usize, gStep: usize, y: usize, w: usize,
+): void {
   const zero = f32x4.splat(0);
-  const x0Re = terms > 0 ? weighted(x, RE, g) : zero;
-  const x0Im = terms > 0 ? weighted(x, IM, g) : zero;
-  const x1Re = terms > 1 ? weighted(x + step, RE, g + quarter * 4) : zero;
-  const x1Im = terms > 1 ? weighted(x + step, IM, g + quarter * 4) : zero;
-  const x2Re = terms > 2 ? weighted(x + 2 * step, RE, g + quarter * 8) : zero;
-  const x2Im = terms > 2 ? weighted(x + 2 * step, IM, g + quarter * 8) : zero;
-  const x3Re = terms > 3 ? weighted(x + 3 * step, RE, g + quarter * 12) : zero;
-  const x3Im = terms > 3 ? weighted(x + 3 * step, IM, g + quarter * 12) : zero;
+  const x0Re = weighted(x + RE, gRe);
+  const x0Im = weighted(x + IM, gIm);
+  const x1Re = terms > 1 ? weighted(x + step + RE, gRe + gStep) : zero;
+  const x1Im = terms > 1 ? weighted(x + step + IM, gIm + gStep) : zero;
+  const x2Re = terms > 2 ? weighted(x + 2 * step + RE, gRe + 2 * gStep) : zero;
+  const x2Im = terms > 2 ? weighted(x + 2 * step + IM, gIm + 2 * gStep) : zero;
+  const x3Re = terms > 3 ? weighted(x + 3 * step + RE, gRe + 3 * gStep) : zero;
+  const x3Im = terms > 3 ? weighted(x + 3 * step + IM, gIm + 3 * gStep) : zero;
   const aRe = terms > 2 ? add(x0Re, x2Re) : x0Re;
   const aIm = terms > 2 ? add(x0Im, x2Im) : x0Im;
   const bRe = terms > 2 ? sub(x0Re, x2Re) : x0Re;
@@ -110,8 +140,8 @@ function firstButterfly(x: usize, g: usize, y: usize, quarter: usize, w: usize, 
 }
 
 @inline
-function weighted(x: usize, part: usize, g: usize): v128 {
-  return mul(v128.load(x + part), splat(g));
+function weighted(x: usize, g: usize): v128 {
+  return mul(v128.load(x), splat(g));
 }
 
 /** All stages between the first and the last. */

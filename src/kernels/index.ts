@@ -1,3 +1,5 @@
 /** Everything that the door `src/numeric/kernels.ts` offers. */
-export { prepare, tablesBytes, positionOf } from './tables';
-export { forward, inverse, forwardToLines, inverseFromLines } from './fft';
+export { blurScratchBytes, blurTiles } from './blur';
+export { forward, forwardToLines, inverse, inverseFromLines } from './fft';
+export { kernelSpectrum, spectrumBytes, spectrumScratchBytes } from './kernel-spectrum';
+export { positionOf, prepare, tablesBytes } from './tables';

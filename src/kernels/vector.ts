@@ -10,6 +10,16 @@ export const ROW: usize = 32;
 export const RE: usize = 0;
 export const IM: usize = 16;
 
+/** Bytes between neighbouring panels beyond their own length: an odd number of cache lines, since at distances of a power of two they
+ * would compete for the same places of the cache. */
+const PADDING: usize = 5 * 64;
+
+/** Bytes to set apart for a panel or a line. */
+@inline
+export function panelBytes(rows: u32): usize {
+  return <usize>rows * ROW + PADDING;
+}
+
 @inline
 export function add(a: v128, b: v128): v128 {
   return f32x4.add(a, b);

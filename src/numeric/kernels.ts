@@ -29,10 +29,11 @@ export interface Kernels {
    * read. @param weights address of `used` float32 numbers. @param target may be `source` */
   forward(source: number, weights: number, used: number, target: number, n: number): void;
   /** As `forward`, worked out in `panel` and written as lines: positions 4m ... 4m + 3 become the lanes of line m, which starts at
-   * lines + m * lineBytes and takes one complex row for each of the four columns. */
+   * lines + m * lineBytes and takes one complex row for each of the four columns. Real and imaginary parts have weights of their own. */
   forwardToLines(
     source: number,
-    weights: number,
+    weightsRe: number,
+    weightsIm: number,
     used: number,
     panel: number,
     n: number,
@@ -43,6 +44,114 @@ export interface Kernels {
   inverse(source: number, target: number, n: number): void;
   /** As `inverse`, the spectrum read from lines as `forwardToLines` writes them. */
   inverseFromLines(lines: number, lineBytes: number, panel: number, n: number): void;
+
+  /** Bytes of a kernel's half spectrum. */
+  spectrumBytes(fftWidth: number, fftHeight: number): number;
+  /** Bytes of work space that `kernelSpectrum` takes. */
+  spectrumScratchBytes(kernelSize: number, fftHeight: number): number;
+  /** The half spectrum of a real kernel of kernelSize x kernelSize float32 numbers, for `blurTiles`.
+   * @param mirror MIRROR_X, MIRROR_Y, their sum or 0: the kernel is read mirrored */
+  kernelSpectrum(
+    kernel: number,
+    kernelSize: number,
+    mirror: number,
+    fftWidth: number,
+    fftHeight: number,
+    scratch: number,
+    spectrum: number,
+  ): void;
+
+  /** Bytes of work space that `blurTiles` takes. */
+  blurScratchBytes(fftWidth: number, fftHeight: number, nodesX: number, nodesY: number): number;
+  /** Blur one tile, or two at the price of little more than one, and add the results to their targets. The tiles share the weights along
+   * x; they may have kernels and weights along y of their own, lie in different planes and overlap in any way.
+   * @param shape address of a block as `writeBlurShape` writes it
+   * @param first address of a block as `writeBlurTile` writes it
+   * @param second the same, or 0 for none */
+  blurTiles(shape: number, first: number, second: number): void;
+}
+
+/** How a plane or a kernel is seen: mirrored left to right, top to bottom. The sum means both. */
+export const MIRROR_X = 1;
+export const MIRROR_Y = 2;
+
+/** What the tiles of one call have in common. All addresses are byte offsets into the shared memory. */
+export interface BlurShape {
+  /** Sizes of the transforms along x and y: powers of two from SMALLEST_KERNEL_FFT to LARGEST_KERNEL_FFT. */
+  fftWidth: number;
+  fftHeight: number;
+  /** Sides of a tile: at most fftWidth - kernelSize + 1 and fftHeight - kernelSize + 1. */
+  tileWidth: number;
+  tileHeight: number;
+  /** Side of the kernels, odd where tiles or kernels are mirrored. Sample floor(kernelSize/2) is the middle. */
+  kernelSize: number;
+  nodesX: number;
+  nodesY: number;
+  /** Address of float32[nodesX][tileWidth]. */
+  weightsX: number;
+  /** Address of `blurScratchBytes` bytes that no other thread touches. */
+  scratch: number;
+}
+
+/** One tile: where it is read, where its result is added, with which kernels. */
+export interface BlurTile {
+  /** Addresses of the planes, float32, and the bytes from one of their rows to the next. Source 0 stands for a scene of ones, in both tiles
+   * of a call; that takes about half the time. */
+  source: number;
+  sourceStride: number;
+  target: number;
+  targetStride: number;
+  /** Size of both planes. Tiles may reach past them: there the source's edge goes on, and results are dropped. */
+  frameWidth: number;
+  frameHeight: number;
+  /** First sample of the tile in the frame as it is seen, see `mirror`. */
+  left: number;
+  top: number;
+  /** MIRROR_X, MIRROR_Y, their sum or 0: both planes are seen mirrored. */
+  mirror: number;
+  /** Address of float32[nodesY][tileHeight]. */
+  weightsY: number;
+  /** Address of uint32[nodesY][nodesX], the addresses of the nodes' spectra. A node with address 0 in the list is left out (of both
+   * tiles). In a second tile 0 in place of the list's address means: the kernels of the first, which is the fastest. */
+  spectra: number;
+}
+
+export const BLUR_SHAPE_BYTES = 36;
+export const BLUR_TILE_BYTES = 44;
+
+/** Write a shape's block at `at`. */
+export function writeBlurShape(memory: WebAssembly.Memory, at: number, shape: BlurShape): void {
+  const { fftWidth, fftHeight, tileWidth, tileHeight, kernelSize, nodesX, nodesY, weightsX, scratch } = shape;
+  new Uint32Array(memory.buffer, at, BLUR_SHAPE_BYTES / 4).set([
+    fftWidth,
+    fftHeight,
+    tileWidth,
+    tileHeight,
+    kernelSize,
+    nodesX,
+    nodesY,
+    weightsX,
+    scratch,
+  ]);
+}
+
+/** Write a tile's block at `at`. */
+export function writeBlurTile(memory: WebAssembly.Memory, at: number, tile: BlurTile): void {
+  const { source, sourceStride, target, targetStride, frameWidth, frameHeight } = tile;
+  const { left, top, mirror, weightsY, spectra } = tile;
+  new Uint32Array(memory.buffer, at, BLUR_TILE_BYTES / 4).set([
+    source,
+    sourceStride,
+    target,
+    targetStride,
+    frameWidth,
+    frameHeight,
+    left,
+    top,
+    mirror,
+    weightsY,
+    spectra,
+  ]);
 }
 
 let compiled: WebAssembly.Module | undefined;

@@ -51,7 +51,7 @@ for (const n of SIZES) {
     () => kernels.forward(panel, weights, (3 * n) / 4, target, n),
     () => kernels.forward(panel, weights, n / 4, target, n),
     () => kernels.inverse(zeros, target, n), // overwrites its source
-    () => kernels.forwardToLines(panel, weights, (3 * n) / 4, target, n, lines, lineBytes),
+    () => kernels.forwardToLines(panel, weights, weights, (3 * n) / 4, target, n, lines, lineBytes),
     () => kernels.inverseFromLines(lines, lineBytes, target, n),
   ]);
   const [full, threeQuarters, quarter, inverse, toLines, fromLines] = four.map((time) => time / 4);

@@ -161,7 +161,7 @@ describe('spectra in lines', () => {
     bench.floats(lines, (n / 16) * lineBytes).fill(-1);
     bench.kernels.forward(source, weights, used, plain, n);
     const work = bench.placePanel(columns, 0);
-    bench.kernels.forwardToLines(source, weights, used, work, n, lines + 128, lineBytes); // the middle panel
+    bench.kernels.forwardToLines(source, weights, weights, used, work, n, lines + 128, lineBytes); // the middle panel
     const spectra = bench.floats(plain, 8 * n);
     const written = bench.floats(lines, (n / 16) * lineBytes);
     let wrong = 0;
