@@ -81,7 +81,8 @@ function transformWeights(shape: BlurShape, first: BlurTile, second: BlurTile | 
     for (let x: u32 = 0; x < shape.tileWidth; x++) storeComplex(work + <usize>x * ROW, one, zero);
     forward(work, weightsOf(shape, i), shape.tileWidth, weightSpectrum(shape, i), shape.fftWidth);
   }
-  for (let y: u32 = 0; y < shape.tileHeight; y++) storeComplex(ones + <usize>y * ROW, one, second !== null ? one : zero);
+  const oneOrNone = second !== null ? one : zero;
+  for (let y: u32 = 0; y < shape.tileHeight; y++) storeComplex(ones + <usize>y * ROW, one, oneOrNone);
   for (let j: u32 = 0; j < shape.nodesY; j++) columnsToLines(shape, first, second, ones, j, 0);
 }
 
@@ -108,16 +109,17 @@ function columnsToLines(
   const weights = <usize>(j * height) << 2;
   const weightsRe = first.weightsY + weights;
   const weightsIm = second !== null ? second.weightsY + weights : weightsRe;
+  const work = linePanel(shape, 0);
   const lines = lineOf(shape, j, 0) + <usize>x * ROW;
-  forwardToLines(
-    panel, weightsRe, weightsIm, height, linePanel(shape, 0), shape.fftHeight, lines, panelBytes(shape.fftWidth),
-  );
+  const lineBytes = panelBytes(shape.fftWidth);
+  forwardToLines(panel, weightsRe, weightsIm, height, work, shape.fftHeight, lines, lineBytes);
 }
 
 function readTile(shape: BlurShape, tile: BlurTile, left: u32, panels: u32, part: usize): void {
   readColumns(
     tile.source, tile.sourceStride, tile.frameWidth, tile.frameHeight, tile.mirror,
-    tile.left + <i32>left, tile.top, shape.tileHeight, columnsPanel(shape, 0) + part, panels, panelBytes(shape.fftHeight),
+    tile.left + <i32>left, tile.top, shape.tileHeight,
+    columnsPanel(shape, 0) + part, panels, panelBytes(shape.fftHeight),
   );
 }
 
@@ -210,7 +212,8 @@ function transformBack(shape: BlurShape, first: BlurTile, second: BlurTile | nul
   const scale: f32 = (isPair ? <f32>0.5 : <f32>1) / <f32>(shape.fftWidth * shape.fftHeight);
   for (let left: u32 = 0; left < width; left += COLUMNS) {
     const columns = min(COLUMNS, width - left);
-    if (!reachesFrame(shape, first, left, columns) && (second === null || !reachesFrame(shape, second, left, columns))) continue;
+    const isSeen = reachesFrame(shape, first, left, columns);
+    if (!isSeen && (second === null || !reachesFrame(shape, second, left, columns))) continue;
     for (let x: u32 = 0; x < columns; x += 4) {
       const lines = lineOf(shape, 0, 0) + <usize>(left + x) * ROW;
       inverseFromLines(lines, panelBytes(shape.fftWidth), columnsPanel(shape, x / 4), shape.fftHeight);
@@ -224,7 +227,8 @@ function addTile(shape: BlurShape, tile: BlurTile, left: u32, columns: u32, part
   const top = tile.top - reachOf(shape);
   const rows = shape.tileHeight + shape.kernelSize - 1;
   const panels = columnsPanel(shape, 0) + part;
-  addColumns(tile, resultLeft(shape, tile, left), top, columns, rows, panels, panelBytes(shape.fftHeight), scale);
+  const panelStep = panelBytes(shape.fftHeight);
+  addColumns(tile, resultLeft(shape, tile, left), top, columns, rows, panels, panelStep, scale);
 }
 
 /** Whether any of the result's columns from `left` on lies inside the frame. */

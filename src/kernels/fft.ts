@@ -18,8 +18,8 @@
  */
 import { ROOTS, radixOf, rootsOf } from './tables';
 import {
-  IM, RE, ROW, add, conjProductIm, conjProductRe, highHalves, interleaveHigh, interleaveLow, lowHalves, mul, productIm,
-  productRe, splat, storeComplex, sub,
+  IM, RE, ROW, add, conjProductIm, conjProductRe, highHalves, interleaveHigh, interleaveLow, lowHalves, mul,
+  productIm, productRe, splat, storeComplex, sub,
 } from './vector';
 
 /** Forward transform of a panel of n rows whose rows from `used` on count as zero and are never read.
@@ -34,7 +34,8 @@ export function forward(source: usize, weights: usize, used: u32, target: usize,
  * neighbouring positions become the lanes of one line. The work is done in `panel`. Line m (positions 4m ... 4m + 3)
  * starts at lines + m lineBytes; the four columns become four complex rows of it, one after another. */
 export function forwardToLines(
-  source: usize, weightsRe: usize, weightsIm: usize, used: u32, panel: usize, n: u32, lines: usize, lineBytes: usize,
+  source: usize, weightsRe: usize, weightsIm: usize, used: u32,
+  panel: usize, n: u32, lines: usize, lineBytes: usize,
 ): void {
   forwardFirst(source, weightsRe, weightsIm, used, panel, n);
   forwardMiddle(panel, n);
@@ -190,7 +191,7 @@ function forwardHalves(panel: usize, rows: u32, block: u32): void {
       const x1Re = v128.load(x + step, RE);
       const x1Im = v128.load(x + step, IM);
       storeComplex(x, add(x0Re, x1Re), add(x0Im, x1Im));
-      storeProduct(x + step, sub(x0Re, x1Re), sub(x0Im, x1Im), v128.load32_splat(w, 0), v128.load32_splat(w, 4));
+      storeTimesRoot(x + step, sub(x0Re, x1Re), sub(x0Im, x1Im), w);
     }
   }
 }
@@ -233,9 +234,9 @@ function storeForward(
 ): void {
   storeComplex(y, add(aRe, cRe), add(aIm, cIm));
   if (turned) {
-    storeProduct(y + step, add(bRe, dIm), sub(bIm, dRe), v128.load32_splat(w, 0), v128.load32_splat(w, 4));
-    storeProduct(y + 2 * step, sub(aRe, cRe), sub(aIm, cIm), v128.load32_splat(w, 8), v128.load32_splat(w, 12));
-    storeProduct(y + 3 * step, sub(bRe, dIm), add(bIm, dRe), v128.load32_splat(w, 16), v128.load32_splat(w, 20));
+    storeTimesRoot(y + step, add(bRe, dIm), sub(bIm, dRe), w);
+    storeTimesRoot(y + 2 * step, sub(aRe, cRe), sub(aIm, cIm), w + 8);
+    storeTimesRoot(y + 3 * step, sub(bRe, dIm), add(bIm, dRe), w + 16);
   } else {
     storeComplex(y + step, add(bRe, dIm), sub(bIm, dRe));
     storeComplex(y + 2 * step, sub(aRe, cRe), sub(aIm, cIm));
@@ -243,9 +244,11 @@ function storeForward(
   }
 }
 
-/** Write z w. */
+/** Write z w, the root w from memory. */
 @inline
-function storeProduct(at: usize, re: v128, im: v128, wRe: v128, wIm: v128): void {
+function storeTimesRoot(at: usize, re: v128, im: v128, w: usize): void {
+  const wRe = splat(w);
+  const wIm = splat(w + 4);
   storeComplex(at, productRe(re, im, wRe, wIm), productIm(re, im, wRe, wIm));
 }
 
@@ -353,8 +356,10 @@ function inverseHalves(panel: usize, rows: u32, block: u32): void {
     for (let y = start; y < end; y += blockBytes) {
       const t0Re = v128.load(y, RE);
       const t0Im = v128.load(y, IM);
-      const t1Re = unturnedRe(y + step, w, true);
-      const t1Im = unturnedIm(y + step, w, true);
+      const y1Re = v128.load(y + step, RE);
+      const y1Im = v128.load(y + step, IM);
+      const t1Re = conjProductRe(y1Re, y1Im, splat(w), splat(w + 4));
+      const t1Im = conjProductIm(y1Re, y1Im, splat(w), splat(w + 4));
       storeComplex(y, add(t0Re, t1Re), add(t0Im, t1Im));
       storeComplex(y + step, sub(t0Re, t1Re), sub(t0Im, t1Im));
     }
@@ -373,12 +378,21 @@ function inverseLast(source: usize, target: usize, n: u32): void {
 /** Inverse butterfly over four rows `step` bytes apart; `turned` is false where all roots are 1. */
 @inline
 function inverseButterfly(y: usize, x: usize, step: usize, w: usize, turned: bool): void {
+  const y1Re = v128.load(y + step, RE);
+  const y1Im = v128.load(y + step, IM);
+  const y2Re = v128.load(y + 2 * step, RE);
+  const y2Im = v128.load(y + 2 * step, IM);
+  const y3Re = v128.load(y + 3 * step, RE);
+  const y3Im = v128.load(y + 3 * step, IM);
   storeInverse(
     x, step,
     v128.load(y, RE), v128.load(y, IM),
-    unturnedRe(y + step, w, turned), unturnedIm(y + step, w, turned),
-    unturnedRe(y + 2 * step, w + 8, turned), unturnedIm(y + 2 * step, w + 8, turned),
-    unturnedRe(y + 3 * step, w + 16, turned), unturnedIm(y + 3 * step, w + 16, turned),
+    turned ? conjProductRe(y1Re, y1Im, splat(w), splat(w + 4)) : y1Re,
+    turned ? conjProductIm(y1Re, y1Im, splat(w), splat(w + 4)) : y1Im,
+    turned ? conjProductRe(y2Re, y2Im, splat(w + 8), splat(w + 12)) : y2Re,
+    turned ? conjProductIm(y2Re, y2Im, splat(w + 8), splat(w + 12)) : y2Im,
+    turned ? conjProductRe(y3Re, y3Im, splat(w + 16), splat(w + 20)) : y3Re,
+    turned ? conjProductIm(y3Re, y3Im, splat(w + 16), splat(w + 20)) : y3Im,
   );
 }
 
@@ -400,16 +414,4 @@ function storeInverse(
   storeComplex(x + step, sub(bRe, dIm), add(bIm, dRe));
   storeComplex(x + 2 * step, sub(aRe, cRe), sub(aIm, cIm));
   storeComplex(x + 3 * step, add(bRe, dIm), sub(bIm, dRe));
-}
-
-/** Re(y conj w), or Re y where nothing is to be turned back. */
-@inline
-function unturnedRe(y: usize, w: usize, turned: bool): v128 {
-  return turned ? conjProductRe(v128.load(y, RE), v128.load(y, IM), splat(w), splat(w + 4)) : v128.load(y, RE);
-}
-
-/** Im(y conj w), or Im y where nothing is to be turned back. */
-@inline
-function unturnedIm(y: usize, w: usize, turned: bool): v128 {
-  return turned ? conjProductIm(v128.load(y, RE), v128.load(y, IM), splat(w), splat(w + 4)) : v128.load(y, IM);
 }

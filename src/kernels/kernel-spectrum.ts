@@ -39,10 +39,11 @@ export function kernelSpectrum(
   const ones = work + panelBytes(fftHeight);
   const lines = ones + onesBytes(kernelSize);
   const lineBytes = lineBytesOf(kernelSize);
+  const stride = <usize>kernelSize << 2;
   for (let i: u32 = 0; i < kernelSize; i++) store<f32>(ones + (<usize>i << 2), 1);
   memory.fill(panel, 0, <usize>kernelSize * ROW);
   for (let x: u32 = 0; x < kernelSize; x += 4) {
-    readColumns(kernel, <usize>kernelSize << 2, kernelSize, kernelSize, mirror, x, 0, kernelSize, panel + RE, 1, 0);
+    readColumns(kernel, stride, kernelSize, kernelSize, mirror, x, 0, kernelSize, panel + RE, 1, 0);
     forwardToLines(panel, ones, ones, kernelSize, work, fftHeight, lines + <usize>x * ROW, lineBytes);
   }
   for (let m: u32 = 0; m < fftHeight / 4; m++) {

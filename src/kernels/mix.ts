@@ -17,7 +17,9 @@ export function lineOfNegatives(m: u32, n: u32): u32 {
 /** sum += z K */
 export function mix(z: usize, kernel: usize, sum: usize, n: u32): void {
   const end = z + <usize>n * ROW;
-  for (; z < end; z += ROW, kernel += ROW, sum += ROW) addProduct(sum, v128.load(z, RE), v128.load(z, IM), kernel);
+  for (; z < end; z += ROW, kernel += ROW, sum += ROW) {
+    addProduct(sum, v128.load(z, RE), v128.load(z, IM), kernel);
+  }
 }
 
 /** sum += z K where z lies in the line of negatives of the line that K is given for: K(-k) = conj K(k) for a real kernel. */
@@ -55,7 +57,8 @@ export function multiply(factor: usize, z: usize, product: usize, n: u32): void 
  *   sumA += 2 a A, sumB += 2 i b B
  * @param negatives the line of negatives of line `z`, which is the same line where m = 0 or where it is its own mirror */
 export function mixPair(
-  z: usize, negatives: usize, kernelA: usize, kernelB: usize, sumA: usize, sumB: usize, n: u32, isFirstLine: bool,
+  z: usize, negatives: usize, kernelA: usize, kernelB: usize, sumA: usize, sumB: usize,
+  n: u32, isFirstLine: bool,
 ): void {
   const mirrors = mirrorsOf(n);
   for (let at: usize = 0, row: usize = 0; row < n; at += ROW, row++) {

@@ -18,24 +18,34 @@ export function readColumns(
     const row = plane + <usize>seen(clamp(y, height), height, mirror & MIRROR_Y) * stride;
     let to = part;
     if (!isInside) {
-      for (let x = left; x < left + columns; x += 4, to += panelStep) v128.store(to, readClamped(row, width, isMirrored, x));
+      for (let x = left; x < left + columns; x += 4, to += panelStep) {
+        v128.store(to, readClamped(row, width, isMirrored, x));
+      }
     } else if (isMirrored) {
       let from = row + (<usize>(width - 4 - left) << 2);
-      for (let panel = 0; panel < panels; panel++, from -= 16, to += panelStep) v128.store(to, reverseLanes(v128.load(from)));
+      for (let panel = 0; panel < panels; panel++, from -= 16, to += panelStep) {
+        v128.store(to, reverseLanes(v128.load(from)));
+      }
     } else {
       let from = row + (<usize>left << 2);
-      for (let panel = 0; panel < panels; panel++, from += 16, to += panelStep) v128.store(to, v128.load(from));
+      for (let panel = 0; panel < panels; panel++, from += 16, to += panelStep) {
+        v128.store(to, v128.load(from));
+      }
     }
   }
 }
 
 /** Samples x ... x + 3 of a row as it is seen, any of which may lie outside. */
 function readClamped(row: usize, width: i32, isMirrored: u32, x: i32): v128 {
-  let four = f32x4.splat(0);
-  four = f32x4.replace_lane(four, 0, load<f32>(row + (<usize>seen(clamp(x, width), width, isMirrored) << 2)));
-  four = f32x4.replace_lane(four, 1, load<f32>(row + (<usize>seen(clamp(x + 1, width), width, isMirrored) << 2)));
-  four = f32x4.replace_lane(four, 2, load<f32>(row + (<usize>seen(clamp(x + 2, width), width, isMirrored) << 2)));
-  return f32x4.replace_lane(four, 3, load<f32>(row + (<usize>seen(clamp(x + 3, width), width, isMirrored) << 2)));
+  let four = v128.load32_zero(clampedAt(row, width, isMirrored, x));
+  four = v128.load_lane<f32>(clampedAt(row, width, isMirrored, x + 1), four, 1);
+  four = v128.load_lane<f32>(clampedAt(row, width, isMirrored, x + 2), four, 2);
+  return v128.load_lane<f32>(clampedAt(row, width, isMirrored, x + 3), four, 3);
+}
+
+@inline
+function clampedAt(row: usize, width: i32, isMirrored: u32, x: i32): usize {
+  return row + (<usize>seen(clamp(x, width), width, isMirrored) << 2);
 }
 
 /** Add `scale` times one part of some panels to the target's rows from `top` and columns from `left` on, in the frame as the tile
@@ -49,7 +59,8 @@ export function addColumns(
   const to = min(rows, tile.frameHeight - top);
   const scales = f32x4.splat(scale);
   for (let y = max(0, -top); y < to; y++) {
-    const row = tile.target + <usize>seen(top + y, tile.frameHeight, tile.mirror & MIRROR_Y) * tile.targetStride;
+    const seenY = seen(top + y, tile.frameHeight, tile.mirror & MIRROR_Y);
+    const row = tile.target + <usize>seenY * tile.targetStride;
     let sum = part + <usize>y * ROW;
     if (!isWhole) {
       for (let x = 0; x < columns; x += 4, sum += panelStep) {
