@@ -1,6 +1,7 @@
 import fc from 'fast-check';
 import { beforeAll, describe, expect, it } from 'vitest';
 import { type ExponentSign, FftPlan } from '../../src/numeric/fft.js';
+import { instantiateKernels } from '../../src/numeric/kernels.js';
 import { type Columns, noise, relativeError, Workbench } from './workbench.js';
 
 const SIZES = [64, 128, 256, 512, 1024, 2048];
@@ -182,6 +183,13 @@ describe('spectra in lines', () => {
 });
 
 describe('the kernels', () => {
+  it('leave the memory alone when another thread loads them', () => {
+    const memory = new WebAssembly.Memory({ initial: 2, maximum: 65536, shared: true });
+    const bytes = new Uint8Array(memory.buffer).fill(0xa5);
+    instantiateKernels(memory);
+    expect(bytes.every((byte) => byte === 0xa5)).toBe(true);
+  });
+
   it('work above 2 GiB', () => {
     const high = new Workbench(2 ** 31 + 4096);
     const columns = noiseColumns(64, 9);
