@@ -7,6 +7,8 @@ export const GROUP = {
   rig: 'Lens, camera and mount:',
   scene: 'Scene:',
   zones: 'What to look at:',
+  chart: 'Chart:',
+  picture: 'The picture:',
   output: 'What is written:',
   accuracy: 'Accuracy:',
   running: 'How it runs:',

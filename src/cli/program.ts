@@ -1,6 +1,7 @@
 /** The command line as a whole: its commands, and what every one of them does alike. */
 import { Command, CommanderError } from 'commander';
 import { VERSION } from '../version.js';
+import { chartCommand } from './chart.js';
 import { GROUP, grouped } from './common-options.js';
 import { DEBUG_VARIABLE, describeFailure, EXIT } from './failure.js';
 import { renderCommand } from './render.js';
@@ -30,7 +31,7 @@ Example:
 Exit status: 0 done, 1 done but the task is not met, 2 the input is wrong,
 3 the run failed, 130 interrupted.`,
     );
-  for (const command of [startCommand(), renderCommand(), zonesCommand()]) {
+  for (const command of [startCommand(), renderCommand(), zonesCommand(), chartCommand()]) {
     program.addCommand(
       command
         .addHelpOption(grouped(GROUP.running, '-h, --help', 'print this help'))
