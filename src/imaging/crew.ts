@@ -3,8 +3,19 @@ import { fileURLToPath } from 'node:url';
 import type { Worker } from 'node:worker_threads';
 import WorkerPool from 'worker-threads-pool';
 import { InterruptedError, RunError } from '../errors.js';
+import { instantiateKernels, type Kernels, kernelModule } from '../numeric/kernels.js';
 import { Arena } from './arena.js';
-import { CONTROL, type Job, type JobAnswer, type JobMessage, taskCount } from './work.js';
+import { rounded } from './scratch.js';
+import {
+  CONTROL,
+  type Engine,
+  type Job,
+  type JobAnswer,
+  type JobMessage,
+  taskCount,
+  type WorkerSetup,
+} from './work.js';
+import { workBytes } from './work-bytes.js';
 
 /** How a job may be watched and stopped. */
 export interface JobWatch {
@@ -19,12 +30,17 @@ const PROGRESS_MS = 100;
 export class Crew {
   readonly arena = new Arena();
   readonly threads: number;
+  readonly engine: Engine;
+  readonly #kernels: Kernels;
+  readonly #module = kernelModule();
   readonly #pool: WorkerPool;
   readonly #workers: Promise<Worker[]>;
 
   /** @param threads number of workers, 1 or more; they start at once */
-  constructor(threads: number) {
+  constructor(threads: number, engine: Engine = 'simd') {
     this.threads = threads;
+    this.engine = engine;
+    this.#kernels = instantiateKernels(this.arena.memory, this.#module);
     this.#pool = new WorkerPool({ max: threads });
     this.#workers = Promise.all(Array.from({ length: threads }, () => this.#start()));
     this.#workers.catch(() => undefined); // reported by the first job
@@ -39,21 +55,37 @@ export class Crew {
     const count = taskCount(job);
     const control = new Int32Array(new SharedArrayBuffer(4 * CONTROL.length));
     const results = new Float64Array(new SharedArrayBuffer(8 * Math.max(1, count)));
-    const message: JobMessage = { job, count, control, results };
+    const mark = this.arena.mark();
+    const bytes = workBytes(this.#kernels, this.engine, job);
+    const base = this.arena.allocate(this.threads * rounded(bytes));
+    const messageFor = (worker: number): JobMessage => ({
+      job,
+      count,
+      control,
+      results,
+      engine: this.engine,
+      scratch: { at: base + worker * rounded(bytes), bytes },
+    });
     const stop = () => Atomics.store(control, CONTROL.stop, 1);
     signal?.addEventListener('abort', stop, { once: true });
     const timer =
       onProgress && setInterval(() => onProgress(Atomics.load(control, CONTROL.done), count), PROGRESS_MS);
     try {
       const workers = await this.#workers;
-      await Promise.all(workers.map((worker) => answerOf(worker, message)));
+      await Promise.all(workers.map((worker, at) => answerOf(worker, messageFor(at))));
     } finally {
+      this.arena.release(mark);
       clearInterval(timer);
       signal?.removeEventListener('abort', stop);
     }
     if (signal?.aborted) throw new InterruptedError();
     onProgress?.(count, count);
     return results;
+  }
+
+  /** Set bytes of the arena to 0. */
+  clear(address: number, bytes: number): void {
+    this.#kernels.clear(address, bytes);
   }
 
   /** End the workers. The crew is of no use afterwards. */
@@ -70,7 +102,9 @@ export class Crew {
 
   #start(): Promise<Worker> {
     return new Promise((resolve, reject) => {
-      const options = { workerData: { memory: this.arena.memory } };
+      const tablesAt = this.arena.allocate(this.#kernels.tablesBytes() >>> 0);
+      const setup: WorkerSetup = { memory: this.arena.memory, module: this.#module, tablesAt };
+      const options = { workerData: setup };
       this.#pool.acquire(workerEntry(), options, (error, worker) =>
         error ? reject(error) : resolve(worker),
       );

@@ -4,6 +4,7 @@ import type { Rig } from '../optics/rig.js';
 import type { Crew, JobWatch } from './crew.js';
 import { type BandKernels, type BlurTolerances, prepareKernels, refuseUnsampled } from './plan-blur.js';
 import { cornerMm, sensorFrame } from './sensor-frame.js';
+import { columnCount, isFolded } from './simd-blur.js';
 import type { BandSetup } from './work.js';
 
 export interface FormedImage {
@@ -78,7 +79,7 @@ export async function formImage(
   let worst: BandKernels | undefined;
   let earlier: BandKernels | undefined;
   const accuracy = { blendBound: 0, energyOutsideKernel: 0 };
-  for (const bandIndex of rig.camera.bands.keys()) {
+  for (const bandIndex of shortestFirst(rig)) {
     const mark = arena.mark();
     const setup: BandSetup = { rig, bandIndex, oversample };
     const kernels = await timed('psf', (jobWatch) =>
@@ -114,6 +115,12 @@ export async function formImage(
   };
 }
 
+/** Bands with the shortest wavelength first: PSFs change the fastest there, so the grid that serves it serves the others. */
+function shortestFirst(rig: Rig): number[] {
+  const shortest = (index: number) => Math.min(...rig.camera.bands[index].lines.map(({ nm }) => nm));
+  return [...rig.camera.bands.keys()].sort((a, b) => shortest(a) - shortest(b));
+}
+
 /** Blur one plane.
  *
  * Where the PSFs' centroids wander over the field, as coma's do, scene points draw together or apart, and a plane of ones would come
@@ -131,22 +138,28 @@ async function blurPlane(
   watch: JobWatch,
 ): Promise<void> {
   const { grid, isMirrored, kernelsAt } = kernels;
-  const out = crew.arena.floats(outAt, grid.width * grid.height).fill(0);
-  const flat = crew.arena.floats(flatAt, grid.width * grid.height).fill(0);
+  const isFoldedHere = crew.engine === 'simd' && isFolded(grid, isMirrored);
+  const columns = crew.engine === 'simd' ? columnCount(grid, isMirrored) : grid.tilesX;
+  crew.clear(outAt, 4 * grid.width * grid.height);
+  crew.clear(flatAt, 4 * grid.width * grid.height);
   const turns = Math.ceil((grid.tilePx + grid.kernelPx - 1) / grid.tilePx);
   let before = 0;
   for (let turn = 0; turn < turns; turn++) {
-    const columns: number[] = [];
-    for (let column = turn; column < grid.tilesX; column += turns) columns.push(column);
+    const turnColumns: number[] = [];
+    for (let column = turn; column < columns; column += turns) turnColumns.push(column);
     const begun = before;
-    const onProgress = watch.onProgress && ((done: number) => watch.onProgress?.(begun + done, grid.tilesX));
+    const onProgress = watch.onProgress && ((done: number) => watch.onProgress?.(begun + done, columns));
     await crew.run(
-      { kind: 'blur', grid, isMirrored, kernelsAt, sourceAt, outAt, flatAt, columns },
+      { kind: 'blur', grid, isMirrored, kernelsAt, sourceAt, outAt, flatAt, columns: turnColumns },
       { signal: watch.signal, onProgress },
     );
-    before += columns.length;
+    before += turnColumns.length;
   }
-  for (let i = 0; i < out.length; i++) out[i] /= flat[i];
+  const count = Math.ceil(grid.height / ROWS_PER_TASK);
+  await crew.run(
+    { kind: 'flatten', grid, isFolded: isFoldedHere, outAt, flatAt, rowsPerTask: ROWS_PER_TASK, count },
+    { signal: watch.signal },
+  );
 }
 
 /** Take the pixels out of an oversampled plane. Its kernels hold the whole pixel, so the sample at a pixel's middle is the pixel; with

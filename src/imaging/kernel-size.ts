@@ -1,5 +1,5 @@
 /** How large a kernel must be to hold the light of a PSF. */
-import { energyBySquareRing } from '../optics/psf.js';
+import type { RingMaker } from '../optics/psf.js';
 import type { Band, Rig } from '../optics/rig.js';
 import { gridForPhase, LARGEST_GRID, samplesPerPixel } from '../optics/sampling.js';
 import { wavefrontAt } from '../optics/wavefront.js';
@@ -12,7 +12,8 @@ const LARGEST_KERNEL = 1023;
 
 /** Cumulated energy of a band's PSF at a place of the picture.
  * @returns shares of the light within max(|x|, |y|) <= r fine steps, by r; the fine steps are those of `kernelSampling` */
-export function energyWithin(
+function energyWithin(
+  ringsOf: RingMaker,
   rig: Rig,
   band: Band,
   oversample: number,
@@ -28,11 +29,11 @@ export function energyWithin(
     weight,
     wavefront: wavefrontAt(rig, xMm, yMm, nm, band),
   }));
-  let n = Math.max(256, ...lines.map(({ nm, wavefront }) => gridForPhase(wavefront, stepUm, nm, fNumber)));
+  let n = Math.max(512, ...lines.map(({ nm, wavefront }) => gridForPhase(wavefront, stepUm, nm, fNumber)));
   for (; ; n *= 2) {
     const cumulated = new Float64Array(n / 2 + 1);
     for (const { nm, weight, wavefront } of lines) {
-      const rings = energyBySquareRing(wavefront, n, stepUm, nm, fNumber);
+      const rings = ringsOf(wavefront, n, stepUm, nm, fNumber);
       let sum = 0;
       for (let r = 0; r < rings.length; r++) {
         sum += rings[r];
@@ -46,6 +47,7 @@ export function energyWithin(
 /** Half the side, in fine steps, of the square that holds all but `tolerance` of the light. The window looked at is at least twice as
  * large, so that light from outside it, folded back by the sampling, does not count as inside. */
 export function extentSteps(
+  ringsOf: RingMaker,
   rig: Rig,
   band: Band,
   oversample: number,
@@ -57,13 +59,13 @@ export function extentSteps(
     const at = cumulated.findIndex((share) => share >= 1 - tolerance);
     return at < 0 ? cumulated.length - 1 : at;
   };
-  return radius(
-    energyWithin(rig, band, oversample, x, y, (cumulated) => radius(cumulated) <= cumulated.length / 2),
-  );
+  const isEnough = (cumulated: Float64Array) => radius(cumulated) <= cumulated.length / 2;
+  return radius(energyWithin(ringsOf, rig, band, oversample, x, y, isEnough));
 }
 
-/** Share of the light that falls outside a kernel at a place of the picture. */
+/** Share of the light that falls outside a kernel at a place of the picture, measured as `extentSteps` does. */
 export function energyOutside(
+  ringsOf: RingMaker,
   rig: Rig,
   band: Band,
   oversample: number,
@@ -71,14 +73,11 @@ export function energyOutside(
   y: number,
   kernelPx: number,
 ): number {
-  const half = (kernelPx * finePerSample(rig, oversample)) / 2;
-  const cumulated = energyWithin(rig, band, oversample, x, y, (sums) => sums.length >= 4 * half);
-  // a ring of radius r reaches r + 1/2 steps out
-  const inside = Math.min(cumulated.length - 1, Math.max(0, half - 0.5));
-  const low = Math.floor(inside);
+  const reach = (kernelPx * finePerSample(rig, oversample) - 1) / 2; // a ring of radius r reaches r + 1/2 steps out
+  const cumulated = energyWithin(ringsOf, rig, band, oversample, x, y, (sums) => reach <= sums.length / 2);
+  const low = Math.min(cumulated.length - 1, Math.floor(reach));
   const high = Math.min(cumulated.length - 1, low + 1);
-  const share = cumulated[low] + (inside - low) * (cumulated[high] - cumulated[low]);
-  return Math.max(0, 1 - share);
+  return Math.max(0, 1 - (cumulated[low] + (reach - low) * (cumulated[high] - cumulated[low])));
 }
 
 /** Side of the kernel for an extent: odd for odd oversampling, even for even (so that its samples lie on pixels' middles), within

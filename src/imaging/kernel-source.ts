@@ -1,5 +1,5 @@
 /** The exact kernel of a band at any place of the picture. */
-import { KernelMaker, type KernelSampling } from '../optics/psf.js';
+import type { KernelMaking, KernelSampling } from '../optics/psf.js';
 import type { Band, Rig } from '../optics/rig.js';
 import { pixelPitchMm } from '../optics/rig.js';
 import { wavefrontAt } from '../optics/wavefront.js';
@@ -28,13 +28,14 @@ export class KernelSource {
   readonly #rig: Rig;
   readonly #band: Band;
   readonly #frame: SensorFrame;
-  readonly #maker: KernelMaker;
+  readonly #maker: KernelMaking;
 
-  constructor(rig: Rig, band: Band, oversample: number, kernelPx: number) {
+  /** @param maker of the sampling that `kernelSampling` gives */
+  constructor(rig: Rig, band: Band, oversample: number, maker: KernelMaking) {
     this.#rig = rig;
     this.#band = band;
     this.#frame = sensorFrame(rig, band, oversample);
-    this.#maker = new KernelMaker(kernelSampling(rig, oversample, kernelPx));
+    this.#maker = maker;
   }
 
   /** The kernel of light that lands at (x, y), in samples of the picture.

@@ -26,13 +26,20 @@ export class NodeKernels {
     return nodeY * this.#nodesX + nodeX;
   }
 
-  /** The kernel of a node; a copy where it is mirrored from another quadrant. */
-  kernel(nodeX: number, nodeY: number): Float32Array {
-    const { kernelPx } = this.grid;
+  /** Where the kernel of a node lies, and how it is mirrored from there. */
+  place(nodeX: number, nodeY: number): { slot: number; address: number; flipX: boolean; flipY: boolean } {
     const flipX = this.isMirrored && nodeX >= this.#slotsX;
     const flipY = this.isMirrored && nodeY >= this.#slotsY;
     const slot =
       (flipY ? this.#nodesY - 1 - nodeY : nodeY) * this.#slotsX + (flipX ? this.#nodesX - 1 - nodeX : nodeX);
+    const address = this.#kernels.byteOffset + 4 * slot * this.grid.kernelPx ** 2;
+    return { slot, address, flipX, flipY };
+  }
+
+  /** The kernel of a node; a copy where it is mirrored from another quadrant. */
+  kernel(nodeX: number, nodeY: number): Float32Array {
+    const { kernelPx } = this.grid;
+    const { slot, flipX, flipY } = this.place(nodeX, nodeY);
     const kernel = this.slot(slot);
     if (!flipX && !flipY) return kernel;
     const mirrored = new Float32Array(kernel.length);

@@ -1,6 +1,8 @@
 /** The choice of kernel, tile and order of interpolation for one band, and the proof that it holds. */
+import { fineWindow, gridSize } from '../optics/psf.js';
 import { isSymmetric } from '../optics/rig.js';
 import { refuseTooSteep, samplesPerPixel } from '../optics/sampling.js';
+import { wavefrontAt } from '../optics/wavefront.js';
 import { type BlurGrid, makeBlurGrid, tileEdge } from './blur-grid.js';
 import { probeCount, type TileSpan } from './certificate.js';
 import type { Crew, JobWatch } from './crew.js';
@@ -29,11 +31,14 @@ export interface BandKernels {
   energyOutsideKernel: number;
 }
 
-/** A grid of this many checked tiles is proof enough; finer grids are checked on an even spread and along the border. */
-const MOST_CHECKED_TILES = 800;
+/** The error changes smoothly over the field: a grid of more tiles than this (of a quadrant, where they mirror each other) is checked on
+ * an even spread of them, border included. */
+const MOST_CHECKED_TILES = 60;
 /** Part of the tolerance that a planned grid aims at; the check of the finished grid has the last word. */
 const AIM = 0.85;
 const LARGEST_FFT = 2048;
+/** Places on each side of the lattice on which the need of grids is looked up. */
+const LATTICE = 9;
 
 /** Plan, compute and certify the kernels of a band.
  * @param earlier the kernels of another band, a good first guess
@@ -46,9 +51,10 @@ export async function prepareKernels(
   earlier?: BandKernels,
 ): Promise<BandKernels> {
   const places = samplePlaces(setup);
-  const kernelPx = await chooseKernel(crew, setup, places, tolerances.kernel, watch);
-  const outside = await crew.run({ kind: 'outside', setup, places, kernelPx }, { signal: watch.signal });
-  let { tilePx, order } = await chooseTile(crew, setup, kernelPx, tolerances.blend, watch, earlier?.grid);
+  const { kernelPx, energyOutsideKernel } = await chooseKernel(crew, setup, places, tolerances.kernel, watch);
+  const largestGrid = largestPupilGrid(setup, kernelPx);
+  const task = { setup, kernelPx, largestGrid };
+  let { tilePx, order } = await chooseTile(crew, task, tolerances.blend, watch, earlier?.grid);
   const isMirrored = isSymmetric(setup.rig);
   const { width, height } = frameOf(setup);
   const mark = crew.arena.mark();
@@ -57,12 +63,21 @@ export async function prepareKernels(
     crew.arena.release(mark);
     const count = slotCount(grid, isMirrored);
     const kernelsAt = crew.arena.allocateFloats(count * kernelPx ** 2);
-    await crew.run({ kind: 'kernels', setup, grid, isMirrored, kernelsAt, count }, watch);
+    await crew.run({ kind: 'kernels', setup, largestGrid, grid, isMirrored, kernelsAt, count }, watch);
     const tiles = tilesToCheck(grid, isMirrored);
-    const errors = await crew.run({ kind: 'tiles', setup, grid, isMirrored, kernelsAt, tiles }, watch);
+    const errors = await crew.run(
+      { kind: 'tiles', setup, largestGrid, grid, isMirrored, kernelsAt, tiles },
+      watch,
+    );
     const blendBound = largest(errors.subarray(0, tiles.length));
     if (blendBound <= tolerances.blend || grid.tilePx <= 1) {
-      return { grid, isMirrored, kernelsAt, blendBound, energyOutsideKernel: largest(outside) };
+      return {
+        grid,
+        isMirrored,
+        kernelsAt,
+        blendBound,
+        energyOutsideKernel,
+      };
     }
     tilePx = shrinkTile(grid.tilePx, order, blendBound, tolerances.blend);
   }
@@ -77,15 +92,49 @@ export function refuseUnsampled(setup: BandSetup): void {
   refuseTooSteep(setup.rig, points, stepUm);
 }
 
+const FARTHER_QUARTERS: [number, number][] = [
+  [0.75, 0.25],
+  [0.25, 0.75],
+  [0.75, 0.75],
+];
+
 /** Places where a PSF's extent is looked at: axis, sides, corners and between. */
 function samplePlaces(setup: BandSetup): [number, number][] {
   const { width, height, axisX, axisY } = frameOf(setup);
-  const shares = isSymmetric(setup.rig) ? [0, 0.25, 0.5] : [0, 0.25, 0.5, 0.75, 1];
-  const grid = shares.flatMap((v) =>
-    shares.map((u): [number, number] => [u * width - 0.5, v * height - 0.5]),
-  );
+  const isMirrored = isSymmetric(setup.rig);
+  const shares = isMirrored ? [0, 0.5] : [0, 0.5, 1];
+  const places = shares.flatMap((v) => shares.map((u): [number, number] => [u, v]));
+  places.push([0.25, 0.25], ...(isMirrored ? [] : FARTHER_QUARTERS));
+  const grid = places.map(([u, v]): [number, number] => [u * width - 0.5, v * height - 0.5]);
   const inside = axisX >= -0.5 && axisX <= width - 0.5 && axisY >= -0.5 && axisY <= height - 0.5;
   return inside ? [...grid, [axisX, axisY]] : grid;
+}
+
+/** What PSFs of a band are computed with. */
+interface PsfTask {
+  setup: BandSetup;
+  kernelPx: number;
+  largestGrid: number;
+}
+
+/** The largest pupil grid that the PSFs of a band take, looked up on a lattice of places. */
+function largestPupilGrid({ rig, bandIndex, oversample }: BandSetup, kernelPx: number): number {
+  const band = rig.camera.bands[bandIndex];
+  const frame = sensorFrame(rig, band, oversample);
+  const sampling = kernelSampling(rig, oversample, kernelPx);
+  const window = fineWindow(sampling);
+  const shares = Array.from({ length: LATTICE }, (_, i) => i / (LATTICE - 1));
+  let largest = 0;
+  for (const v of shares) {
+    for (const u of shares) {
+      const [xMm, yMm] = idealPoint(frame, u * frame.width - 0.5, v * frame.height - 0.5);
+      for (const { nm, weight } of band.lines) {
+        const wavefront = wavefrontAt(rig, xMm, yMm, nm, band);
+        largest = Math.max(largest, gridSize(window, { nm, weight, wavefront }, sampling.fNumber));
+      }
+    }
+  }
+  return largest;
 }
 
 async function chooseKernel(
@@ -94,25 +143,32 @@ async function chooseKernel(
   places: [number, number][],
   tolerance: number,
   watch: JobWatch,
-): Promise<number> {
-  const extents = await crew.run({ kind: 'extent', setup, places, tolerance }, { signal: watch.signal });
-  return kernelSide(setup.rig, setup.oversample, largest(extents));
+): Promise<{ kernelPx: number; energyOutsideKernel: number }> {
+  const { signal } = watch;
+  const extents = await crew.run({ kind: 'extent', setup, places, tolerance }, { signal });
+  const extent = largest(extents);
+  const kernelPx = kernelSide(setup.rig, setup.oversample, extent);
+  const widest = places.filter((_, at) => extents[at] === extent); // where the most falls outside
+  const outside = await crew.run({ kind: 'outside', setup, places: widest, kernelPx }, { signal });
+  return { kernelPx, energyOutsideKernel: largest(outside) };
 }
 
 /** The tile and order that promise the certificate for the least work. */
 async function chooseTile(
   crew: Crew,
-  setup: BandSetup,
-  kernelPx: number,
+  task: PsfTask,
   tolerance: number,
   watch: JobWatch,
   earlier?: BlurGrid,
 ): Promise<{ tilePx: number; order: number }> {
-  if (earlier !== undefined && earlier.kernelPx === kernelPx)
-    return { tilePx: earlier.tilePx, order: earlier.order };
+  const { setup, kernelPx } = task;
+  if (earlier !== undefined) {
+    const room = blurFftSize(earlier.tilePx, earlier.kernelPx) - kernelPx + 1;
+    if (room > earlier.tilePx / 2) return { tilePx: Math.min(earlier.tilePx, room), order: earlier.order };
+  }
   let best: { tilePx: number; order: number; cost: number } | undefined;
   for (const order of [1, 2, 3]) {
-    const allowedPx = await largestTile(crew, setup, kernelPx, order, tolerance, watch);
+    const allowedPx = await largestTile(crew, task, order, tolerance, watch);
     for (let fftSize = blurFftSize(1, kernelPx); fftSize <= LARGEST_FFT; fftSize *= 2) {
       const tilePx = Math.min(Math.floor(allowedPx), fftSize - kernelPx + 1);
       if (tilePx < 1 || blurFftSize(tilePx, kernelPx) !== fftSize) continue;
@@ -127,18 +183,18 @@ async function chooseTile(
 /** Side of the largest tile that should meet the tolerance, from measured errors of single tiles: e grows as tile^(order + 1). */
 async function largestTile(
   crew: Crew,
-  setup: BandSetup,
-  kernelPx: number,
+  task: PsfTask,
   order: number,
   tolerance: number,
   watch: JobWatch,
 ): Promise<number> {
+  const { setup } = task;
   const { width, height } = frameOf(setup);
   const longest = 2 * Math.max(width, height);
   let tilePx = Math.min(order * 64, longest);
   for (let round = 0; round < 2; round++) {
     const spans = sampleSpans(setup, tilePx);
-    const job = { kind: 'spans', setup, kernelPx, order, spans } as const;
+    const job = { kind: 'spans', ...task, order, spans } as const;
     const error = largest(await crew.run(job, { signal: watch.signal }));
     const factor = error === 0 ? 8 : ((AIM * tolerance) / error) ** (1 / (order + 1));
     tilePx = Math.min(longest, Math.max(1, tilePx * Math.min(8, factor)));
@@ -196,20 +252,15 @@ export function tilesToCheck(grid: BlurGrid, isMirrored: boolean): [number, numb
   const rows = isMirrored ? Math.ceil(grid.tilesY / 2) : grid.tilesY;
   const isInFrame = (tile: number, origin: number, size: number) =>
     tileEdge(tile + 1, origin, grid.tilePx, size) > tileEdge(tile, origin, grid.tilePx, size);
-  const stride = Math.max(1, Math.ceil(Math.sqrt((columns * rows) / MOST_CHECKED_TILES)));
-  const isBorder = (tile: number, origin: number, size: number) =>
-    tileEdge(tile, origin, grid.tilePx, size) === -0.5;
-  const tiles: [number, number][] = [];
-  for (let y = 0; y < rows; y++) {
-    if (!isInFrame(y, grid.originY, grid.height)) continue;
-    for (let x = 0; x < columns; x++) {
-      if (!isInFrame(x, grid.originX, grid.width)) continue;
-      const onSpread = x % stride === 0 && y % stride === 0;
-      const onBorder = isBorder(x, grid.originX, grid.width) || isBorder(y, grid.originY, grid.height);
-      if (onSpread || onBorder) tiles.push([x, y]);
-    }
-  }
-  return tiles;
+  const xs = range(columns).filter((x) => isInFrame(x, grid.originX, grid.width));
+  const ys = range(rows).filter((y) => isInFrame(y, grid.originY, grid.height));
+  const stride = Math.max(1, Math.floor(Math.sqrt((xs.length * ys.length) / MOST_CHECKED_TILES)));
+  const isOnSpread = (_: number, at: number, all: number[]) => at % stride === 0 || at === all.length - 1;
+  return ys.filter(isOnSpread).flatMap((y) => xs.filter(isOnSpread).map((x): [number, number] => [x, y]));
+}
+
+function range(count: number): number[] {
+  return Array.from({ length: count }, (_, i) => i);
 }
 
 function shrinkTile(tilePx: number, order: number, error: number, tolerance: number): number {

@@ -1,80 +1,92 @@
 /** What a worker does for each kind of job. */
 import { developRows } from '../camera/develop.js';
 import { exposeRows } from '../camera/expose.js';
+import { WARP_REQUEST_BYTES, writeWarpRequest } from '../numeric/kernel-requests.js';
+import { type Kernels, LARGEST_KERNEL_FFT } from '../numeric/kernels.js';
+import { energyBySquareRing, KernelMaker } from '../optics/psf.js';
 import type { Arena } from './arena.js';
 import { tileEdge } from './blur-grid.js';
 import { blendError, blendErrorOfSpan, type TileSpan } from './certificate.js';
 import { energyOutside, extentSteps } from './kernel-size.js';
-import { KernelSource } from './kernel-source.js';
+import { KernelSource, kernelSampling } from './kernel-source.js';
 import { NodeKernels, slotCount } from './node-kernels.js';
+import type { Scratch } from './scratch.js';
 import { sensorFrame } from './sensor-frame.js';
+import { SimdBlur } from './simd-blur.js';
+import { SimdKernelMaker, SimdRings } from './simd-psf.js';
 import { TileBlur } from './tile-blur.js';
 import { radialTables, warpRows } from './warp.js';
-import type { BandSetup, Job } from './work.js';
+import type { BandSetup, Engine, Job } from './work.js';
 
 /** Does one task of a job and returns its number. */
 export type RunTask = (task: number) => number;
 
-/** A function that prepares a job's tasks. What several jobs need (kernel sources with their scratch) is kept between them. */
-export function makeTaskRunner(arena: Arena): (job: Job) => RunTask {
-  let keptSource: { key: string; source: KernelSource } | undefined;
-  const sourceFor = (setup: BandSetup, kernelPx: number) => {
-    const key = JSON.stringify([setup, kernelPx]);
-    if (keptSource?.key !== key) {
-      const { rig, bandIndex, oversample } = setup;
-      keptSource = { key, source: new KernelSource(rig, rig.camera.bands[bandIndex], oversample, kernelPx) };
-    }
-    return keptSource.source;
-  };
-  return (job) => {
-    switch (job.kind) {
-      case 'extent':
-      case 'outside': {
-        const { rig, bandIndex, oversample } = job.setup;
+/** What a worker works with. */
+export interface Bench {
+  arena: Arena;
+  kernels: Kernels;
+  engine: Engine;
+  /** Work space for this job. */
+  scratch: Scratch;
+}
+
+/** Prepare a job's tasks. */
+export function taskRunner(bench: Bench, job: Job): RunTask {
+  const { arena } = bench;
+  switch (job.kind) {
+    case 'extent':
+    case 'outside': {
+      const { rig, bandIndex, oversample } = job.setup;
+      const ringsOf =
+        bench.engine === 'simd' ? new SimdRings(bench.kernels, bench.scratch).rings : energyBySquareRing;
+      return (task) => {
+        const [x, y] = job.places[task];
         const band = rig.camera.bands[bandIndex];
-        return (task) => {
-          const [x, y] = job.places[task];
-          return job.kind === 'extent'
-            ? extentSteps(rig, band, oversample, x, y, job.tolerance)
-            : energyOutside(rig, band, oversample, x, y, job.kernelPx);
-        };
-      }
-      case 'spans': {
-        const source = sourceFor(job.setup, job.kernelPx);
-        return (task) => blendErrorOfSpan(source, job.spans[task], job.order, job.kernelPx);
-      }
-      case 'kernels': {
-        const source = sourceFor(job.setup, job.grid.kernelPx);
-        const kernels = nodeKernels(arena, job);
-        return (task) => {
-          source.kernelAt(...kernels.slotPosition(task), kernels.slot(task));
-          return 0;
-        };
-      }
-      case 'tiles':
-        return tileChecker(sourceFor(job.setup, job.grid.kernelPx), nodeKernels(arena, job), job.tiles);
-      case 'warp':
-        return warper(arena, job);
-      case 'expose':
-      case 'develop':
-        return sensorRows(arena, job);
-      case 'blur': {
-        const { grid } = job;
-        const blur = new TileBlur(grid);
-        const kernels = nodeKernels(arena, job);
-        const source = arena.floats(job.sourceAt, grid.width * grid.height);
-        const out = arena.floats(job.outAt, grid.width * grid.height);
-        const flat = arena.floats(job.flatAt, grid.width * grid.height);
-        return (task) => {
-          for (let row = 0; row < grid.tilesY; row++) {
-            blur.blurTile(job.columns[task], row, source, out, kernels);
-            blur.blurOnes(job.columns[task], row, flat, kernels);
-          }
-          return 0;
-        };
-      }
+        return job.kind === 'extent'
+          ? extentSteps(ringsOf, rig, band, oversample, x, y, job.tolerance)
+          : energyOutside(ringsOf, rig, band, oversample, x, y, job.kernelPx);
+      };
     }
-  };
+    case 'spans': {
+      const source = kernelSource(bench, job.setup, job.kernelPx, job.largestGrid);
+      return (task) => blendErrorOfSpan(source, job.spans[task], job.order, job.kernelPx);
+    }
+    case 'kernels': {
+      const source = kernelSource(bench, job.setup, job.grid.kernelPx, job.largestGrid);
+      const kernels = nodeKernels(arena, job);
+      return (task) => {
+        source.kernelAt(...kernels.slotPosition(task), kernels.slot(task));
+        return 0;
+      };
+    }
+    case 'tiles': {
+      const source = kernelSource(bench, job.setup, job.grid.kernelPx, job.largestGrid);
+      return tileChecker(source, nodeKernels(arena, job), job.tiles);
+    }
+    case 'warp':
+      return warper(bench, job);
+    case 'expose':
+    case 'develop':
+      return sensorRows(arena, job);
+    case 'blur':
+      return blurrer(bench, job);
+    case 'flatten':
+      return flattener(bench, job);
+  }
+}
+
+function kernelSource(
+  { engine, kernels, scratch }: Bench,
+  { rig, bandIndex, oversample }: BandSetup,
+  kernelPx: number,
+  largestGrid: number,
+): KernelSource {
+  const sampling = kernelSampling(rig, oversample, kernelPx);
+  const maker =
+    engine === 'simd' && largestGrid <= LARGEST_KERNEL_FFT
+      ? new SimdKernelMaker(kernels, scratch, sampling, largestGrid)
+      : new KernelMaker(sampling);
+  return new KernelSource(rig, rig.camera.bands[bandIndex], oversample, maker);
 }
 
 function nodeKernels(arena: Arena, job: Extract<Job, { kernelsAt: number }>): NodeKernels {
@@ -103,15 +115,38 @@ function tileChecker(source: KernelSource, kernels: NodeKernels, tiles: [number,
   };
 }
 
-function warper(arena: Arena, job: Extract<Job, { kind: 'warp' }>): RunTask {
+function warper({ arena, engine, kernels, scratch }: Bench, job: Extract<Job, { kind: 'warp' }>): RunTask {
   const { rig, bandIndex, oversample } = job.setup;
   const frame = sensorFrame(rig, rig.camera.bands[bandIndex], oversample);
   const tables = radialTables(rig.lens, frame);
-  const scene = arena.floats(job.sceneAt, frame.width * frame.height);
-  const out = arena.floats(job.outAt, frame.width * frame.height);
+  const { width, height, axisX, axisY } = frame;
+  const rows = (task: number): [number, number] => [
+    task * job.rowsPerTask,
+    Math.min(height, (task + 1) * job.rowsPerTask),
+  ];
+  if (engine === 'reference') {
+    const scene = arena.floats(job.sceneAt, width * height);
+    const out = arena.floats(job.outAt, width * height);
+    return (task) => {
+      warpRows(frame, tables, scene, out, ...rows(task));
+      return 0;
+    };
+  }
+  const request = scratch.allocate(WARP_REQUEST_BYTES);
+  writeWarpRequest(arena.memory, request, {
+    width,
+    height,
+    axisX,
+    axisY,
+    stepsPerSquare: tables.stepsPerSquare,
+    scale: scratch.doubles(tables.scale),
+    illumination: scratch.doubles(tables.illumination),
+    scene: job.sceneAt,
+    out: job.outAt,
+  });
   return (task) => {
-    const start = task * job.rowsPerTask;
-    warpRows(frame, tables, scene, out, start, Math.min(frame.height, start + job.rowsPerTask));
+    if (tables.isIdentity) kernels.lightRows(request, ...rows(task));
+    else kernels.warpRows(request, ...rows(task));
     return 0;
   };
 }
@@ -128,6 +163,46 @@ function sensorRows(arena: Arena, job: Extract<Job, { kind: 'expose' | 'develop'
     const end = Math.min(exposure.height, start + rowsPerTask);
     if (job.kind === 'expose') exposeRows(planes, exposure, start, end, raw);
     else developRows(raw, exposure, start, end, planes);
+    return 0;
+  };
+}
+
+function blurrer({ arena, engine, kernels, scratch }: Bench, job: Extract<Job, { kind: 'blur' }>): RunTask {
+  const { grid, columns } = job;
+  const nodes = nodeKernels(arena, job);
+  if (engine === 'simd') {
+    const blur = new SimdBlur(kernels, scratch, nodes, job);
+    return (task) => {
+      blur.blurColumn(columns[task]);
+      return 0;
+    };
+  }
+  const blur = new TileBlur(grid);
+  const samples = grid.width * grid.height;
+  const source = arena.floats(job.sourceAt, samples);
+  const out = arena.floats(job.outAt, samples);
+  const flat = arena.floats(job.flatAt, samples);
+  return (task) => {
+    for (let row = 0; row < grid.tilesY; row++) {
+      blur.blurTile(columns[task], row, source, out, nodes);
+      blur.blurOnes(columns[task], row, flat, nodes);
+    }
+    return 0;
+  };
+}
+
+function flattener({ kernels }: Bench, job: Extract<Job, { kind: 'flatten' }>): RunTask {
+  const { width, height } = job.grid;
+  const stride = 4 * width;
+  return (task) => {
+    const end = Math.min(height, (task + 1) * job.rowsPerTask);
+    for (let row = task * job.rowsPerTask; row < end; row++) {
+      const out = job.outAt + row * stride;
+      const flat = job.flatAt + row * stride;
+      const opposite = job.flatAt + (height - 1 - row) * stride;
+      if (job.isFolded) kernels.divideMirroredRow(out, flat, opposite, width);
+      else kernels.divideRow(out, flat, width);
+    }
     return 0;
   };
 }

@@ -4,7 +4,7 @@ import type { Lens } from '../optics/rig.js';
 import { cornerMm, type SensorFrame } from './sensor-frame.js';
 
 /** Steps of the radial tables. The curves are smooth in r^2: linear interpolation is right to 1e-7 px at 5 % distortion. */
-const TABLE_STEPS = 8192;
+export const TABLE_STEPS = 8192;
 
 /** What happens to light by its distance from the axis, tabulated over the square of the landed radius in samples. */
 export interface RadialTables {

@@ -4,6 +4,9 @@ import type { Rig } from '../optics/rig.js';
 import type { BlurGrid } from './blur-grid.js';
 import type { TileSpan } from './certificate.js';
 
+/** What does the arithmetic: the compiled kernels, or plain TypeScript in float64, which they are held against. */
+export type Engine = 'simd' | 'reference';
+
 /** Which band of which rig, on which grid of samples. */
 export interface BandSetup {
   rig: Rig;
@@ -18,11 +21,19 @@ export type Job =
   /** Share of the light outside the kernel; a task a place. */
   | { kind: 'outside'; setup: BandSetup; places: [number, number][]; kernelPx: number }
   /** Blending error over single spans, kernels computed on the spot; a task a span. */
-  | { kind: 'spans'; setup: BandSetup; kernelPx: number; order: number; spans: TileSpan[] }
+  | {
+      kind: 'spans';
+      setup: BandSetup;
+      kernelPx: number;
+      largestGrid: number;
+      order: number;
+      spans: TileSpan[];
+    }
   /** Kernels of a grid's nodes into shared memory; a task a slot. */
   | {
       kind: 'kernels';
       setup: BandSetup;
+      largestGrid: number;
       grid: BlurGrid;
       isMirrored: boolean;
       kernelsAt: number;
@@ -32,6 +43,7 @@ export type Job =
   | {
       kind: 'tiles';
       setup: BandSetup;
+      largestGrid: number;
       grid: BlurGrid;
       isMirrored: boolean;
       kernelsAt: number;
@@ -67,6 +79,16 @@ export type Job =
       outAt: number;
       flatAt: number;
       columns: number[];
+    }
+  /** Blurred picture over blurred ones; a task some rows. */
+  | {
+      kind: 'flatten';
+      grid: BlurGrid;
+      isFolded: boolean;
+      outAt: number;
+      flatAt: number;
+      rowsPerTask: number;
+      count: number;
     };
 
 /** Number of tasks of a job. */
@@ -85,6 +107,7 @@ export function taskCount(job: Job): number {
     case 'warp':
     case 'expose':
     case 'develop':
+    case 'flatten':
       return job.count;
   }
 }
@@ -92,12 +115,24 @@ export function taskCount(job: Job): number {
 /** Indices of the control block that main thread and workers share. */
 export const CONTROL = { next: 0, done: 1, stop: 2, length: 3 } as const;
 
+/** What a worker is born with. */
+export interface WorkerSetup {
+  memory: WebAssembly.Memory;
+  /** The compiled kernels. */
+  module: WebAssembly.Module;
+  /** Room for the kernels' tables. */
+  tablesAt: number;
+}
+
 /** What the main thread sends to a worker. */
 export interface JobMessage {
   job: Job;
   count: number;
   control: Int32Array;
   results: Float64Array;
+  engine: Engine;
+  /** Work space of this worker. */
+  scratch: { at: number; bytes: number };
 }
 
 /** What a worker answers when no task is left. */

@@ -1,23 +1,29 @@
 /** A worker thread: takes the tasks of a job one by one from a shared counter. */
 import { parentPort, workerData } from 'node:worker_threads';
 import { RunError } from '../errors.js';
+import { instantiateKernels } from '../numeric/kernels.js';
 import { Arena } from './arena.js';
-import { makeTaskRunner } from './task-runner.js';
-import { CONTROL, type JobAnswer, type JobMessage } from './work.js';
+import { Scratch } from './scratch.js';
+import { taskRunner } from './task-runner.js';
+import { CONTROL, type JobAnswer, type JobMessage, type WorkerSetup } from './work.js';
 
 const port = parentPort;
 if (port === null) throw new Error('this module runs in a worker thread only');
-const runnerFor = makeTaskRunner(new Arena((workerData as { memory: WebAssembly.Memory }).memory));
+const { memory, module, tablesAt } = workerData as WorkerSetup;
+const arena = new Arena(memory);
+const kernels = instantiateKernels(memory, module);
+kernels.prepare(tablesAt);
 
 port.on('message', (message: JobMessage | 'end') => {
   if (message === 'end') {
     port.close(); // nothing is left to wait for, so the thread ends
     return;
   }
-  const { job, count, control, results } = message;
+  const { job, count, control, results, engine } = message;
   let answer: JobAnswer = { ok: true };
   try {
-    const runTask = runnerFor(job);
+    const scratch = new Scratch(memory, message.scratch.at, message.scratch.bytes);
+    const runTask = taskRunner({ arena, kernels, engine, scratch }, job);
     for (;;) {
       const task = Atomics.add(control, CONTROL.next, 1);
       if (task >= count || Atomics.load(control, CONTROL.stop) !== 0) break;

@@ -23,6 +23,7 @@ import { Crew } from '../imaging/crew.js';
 import { formImage, refuseUnformable } from '../imaging/form-image.js';
 import type { Raster } from '../imaging/raster.js';
 import { recordImage } from '../imaging/record-image.js';
+import type { Engine } from '../imaging/work.js';
 import { colourWarnings, fieldWarning } from '../optics/limits.js';
 import type { Rig } from '../optics/rig.js';
 import { VERSION } from '../version.js';
@@ -53,6 +54,8 @@ export interface RenderOptions {
   cameraSeed?: number;
   /** Worker threads. Default: one a core. The picture does not depend on it. */
   threads?: number;
+  /** What does the arithmetic: the compiled kernels (`simd`, the default), or plain TypeScript in float64 (`reference`), slower by far. */
+  engine?: Engine;
   signal?: AbortSignal;
   onProgress?: (progress: { stage: string; done: number; total: number }) => void;
 }
@@ -102,7 +105,7 @@ export async function render(options: RenderOptions): Promise<RenderResult> {
   const outputs = checkOutputs(options);
   refuseUnformable(rig, oversample);
   limitPictureThreads(threads);
-  const crew = new Crew(threads); // its workers start while the scene is read
+  const crew = new Crew(threads, options.engine); // its workers start while the scene is read
   try {
     const decodeStart = performance.now();
     const scene = await readInto(crew, options, settings);

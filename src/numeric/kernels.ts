@@ -69,6 +69,33 @@ export interface Kernels {
    * @param first address of a block as `writeBlurTile` writes it
    * @param second the same, or 0 for none */
   blurTiles(shape: number, first: number, second: number): void;
+
+  /** Bytes of work space that `psfIntensity` takes. */
+  psfScratchBytes(n: number, half: number): number;
+  /** The intensity of a PSF on a window of its fine grid. @param request address of a block as `writePsfRequest` writes it */
+  psfIntensity(request: number): void;
+  /** Add the pixels of a PSF to `sum`; see `src/kernels/pixel-box.ts`. */
+  addPixels(
+    intensity: number,
+    side: number,
+    taps: number,
+    tapCount: number,
+    perPixel: number,
+    pixels: number,
+    scale: number,
+    lines: number,
+    sum: number,
+  ): void;
+
+  /** Warp and light some rows; `lightRows` where nothing is moved. @param request address of a block as `writeWarpRequest` writes it */
+  warpRows(request: number, rowStart: number, rowEnd: number): void;
+  lightRows(request: number, rowStart: number, rowEnd: number): void;
+
+  /** Divide a row of the picture by the blurred ones, or by four quadrants' worth of them. */
+  divideRow(out: number, flat: number, width: number): void;
+  divideMirroredRow(out: number, flat: number, opposite: number, width: number): void;
+  /** Set bytes to 0. */
+  clear(at: number, bytes: number): void;
 }
 
 /** How a plane or a kernel is seen: mirrored left to right, top to bottom. The sum means both. */

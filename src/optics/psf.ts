@@ -24,56 +24,107 @@ export interface WavefrontLine {
   wavefront: LocalWavefront;
 }
 
+/** What makes kernels. */
+export interface KernelMaking {
+  /** Kernel of a band at one field point: the weighted sum of its lines' PSFs over the pixel's box, with unit sum.
+   * @param out kernelPx x kernelPx samples, row-major, x right and y down */
+  bandKernel(lines: readonly WavefrontLine[], out: Float32Array | Float64Array): void;
+}
+
+/** The fine samples behind a kernel: how many make a picture sample, and which of them the kernel's pixels take. */
+export interface FineWindow {
+  /** Fine samples a picture sample. */
+  perPixel: number;
+  /** Step of the fine grid. */
+  stepUm: number;
+  /** Filter of a pixel. */
+  box: PixelBox;
+  /** Side of the square of fine samples that the kernel's pixels reach. */
+  side: number;
+  /** Its first sample, counted from the image point. */
+  start: number;
+}
+
+/** The window of a sampling. */
+export function fineWindow({ pitchUm, boxUm, shortestNm, fNumber, kernelPx }: KernelSampling): FineWindow {
+  const perPixel = samplesPerPixel(pitchUm, shortestNm, fNumber);
+  const stepUm = pitchUm / perPixel;
+  const isBetweenSamples = kernelPx % 2 === 0 && perPixel % 2 === 1;
+  const box = pixelBox(boxUm / stepUm, isBetweenSamples);
+  return {
+    perPixel,
+    stepUm,
+    box,
+    side: (kernelPx - 1) * perPixel + box.taps.length,
+    start: -((kernelPx - 1) / 2) * perPixel + box.first,
+  };
+}
+
+/** Smaller grids save nothing. */
+const SMALLEST_GRID = 64;
+
+/** The pupil grid of one line: large enough for the phase and for the window. */
+export function gridSize(window: FineWindow, line: WavefrontLine, fNumber: number): number {
+  let n = Math.max(SMALLEST_GRID, gridForPhase(line.wavefront, window.stepUm, line.nm, fNumber));
+  while (n < window.side) n *= 2;
+  return Math.min(n, LARGEST_GRID);
+}
+
+/** out = sum over its own total. */
+export function normalise(sum: Float32Array | Float64Array, out: Float32Array | Float64Array): void {
+  let total = 0;
+  for (let i = 0; i < sum.length; i++) total += sum[i];
+  for (let i = 0; i < sum.length; i++) out[i] = sum[i] / total;
+}
+
+/** Reach and area of a pupil of a given radius in samples: it spans -half to half on both axes. */
+export function pupilReach(n: number, radius: number): number {
+  return Math.min(Math.floor(radius + 0.5), n / 2 - 1);
+}
+
+/** Share of a sample that lies inside the rim: soft over one sample. */
+export function rimShare(rho: number, radius: number): number {
+  return Math.min(1, Math.max(0, (1 - rho) * radius + 0.5));
+}
+
+/** The pupil's area in samples: the sum of its amplitudes. */
+export function pupilArea(radius: number, half: number): number {
+  let area = 0;
+  for (let j = -half; j <= half; j++) {
+    for (let i = -half; i <= half; i++) area += rimShare(Math.hypot(i, j) / radius, radius);
+  }
+  return area;
+}
+
 /** Computes pixel-integrated PSFs of one sampling; keeps its scratch between calls, so each worker makes its own.
  *
  * The pupil function is P = A exp(i 2 pi W) with a rim that is soft over one sample, and the PSF is |FT P|^2 with exp(+i ...), which
  * puts its centroid at the mean of eps = -2 N lambda grad W (Goodman, Introduction to Fourier Optics, 6.2 and 6.4, cited from memory). Computed as the
  * forward transform of P's conjugate, which has the same modulus.
  */
-export class KernelMaker {
+export class KernelMaker implements KernelMaking {
   readonly sampling: KernelSampling;
-  /** Fine samples a picture sample. */
-  readonly perPixel: number;
-  /** Step of the fine grid. */
-  readonly stepUm: number;
-  readonly #box: PixelBox;
+  readonly window: FineWindow;
   readonly #grids = new Map<number, Grid>();
   readonly #columns: Float64Array;
 
   constructor(sampling: KernelSampling) {
-    const { pitchUm, boxUm, shortestNm, fNumber, kernelPx } = sampling;
     this.sampling = sampling;
-    this.perPixel = samplesPerPixel(pitchUm, shortestNm, fNumber);
-    this.stepUm = pitchUm / this.perPixel;
-    const isBetweenSamples = kernelPx % 2 === 0 && this.perPixel % 2 === 1;
-    this.#box = pixelBox(boxUm / this.stepUm, isBetweenSamples);
-    this.#columns = new Float64Array(this.#fineSide * kernelPx);
+    this.window = fineWindow(sampling);
+    this.#columns = new Float64Array(this.window.side * sampling.kernelPx);
   }
 
-  /** Kernel of a band at one field point: the weighted sum of its lines' PSFs over the pixel's box, with unit sum.
-   * @param out kernelPx x kernelPx samples, row-major, x right and y down
-   */
   bandKernel(lines: readonly WavefrontLine[], out: Float32Array | Float64Array): void {
     const sum = new Float64Array(out.length);
     for (const line of lines) this.#addLine(line, sum);
-    let total = 0;
-    for (let i = 0; i < sum.length; i++) total += sum[i];
-    for (let i = 0; i < sum.length; i++) out[i] = sum[i] / total;
-  }
-
-  /** Side of the square of fine samples that the kernel's pixels reach. */
-  get #fineSide(): number {
-    return (this.sampling.kernelPx - 1) * this.perPixel + this.#box.taps.length;
+    normalise(sum, out);
   }
 
   #addLine({ nm, weight, wavefront }: WavefrontLine, sum: Float64Array): void {
-    const { fNumber, kernelPx } = this.sampling;
-    const forPhase = gridForPhase(wavefront, this.stepUm, nm, fNumber);
-    let n = Math.max(forPhase, 32);
-    while (n < kernelPx * this.perPixel && n < LARGEST_GRID) n *= 2;
-    n = Math.min(n, LARGEST_GRID);
+    const { fNumber } = this.sampling;
+    const n = gridSize(this.window, { nm, weight, wavefront }, fNumber);
     const grid = this.#grid(n);
-    const area = fillPupil(grid, wavefront, pupilDiameterSamples(n, this.stepUm, nm, fNumber));
+    const area = fillPupil(grid, wavefront, pupilDiameterSamples(n, this.window.stepUm, nm, fNumber));
     const scale = weight / (area * n * n); // Parseval: the whole PSF sums to n^2 times the light through the pupil
     this.#transformAndSum(grid, scale, sum);
   }
@@ -89,9 +140,8 @@ export class KernelMaker {
       plan.transform(lineOut, view, 'minus');
       view.set(lineOut);
     }
-    const { taps, first } = this.#box;
-    const side = this.#fineSide;
-    const start = -((kernelPx - 1) / 2) * this.perPixel + first; // the first fine sample in use, counted from the image point
+    const { side, start, perPixel } = this.window;
+    const { taps } = this.window.box;
     const columns = this.#columns;
     const intensity = grid.intensity;
     const mask = n - 1;
@@ -110,7 +160,7 @@ export class KernelMaker {
         intensity[j] = lineOut[at] * lineOut[at] + lineOut[at + 1] * lineOut[at + 1];
       }
       for (let pixel = 0; pixel < kernelPx; pixel++) {
-        const from = pixel * this.perPixel;
+        const from = pixel * perPixel;
         let value = 0;
         for (let t = 0; t < taps.length; t++) value += taps[t] * intensity[from + t];
         columns[pixel * side + i] = value;
@@ -118,7 +168,7 @@ export class KernelMaker {
     }
     for (let row = 0; row < kernelPx; row++) {
       for (let pixel = 0; pixel < kernelPx; pixel++) {
-        const from = row * side + pixel * this.perPixel;
+        const from = row * side + pixel * perPixel;
         let value = 0;
         for (let t = 0; t < taps.length; t++) value += taps[t] * columns[from + t];
         sum[row * kernelPx + pixel] += scale * value;
@@ -129,7 +179,7 @@ export class KernelMaker {
   #grid(n: number): Grid {
     let grid = this.#grids.get(n);
     if (grid === undefined) {
-      grid = makeGrid(n, this.#fineSide);
+      grid = makeGrid(n, this.window.side);
       this.#grids.set(n, grid);
     }
     return grid;
@@ -167,7 +217,7 @@ function makeGrid(n: number, fineSide: number): Grid {
 function fillPupil(grid: Grid, wavefront: LocalWavefront, diameter: number): number {
   const { n } = grid;
   const radius = diameter / 2;
-  const half = Math.min(Math.floor(radius + 0.5), n / 2 - 1);
+  const half = pupilReach(n, radius);
   const rowCount = 2 * half + 1;
   if (grid.rows.length < 2 * n * rowCount) grid.rows = new Float64Array(2 * n * rowCount);
   grid.rowCount = rowCount;
@@ -182,9 +232,8 @@ function fillPupil(grid: Grid, wavefront: LocalWavefront, diameter: number): num
     for (let i = -half; i <= half; i++) {
       const x = i / radius;
       const rho2 = x * x + y * y;
-      const inside = (1 - Math.sqrt(rho2)) * radius + 0.5; // share of the sample that lies inside the rim
-      if (inside <= 0) continue;
-      const amplitude = Math.min(inside, 1);
+      const amplitude = rimShare(Math.sqrt(rho2), radius);
+      if (amplitude === 0) continue;
       const m = x * cos + y * sin;
       const w = rho2 * (w40 * rho2 + w31 * m + w20) + m * (w22 * m + w11);
       const phase = -2 * Math.PI * (w - Math.round(w));
@@ -196,6 +245,9 @@ function fillPupil(grid: Grid, wavefront: LocalWavefront, diameter: number): num
   }
   return area;
 }
+
+/** The kind of function that `energyBySquareRing` is. */
+export type RingMaker = typeof energyBySquareRing;
 
 /** Energy of a PSF by square rings about its image point: ring[r] is the share in the samples with max(|x|, |y|) = r fine steps.
  * What is missing from 1 in the sum of all rings fell outside the n-window, so take n well above the size of interest.

@@ -1,0 +1,208 @@
+/** The varying blur by the compiled kernels, a column of tiles at a time. */
+import {
+  BLUR_SHAPE_BYTES,
+  BLUR_TILE_BYTES,
+  type Kernels,
+  MIRROR_X,
+  MIRROR_Y,
+  writeBlurShape,
+  writeBlurTile,
+} from '../numeric/kernels.js';
+import { type BlurGrid, blendWeights } from './blur-grid.js';
+import type { NodeKernels } from './node-kernels.js';
+import { rounded, type Scratch } from './scratch.js';
+import { blurFftSize } from './tile-blur.js';
+
+/** Planes of a blur, as addresses. */
+export interface BlurPlanes {
+  sourceAt: number;
+  outAt: number;
+  /** What a scene of ones becomes: all of it, or a quarter where `isFolded`. */
+  flatAt: number;
+}
+
+/** Whether the four quadrants are blurred together: they mirror each other to the sample, which an even kernel does not. */
+export function isFolded(grid: BlurGrid, isMirrored: boolean): boolean {
+  return isMirrored && grid.kernelPx % 2 === 1;
+}
+
+/** Columns of tiles that must be asked for; the others come with their mirror images. */
+export function columnCount(grid: BlurGrid, isMirrored: boolean): number {
+  return isFolded(grid, isMirrored) ? Math.ceil(grid.tilesX / 2) : grid.tilesX;
+}
+
+/** Bytes of work space of one blur. */
+export function blurWorkBytes(kernels: Kernels, grid: BlurGrid): number {
+  const size = kernelFftSize(grid);
+  const nodes = grid.order + 1;
+  const spectra = nodes ** 2 * rounded(kernels.spectrumBytes(size, size) >>> 0);
+  const work = rounded(kernels.blurScratchBytes(size, size, nodes, nodes) >>> 0);
+  const spectrumWork = rounded(kernels.spectrumScratchBytes(grid.kernelPx, size) >>> 0);
+  const lines = 3 * rounded(4 * nodes * grid.tilePx) + rounded(4 * grid.width) + rounded(4 * nodes ** 2);
+  return spectra + work + spectrumWork + lines + 16 * 64;
+}
+
+/** The FFT size that the kernels use for a grid. */
+export function kernelFftSize(grid: BlurGrid): number {
+  return Math.max(64, blurFftSize(grid.tilePx, grid.kernelPx));
+}
+
+/** Blurs columns of tiles of one grid. In a rig whose quadrants mirror each other two tiles that mirror each other share their
+ * kernels, so that one complex transform serves both. Elsewhere a tile shares it with the tile of ones at the same place. */
+export class SimdBlur {
+  readonly #kernels: Kernels;
+  readonly #scratch: Scratch;
+  readonly #nodes: NodeKernels;
+  readonly #planes: BlurPlanes;
+  readonly #fftSize: number;
+  readonly #isFolded: boolean;
+  readonly #shape: number;
+  readonly #first: number;
+  readonly #second: number;
+  readonly #weightsX: { address: number; values: Float32Array };
+  readonly #weightsY: { address: number; values: Float32Array };
+  /** Addresses of the spectra at a tile's nodes, row by row. */
+  readonly #list: { address: number; values: Uint32Array };
+  /** Room for the spectra of (order + 1) rows of nodes; row r of the grid lies in place r modulo (order + 1). */
+  readonly #spectra: number[][];
+  readonly #spectrumWork: number;
+  /** Weights along y for tiles of ones: a tile that is its own mirror image counts by half, since the mirror image is added later. */
+  readonly #onesWeightsY: { address: number; values: Float32Array };
+  /** A row of ones. */
+  readonly #ones: number;
+  readonly #weights: Float64Array;
+
+  constructor(kernels: Kernels, scratch: Scratch, nodes: NodeKernels, planes: BlurPlanes) {
+    const { grid } = nodes;
+    const side = grid.order + 1;
+    this.#kernels = kernels;
+    this.#scratch = scratch;
+    this.#nodes = nodes;
+    this.#planes = planes;
+    this.#fftSize = kernelFftSize(grid);
+    this.#isFolded = isFolded(grid, nodes.isMirrored);
+    this.#shape = scratch.allocate(BLUR_SHAPE_BYTES);
+    this.#first = scratch.allocate(BLUR_TILE_BYTES);
+    this.#second = scratch.allocate(BLUR_TILE_BYTES);
+    this.#weightsX = scratch.floats(side * grid.tilePx);
+    this.#weightsY = scratch.floats(side * grid.tilePx);
+    this.#weights = new Float64Array(side * grid.tilePx);
+    const list = scratch.allocate(4 * side * side);
+    this.#list = { address: list, values: new Uint32Array(scratch.memory.buffer, list, side * side) };
+    const spectrumBytes = kernels.spectrumBytes(this.#fftSize, this.#fftSize) >>> 0;
+    this.#spectra = Array.from({ length: side }, () =>
+      Array.from({ length: side }, () => scratch.allocate(spectrumBytes)),
+    );
+    this.#spectrumWork = scratch.allocate(kernels.spectrumScratchBytes(grid.kernelPx, this.#fftSize) >>> 0);
+    this.#onesWeightsY = scratch.floats(side * grid.tilePx);
+    const ones = scratch.floats(grid.width);
+    ones.values.fill(1);
+    this.#ones = ones.address;
+    writeBlurShape(scratch.memory, this.#shape, {
+      fftWidth: this.#fftSize,
+      fftHeight: this.#fftSize,
+      tileWidth: grid.tilePx,
+      tileHeight: grid.tilePx,
+      kernelSize: grid.kernelPx,
+      nodesX: side,
+      nodesY: side,
+      weightsX: this.#weightsX.address,
+      scratch: scratch.allocate(kernels.blurScratchBytes(this.#fftSize, this.#fftSize, side, side) >>> 0),
+    });
+  }
+
+  /** Blur a column of tiles from top to bottom, with what mirrors it. */
+  blurColumn(tileX: number): void {
+    const { grid } = this.#nodes;
+    const { tilesX, tilesY, tilePx, originX, width } = grid;
+    this.#weigh(tileX, originX, width, this.#weightsX.values);
+    const rows = this.#isFolded ? Math.ceil(tilesY / 2) : tilesY;
+    const isOwnMirrorX = 2 * tileX === tilesX - 1;
+    for (let tileY = 0; tileY < rows; tileY++) {
+      const isOwnMirrorY = 2 * tileY === tilesY - 1;
+      this.#weigh(tileY, grid.originY, grid.height, this.#weightsY.values);
+      this.#prepareSpectra(tileX, tileY, tileY === 0 ? 0 : 1);
+      const left = originX + tileX * tilePx;
+      const top = grid.originY + tileY * tilePx;
+      if (!this.#isFolded) {
+        // beside a scene's tile a row of ones, seen in every row, takes the imaginary part
+        const ones = { source: this.#ones, sourceStride: 0, target: this.#planes.flatAt };
+        this.#blur(this.#sceneTile(left, top, 0), { ...this.#sceneTile(left, top, 0), ...ones });
+        continue;
+      }
+      this.#blur(
+        this.#sceneTile(left, top, 0),
+        isOwnMirrorX ? undefined : this.#sceneTile(left, top, MIRROR_X),
+      );
+      if (!isOwnMirrorY) {
+        this.#blur(
+          this.#sceneTile(left, top, MIRROR_Y),
+          isOwnMirrorX ? undefined : this.#sceneTile(left, top, MIRROR_X + MIRROR_Y),
+        );
+      }
+      const share = (isOwnMirrorX ? 0.5 : 1) * (isOwnMirrorY ? 0.5 : 1);
+      for (let i = 0; i < this.#weights.length; i++) this.#onesWeightsY.values[i] = share * this.#weights[i];
+      const ones = { source: 0, target: this.#planes.flatAt, weightsY: this.#onesWeightsY.address };
+      this.#blur({ ...this.#sceneTile(left, top, 0), ...ones }, undefined);
+    }
+  }
+
+  #blur(first: Tile, second: Tile | undefined): void {
+    const { memory } = this.#scratch;
+    writeBlurTile(memory, this.#first, first);
+    if (second !== undefined) writeBlurTile(memory, this.#second, { ...second, spectra: 0 });
+    this.#kernels.blurTiles(this.#shape, this.#first, second === undefined ? 0 : this.#second);
+  }
+
+  #sceneTile(left: number, top: number, mirror: number): Tile {
+    const { width, height } = this.#nodes.grid;
+    return {
+      source: this.#planes.sourceAt,
+      sourceStride: 4 * width,
+      target: this.#planes.outAt,
+      targetStride: 4 * width,
+      frameWidth: width,
+      frameHeight: height,
+      left,
+      top,
+      mirror,
+      weightsY: this.#weightsY.address,
+      spectra: this.#list.address,
+    };
+  }
+
+  /** Spectra of the tile's nodes: those of the rows that the tile above left behind, and new ones.
+   * @param firstRow first row of the tile's nodes that is new */
+  #prepareSpectra(tileX: number, tileY: number, firstRow: number): void {
+    const { order, kernelPx } = this.#nodes.grid;
+    const side = order + 1;
+    for (let j = 0; j <= order; j++) {
+      const nodeY = tileY * order + j;
+      const room = this.#spectra[nodeY % side];
+      for (let i = 0; i <= order; i++) {
+        if (j >= firstRow) {
+          const { address, flipX, flipY } = this.#nodes.place(tileX * order + i, nodeY);
+          const mirror = (flipX ? MIRROR_X : 0) + (flipY ? MIRROR_Y : 0);
+          this.#kernels.kernelSpectrum(
+            address,
+            kernelPx,
+            mirror,
+            this.#fftSize,
+            this.#fftSize,
+            this.#spectrumWork,
+            room[i],
+          );
+        }
+        this.#list.values[j * side + i] = room[i];
+      }
+    }
+  }
+
+  #weigh(tile: number, origin: number, size: number, out: Float32Array): void {
+    const { tilePx, order } = this.#nodes.grid;
+    blendWeights(tile, origin, tilePx, order, size, this.#weights);
+    out.set(this.#weights);
+  }
+}
+
+type Tile = Parameters<typeof writeBlurTile>[2];

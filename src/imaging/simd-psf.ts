@@ -1,0 +1,233 @@
+/** PSFs by the compiled kernels: the same figures as `KernelMaker`, in float32 where that serves. */
+import { PSF_REQUEST_BYTES, writePsfRequest } from '../numeric/kernel-requests.js';
+import { COMPLEX_ROW_BYTES, type Kernels, LARGEST_KERNEL_FFT } from '../numeric/kernels.js';
+import {
+  energyBySquareRing,
+  type FineWindow,
+  fineWindow,
+  gridSize,
+  KernelMaker,
+  type KernelMaking,
+  type KernelSampling,
+  normalise,
+  pupilArea,
+  pupilReach,
+  type RingMaker,
+  type WavefrontLine,
+} from '../optics/psf.js';
+import { pupilDiameterSamples } from '../optics/sampling.js';
+import { rounded, type Scratch } from './scratch.js';
+
+/** Bytes of work space for PSFs on grids of up to `n`. */
+export function psfWorkBytes(kernels: Kernels, n: number, kernelPx: number): number {
+  const size = Math.min(n, LARGEST_KERNEL_FFT);
+  const fine = rounded(4 * (size + 4));
+  const tables = 8 * 3 * fine; // of each size up to n
+  const pupil = kernels.psfScratchBytes(size, size / 2 - 1) >>> 0;
+  return tables + rounded(pupil) + rounded(4 * (size + 4) ** 2) + rounded(4 * kernelPx ** 2) + 8 * fine;
+}
+
+/** What the kernels need to know of one grid size. */
+interface GridTables {
+  ones: number;
+  columnOffsets: number;
+  rowOfPosition: number;
+}
+
+export class SimdKernelMaker implements KernelMaking {
+  readonly #kernels: Kernels;
+  readonly #scratch: Scratch;
+  readonly #sampling: KernelSampling;
+  readonly #window: FineWindow;
+  /** Side of the window, a multiple of four. */
+  readonly #side: number;
+  readonly #taps: number;
+  readonly #tapCount: number;
+  readonly #lines: number;
+  readonly #intensity: number;
+  readonly #sum: { address: number; values: Float32Array };
+  readonly #request: number;
+  readonly #work: number;
+  readonly #largestGrid: number;
+  readonly #tables = new Map<number, GridTables>();
+  readonly #areas = new Map<string, number>();
+  /** For grids that the kernels do not know. */
+  #reference?: KernelMaker;
+
+  /** @param n the largest grid that is expected; PSFs that need a larger one are computed in float64 */
+  constructor(kernels: Kernels, scratch: Scratch, sampling: KernelSampling, n: number) {
+    const { kernelPx } = sampling;
+    this.#kernels = kernels;
+    this.#scratch = scratch;
+    this.#sampling = sampling;
+    this.#window = fineWindow(sampling);
+    const { box, perPixel } = this.#window;
+    this.#tapCount = 4 * Math.ceil(box.taps.length / 4);
+    this.#side = 4 * Math.ceil(((kernelPx - 1) * perPixel + this.#tapCount) / 4);
+    this.#largestGrid = Math.min(n, LARGEST_KERNEL_FFT);
+    if (this.#window.side > this.#largestGrid) throw new RangeError('the window is larger than the grids');
+    const taps = scratch.floats(this.#tapCount);
+    taps.values.fill(0);
+    taps.values.set(box.taps);
+    this.#taps = taps.address;
+    this.#lines = scratch.floats(this.#side).address;
+    this.#intensity = scratch.floats(this.#side ** 2).address;
+    this.#sum = scratch.floats(kernelPx ** 2);
+    this.#request = scratch.allocate(PSF_REQUEST_BYTES);
+    this.#work = scratch.allocate(
+      kernels.psfScratchBytes(this.#largestGrid, this.#largestGrid / 2 - 1) >>> 0,
+    );
+  }
+
+  bandKernel(lines: readonly WavefrontLine[], out: Float32Array | Float64Array): void {
+    const sizes = lines.map((line) => gridSize(this.#window, line, this.#sampling.fNumber));
+    // the taps are filled up to a multiple of four with zeros, which may reach past a grid that just holds the window
+    if (Math.max(...sizes) > this.#largestGrid) {
+      this.#reference ??= new KernelMaker(this.#sampling);
+      this.#reference.bandKernel(lines, out);
+      return;
+    }
+    this.#sum.values.fill(0);
+    for (const [at, line] of lines.entries()) this.#addLine(line, sizes[at]);
+    normalise(this.#sum.values, out);
+  }
+
+  #addLine({ nm, weight, wavefront }: WavefrontLine, n: number): void {
+    const { fNumber, kernelPx } = this.#sampling;
+    const radius = pupilDiameterSamples(n, this.#window.stepUm, nm, fNumber) / 2;
+    const half = pupilReach(n, radius);
+    writePsfRequest(this.#scratch.memory, this.#request, {
+      ...wavefront,
+      ...this.#tablesFor(n),
+      n,
+      half,
+      radius,
+      scratch: this.#work,
+      side: this.#side,
+      out: this.#intensity,
+    });
+    this.#kernels.psfIntensity(this.#request);
+    const scale = weight / (this.#area(n, radius, half) * n * n);
+    this.#kernels.addPixels(
+      this.#intensity,
+      this.#side,
+      this.#taps,
+      this.#tapCount,
+      this.#window.perPixel,
+      kernelPx,
+      scale,
+      this.#lines,
+      this.#sum.address,
+    );
+  }
+
+  #tablesFor(n: number): GridTables {
+    let tables = this.#tables.get(n);
+    if (tables === undefined) {
+      const side = this.#side;
+      tables = writeTables(this.#kernels, this.#scratch, n, this.#window.start, side);
+      // rows past the grid belong to taps of 0 only, but what stands there is multiplied all the same
+      if (side > n) {
+        new Float32Array(this.#scratch.memory.buffer, this.#intensity + 4 * side * n, side * (side - n)).fill(
+          0,
+        );
+      }
+      this.#tables.set(n, tables);
+    }
+    return tables;
+  }
+
+  #area(n: number, radius: number, half: number): number {
+    const key = `${n} ${radius}`;
+    let area = this.#areas.get(key);
+    if (area === undefined) {
+      area = pupilArea(radius, half);
+      this.#areas.set(key, area);
+    }
+    return area;
+  }
+}
+
+/** Windows larger than this are rare, and would take much room from every worker: they are worked out in float64. */
+const LARGEST_RINGS = 1024;
+
+/** Bytes of work space for `SimdRings`. */
+export function ringsWorkBytes(kernels: Kernels): number {
+  const size = LARGEST_RINGS;
+  const pupil = kernels.psfScratchBytes(size, size / 2 - 1) >>> 0;
+  return rounded(pupil) + rounded(4 * size ** 2) + 5 * 3 * rounded(4 * size) + rounded(PSF_REQUEST_BYTES);
+}
+
+/** Energy of PSFs by square rings, see `energyBySquareRing`, by the compiled kernels. */
+export class SimdRings {
+  readonly #kernels: Kernels;
+  readonly #scratch: Scratch;
+  readonly #request: number;
+  readonly #work: number;
+  readonly #intensity: Float32Array;
+  readonly #tables = new Map<number, GridTables>();
+
+  constructor(kernels: Kernels, scratch: Scratch) {
+    const n = LARGEST_RINGS;
+    this.#kernels = kernels;
+    this.#scratch = scratch;
+    this.#request = scratch.allocate(PSF_REQUEST_BYTES);
+    this.#work = scratch.allocate(kernels.psfScratchBytes(n, n / 2 - 1) >>> 0);
+    this.#intensity = scratch.floats(n ** 2).values;
+  }
+
+  readonly rings: RingMaker = (wavefront, n, stepUm, nm, fNumber) => {
+    if (n > LARGEST_RINGS) return energyBySquareRing(wavefront, n, stepUm, nm, fNumber);
+    const radius = pupilDiameterSamples(n, stepUm, nm, fNumber) / 2;
+    const half = pupilReach(n, radius);
+    const { memory } = this.#scratch;
+    const out = this.#intensity.byteOffset;
+    const tables = this.#tablesFor(n);
+    writePsfRequest(memory, this.#request, {
+      ...wavefront,
+      ...tables,
+      n,
+      half,
+      radius,
+      scratch: this.#work,
+      side: n,
+      out,
+    });
+    this.#kernels.psfIntensity(this.#request);
+    const rings = new Float64Array(n / 2 + 1);
+    const scale = 1 / (pupilArea(radius, half) * n * n);
+    for (let row = 0; row < n; row++) {
+      const y = Math.abs(row - n / 2);
+      for (let column = 0; column < n; column++) {
+        const x = Math.abs(column - n / 2);
+        rings[Math.max(x, y)] += scale * this.#intensity[row * n + column];
+      }
+    }
+    return rings;
+  };
+
+  #tablesFor(n: number): GridTables {
+    let tables = this.#tables.get(n);
+    if (tables === undefined) {
+      tables = writeTables(this.#kernels, this.#scratch, n, -n / 2, n);
+      this.#tables.set(n, tables);
+    }
+    return tables;
+  }
+}
+
+/** Tables for a window of `side` samples of an n-grid that begins `start` samples from the image point. */
+function writeTables(kernels: Kernels, scratch: Scratch, n: number, start: number, side: number): GridTables {
+  const ones = scratch.floats(n);
+  ones.values.fill(1);
+  const columnOffsets = scratch.allocate(4 * side);
+  const rowOfPosition = scratch.allocate(4 * n);
+  const offsets = new Uint32Array(scratch.memory.buffer, columnOffsets, side);
+  const rows = new Int32Array(scratch.memory.buffer, rowOfPosition, n).fill(-1);
+  for (let i = 0; i < side; i++) {
+    const position = kernels.positionOf((start + i) & (n - 1), n);
+    offsets[i] = COMPLEX_ROW_BYTES * position;
+    if (i < n) rows[position] = i;
+  }
+  return { ones: ones.address, columnOffsets, rowOfPosition };
+}
