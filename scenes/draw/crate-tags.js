@@ -120,7 +120,7 @@ function tag(x, y, says, labels) {
     text(matrixText, { x: right - 26, y: y + 168, capHeight: 10, weight: 0.14, ink: INK, anchor: 'end' }),
 
     text(`GRADE ${grade}`, { x: x + 28, y: bottom - 46, capHeight: 18, weight: 0.16, ink: INK }),
-    text('KEEP AT 2-4 . STACK 5 HIGH', { x: x + 28, y: bottom - 15, capHeight: 8, weight: 0.15, ink: INK }),
+    text('KEEP AT 2-4 C . STACK 5 HIGH', { x: x + 28, y: bottom - 15, capHeight: 8, weight: 0.15, ink: INK }),
     text(barText, { x: right - 30, y: bottom - 13, capHeight: 10, weight: 0.14, ink: INK, anchor: 'end' }),
   ].join('');
 }
