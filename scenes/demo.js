@@ -47,7 +47,7 @@ say(`Done in ${((performance.now() - begin) / 1000).toFixed(0)} s. Open these, a
       the same panel 30 times: bars on the radius and bars across it blur by different amounts (astigmatism)
 
 The ideal scenes are in ${shown(join(OUT, 'scenes'))}; what the rigs are made of is in ${join(shown(HALL), '*.rig.yaml')}.
-Stop the lens down and see the corners come back:
+Stop the lens down and see the corners sharpen:
 
   node ${shown(PROGRAM)} render ${shown(TAGS.scene)} --rig ${shown(TAGS.rig)} --f-number 5.6 --out ${shown(join(OUT, 'pictures', 'crate-tags-f5.6.png'))}`);
 
