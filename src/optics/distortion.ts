@@ -23,8 +23,8 @@ export class DistortionMap {
    * NaN past the radius where the map folds. */
   ideal(distortedMm: number): number {
     const { a, c } = this;
-    if (c === 0) return distortedMm / a;
     const scale = 2 * Math.sqrt(a / (3 * Math.abs(c)));
+    if (scale === Number.POSITIVE_INFINITY) return distortedMm / a; // c is 0, or so small that it might as well be
     const ratio = (3 * distortedMm) / (a * scale);
     return c > 0 ? scale * Math.sinh(Math.asinh(ratio) / 3) : scale * Math.sin(Math.asin(ratio) / 3);
   }
