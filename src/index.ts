@@ -4,6 +4,7 @@ export { loadCameraPart, loadLensPart, loadRig, parseRig, type RigOverrides } fr
 export { resultData } from './files/result-data.js';
 export type { Raster } from './imaging/raster.js';
 export { type RenderOptions, type RenderRecord, type RenderResult, render } from './jobs/render.js';
+export { Renderer } from './jobs/renderer.js';
 export { type StartOptions, type StartRecord, start } from './jobs/start.js';
 export { type ZonesOptions, type ZonesReport, zones } from './jobs/zones.js';
 export type {

@@ -89,6 +89,7 @@ export function readRigValues(values: OptionValues, texts: RigTexts): RigValues 
 /** Number of threads asked for, by default one a core. */
 export function readThreads(values: OptionValues, texts: CommonTexts): number {
   return (
-    values.number('--threads', texts.threads, { min: 1, max: 256, integer: true }) ?? availableParallelism()
+    values.number('--threads', texts.threads, { min: 1, max: 64, integer: true }) ??
+    Math.min(64, availableParallelism())
   );
 }

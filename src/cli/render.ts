@@ -26,6 +26,7 @@ interface RenderTexts extends RigTexts, CommonTexts {
   tolerance: string;
   kernelTolerance: string;
   seed: string;
+  engine: string;
 }
 
 export function renderCommand(): Command {
@@ -92,6 +93,15 @@ export function renderCommand(): Command {
         '1',
       ),
     );
+  command.addOption(
+    grouped(
+      GROUP.running,
+      '--engine <name>',
+      'what computes: the compiled kernels, or plain float64 to hold them against, slower by far',
+    )
+      .choices(['simd', 'reference'])
+      .default('simd'),
+  );
   for (const option of commonOptions('the record')) command.addOption(option);
   return command
     .addHelpText(
@@ -117,6 +127,7 @@ export function renderCommand(): Command {
           max: 1,
         }),
         seed: values.number('--seed', texts.seed, { min: 0, integer: true }),
+        engine: texts.engine as 'simd' | 'reference',
         threads: readThreads(values, texts),
       };
       refuseNoPicture(values, texts);

@@ -13,11 +13,11 @@ export interface FormedImage {
   accuracy: {
     blendBound: number;
     energyOutsideKernel: number;
-    /** Tiles in x and y, of the band that needs the most. */
+    /** Tiles in x and y of the band that needs the most. */
     cells: [number, number];
     kernelPx: number;
   };
-  seconds: { psf: number; warp: number; blur: number };
+  seconds: { warp: number; blur: number };
 }
 
 /** Stages that a watcher hears of. */
@@ -50,69 +50,83 @@ export function refuseUnformable(rig: Rig, oversample: number): void {
   }
 }
 
+/** Kernels of every band, in the order of the camera's bands. They lie in the crew's arena where its stack stood.
+ * @throws {InputError} a wavefront that cannot be sampled */
+export async function prepareBands(
+  crew: Crew,
+  rig: Rig,
+  oversample: number,
+  tolerances: BlurTolerances,
+  watch: ImageWatch = {},
+): Promise<BandKernels[]> {
+  const bands: BandKernels[] = [];
+  let earlier: BandKernels | undefined;
+  for (const bandIndex of shortestFirst(rig)) {
+    const setup: BandSetup = { rig, bandIndex, oversample };
+    earlier = await prepareKernels(crew, setup, tolerances, stageWatch('psf', watch), earlier);
+    bands[bandIndex] = earlier;
+  }
+  return bands;
+}
+
 /** Form the picture.
  * @param scene one plane a band in the crew's arena, oversample times the camera's pixels on each side; not changed
+ * @param bands kernels as `prepareBands` made them
  * @returns planes that live in the crew's arena, below what the caller reserves next */
 export async function formImage(
   crew: Crew,
   rig: Rig,
   scene: readonly Float32Array[],
   oversample: number,
-  tolerances: BlurTolerances,
+  bands: readonly BandKernels[],
   watch: ImageWatch = {},
 ): Promise<FormedImage> {
   const { arena } = crew;
   const [width, height] = rig.camera.pixels;
   const samples = width * height * oversample ** 2;
+  const isFine = oversample > 1;
   const planes = rig.camera.bands.map(() =>
     arena.floats(arena.allocateFloats(width * height), width * height),
   );
-  const seconds = { psf: 0, warp: 0, blur: 0 };
-  const timed = async <T>(stage: ImageStage, work: (watch: JobWatch) => Promise<T>): Promise<T> => {
-    const start = performance.now();
-    const onProgress =
-      watch.onProgress && ((done: number, total: number) => watch.onProgress?.(stage, done, total));
-    const result = await work({ signal: watch.signal, onProgress });
-    seconds[stage] += (performance.now() - start) / 1000;
-    return result;
-  };
-  let worst: BandKernels | undefined;
-  let earlier: BandKernels | undefined;
-  const accuracy = { blendBound: 0, energyOutsideKernel: 0 };
-  for (const bandIndex of shortestFirst(rig)) {
-    const mark = arena.mark();
+  const mark = arena.mark();
+  const warpedAt = arena.allocateFloats(samples);
+  const flatAt = arena.allocateFloats(samples);
+  const fineAt = isFine ? arena.allocateFloats(samples) : 0;
+  const seconds = { warp: 0, blur: 0 };
+  for (const [bandIndex, kernels] of bands.entries()) {
     const setup: BandSetup = { rig, bandIndex, oversample };
-    const kernels = await timed('psf', (jobWatch) =>
-      prepareKernels(crew, setup, tolerances, jobWatch, earlier),
+    const start = performance.now();
+    const count = Math.ceil((height * oversample) / ROWS_PER_TASK);
+    const sceneAt = scene[bandIndex].byteOffset;
+    await crew.run(
+      { kind: 'warp', setup, sceneAt, outAt: warpedAt, rowsPerTask: ROWS_PER_TASK, count },
+      stageWatch('warp', watch),
     );
-    const warpedAt = arena.allocateFloats(samples);
-    const isFine = oversample > 1;
-    const blurredAt = isFine ? arena.allocateFloats(samples) : planes[bandIndex].byteOffset;
-    const flatAt = arena.allocateFloats(samples);
-    await timed('warp', async (jobWatch) => {
-      const count = Math.ceil((height * oversample) / ROWS_PER_TASK);
-      const sceneAt = scene[bandIndex].byteOffset;
-      await crew.run(
-        { kind: 'warp', setup, sceneAt, outAt: warpedAt, rowsPerTask: ROWS_PER_TASK, count },
-        jobWatch,
-      );
-    });
-    await timed('blur', async (jobWatch) => {
-      await blurPlane(crew, kernels, warpedAt, blurredAt, flatAt, jobWatch);
-      if (isFine) takePixels(arena.floats(blurredAt, samples), width, height, oversample, planes[bandIndex]);
-    });
-    accuracy.blendBound = Math.max(accuracy.blendBound, kernels.blendBound);
-    accuracy.energyOutsideKernel = Math.max(accuracy.energyOutsideKernel, kernels.energyOutsideKernel);
-    if (worst === undefined || kernels.grid.tilesX > worst.grid.tilesX) worst = kernels;
-    earlier = kernels;
-    arena.release(mark);
+    const warped = performance.now();
+    const blurredAt = isFine ? fineAt : planes[bandIndex].byteOffset;
+    await blurPlane(crew, kernels, warpedAt, blurredAt, flatAt, stageWatch('blur', watch));
+    if (isFine) takePixels(arena.floats(blurredAt, samples), width, height, oversample, planes[bandIndex]);
+    seconds.warp += (warped - start) / 1000;
+    seconds.blur += (performance.now() - warped) / 1000;
   }
-  const grid = (worst as BandKernels).grid;
+  arena.release(mark);
+  return { planes, accuracy: accuracyOf(bands), seconds };
+}
+
+/** The figures of the band that is the worst in each. */
+function accuracyOf(bands: readonly BandKernels[]): FormedImage['accuracy'] {
+  const worst = (figure: (band: BandKernels) => number) => Math.max(...bands.map(figure));
+  const { grid } = bands.reduce((most, band) => (band.grid.tilesX > most.grid.tilesX ? band : most));
   return {
-    planes,
-    accuracy: { ...accuracy, cells: [grid.tilesX, grid.tilesY], kernelPx: grid.kernelPx },
-    seconds,
+    blendBound: worst(({ blendBound }) => blendBound),
+    energyOutsideKernel: worst(({ energyOutsideKernel }) => energyOutsideKernel),
+    cells: [grid.tilesX, grid.tilesY],
+    kernelPx: worst((band) => band.grid.kernelPx),
   };
+}
+
+function stageWatch(stage: ImageStage, { signal, onProgress }: ImageWatch): JobWatch {
+  return { signal, onProgress: onProgress && ((done, total) => onProgress(stage, done, total)) };
 }
 
 /** Bands with the shortest wavelength first: PSFs change the fastest there, so the grid that serves it serves the others. */

@@ -10,8 +10,8 @@ export interface ReadOptions {
   /** Take the samples as linear light, value / full scale, as they are: no transfer curve and no colour
    * profile. Default: false. */
   sceneLinear?: boolean;
-  /** Where the planes are to lie; default: shared memory of their own. */
-  allocate?: AllocatePlanes;
+  /** Where the planes are to lie, asked when the file is decoded; default: shared memory of their own. */
+  allocate?: (...size: Parameters<AllocatePlanes>) => Float32Array[] | Promise<Float32Array[]>;
 }
 
 export interface Scene {
@@ -42,7 +42,7 @@ export async function readScene(path: string, options: ReadOptions = {}): Promis
   const { samples, width, height, stride } = await decode(path, head, decoding);
   const channels = decoding.tables.length as 1 | 3;
   const allocate = options.allocate ?? sharedPlanes;
-  const planes = allocate(width, height, channels);
+  const planes = await allocate(width, height, channels);
   for (let channel = 0; channel < channels; channel++) {
     takeChannel(planes[channel], samples, channel, stride, decoding.tables[channel]);
   }

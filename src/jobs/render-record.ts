@@ -1,0 +1,69 @@
+/** How a picture was made. */
+import type { RawLevels } from '../camera/converter.js';
+import type { FormedImage } from '../imaging/form-image.js';
+import type { Raster } from '../imaging/raster.js';
+import { colourWarnings, fieldWarning } from '../optics/limits.js';
+import type { Rig } from '../optics/rig.js';
+import type { Settings } from './render-options.js';
+
+export interface RenderRecord {
+  foreglass: string;
+  rig: Rig;
+  seed: number;
+  cameraSeed: number;
+  threads: number;
+  oversample: number;
+  image: { width: number; height: number; bands: string[] };
+  accuracy: { blendBound: number; energyOutsideKernel: number; cells: [number, number]; kernelPx: number };
+  /** What the raw numbers mean, where `raw` was asked for. */
+  rawLevels?: { blackLevel: number; whiteLevel: number; sceneWhite: number; gainDnPerE: number };
+  /** `total` leaves out decode and encode. */
+  seconds: {
+    decode: number;
+    psf: number;
+    warp: number;
+    blur: number;
+    camera: number;
+    encode: number;
+    total: number;
+  };
+  warnings: string[];
+}
+
+export interface RenderResult {
+  record: RenderRecord;
+  /** The recorded picture in linear light, one plane a band; not clipped where there is noise. */
+  picture: Raster;
+}
+
+/** What the raw numbers of a picture mean, for its record. */
+export function recordedLevels(levels: RawLevels): RenderRecord['rawLevels'] {
+  return {
+    blackLevel: levels.blackLevelDn,
+    whiteLevel: levels.whiteLevelDn,
+    sceneWhite: levels.sceneWhiteDn,
+    gainDnPerE: levels.gainDnPerE,
+  };
+}
+
+/** What the user must be told of a picture. */
+export function warningsFor({ rig, tolerances }: Settings, accuracy: FormedImage['accuracy']): string[] {
+  const [width, height] = rig.camera.pixels;
+  const [axisX, axisY] = rig.mount.axisPx;
+  const pitchMm = rig.camera.pixelPitchUm / 1000;
+  const cornerMm =
+    pitchMm * Math.hypot(Math.max(axisX, width - 1 - axisX), Math.max(axisY, height - 1 - axisY));
+  const warnings = [...fieldWarning(rig, cornerMm), ...colourWarnings(rig)];
+  if (accuracy.energyOutsideKernel > tolerances.kernel) {
+    warnings.push(
+      `${(100 * accuracy.energyOutsideKernel).toFixed(2)} % of a PSF's light falls outside the largest kernel ` +
+        `(${accuracy.kernelPx} pixels) and is spread evenly by normalising: wide veils look weaker than they are.`,
+    );
+  }
+  if (accuracy.blendBound > tolerances.blend) {
+    warnings.push(
+      `blending PSFs may be wrong by ${accuracy.blendBound.toPrecision(2)} of full scale: no grid of cells meets --tolerance.`,
+    );
+  }
+  return warnings;
+}
