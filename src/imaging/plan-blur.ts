@@ -85,11 +85,10 @@ export async function prepareKernels(
 
 /** Refuse, in no time, a rig whose PSFs cannot be computed somewhere on its sensor. */
 export function refuseUnsampled(setup: BandSetup): void {
-  const { pitchUm, shortestNm, fNumber } = kernelSampling(setup.rig, setup.oversample, 1);
-  const stepUm = pitchUm / samplesPerPixel(pitchUm, shortestNm, fNumber);
+  const { pitchUm } = kernelSampling(setup.rig, setup.oversample, 1);
   const frame = frameOf(setup);
   const points = samplePlaces(setup).map(([x, y]) => idealPoint(frame, x, y));
-  refuseTooSteep(setup.rig, points, stepUm);
+  refuseTooSteep(setup.rig, points, pitchUm);
 }
 
 const FARTHER_QUARTERS: [number, number][] = [

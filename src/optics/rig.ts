@@ -100,6 +100,7 @@ export interface Rig {
 }
 
 export const COEFFICIENTS = ['W040', 'W131', 'W222', 'W220', 'W311', 'W020', 'W111'] as const;
+export type Coefficient = (typeof COEFFICIENTS)[number];
 
 /** The pitch of a pixel in mm. */
 export function pixelPitchMm(camera: Camera): number {

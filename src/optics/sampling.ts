@@ -1,8 +1,9 @@
 /** How finely a pupil and its PSF must be sampled, and the refusal where no affordable sampling is enough. */
 import { InputError } from '../errors.js';
 import { nextPowerOfTwo } from '../numeric/fft.js';
-import type { Rig } from './rig.js';
-import { type LocalWavefront, wavefrontAt } from './wavefront.js';
+import { axialColourUm } from './colour.js';
+import type { Coefficient, Rig } from './rig.js';
+import { defocusWaves, type LocalWavefront, tiltShiftUm, wavefrontAt } from './wavefront.js';
 
 /** The largest pupil grid. A step beyond it costs a second and 300 MB for one PSF. */
 export const LARGEST_GRID = 4096;
@@ -37,25 +38,28 @@ export function pupilDiameterSamples(n: number, stepUm: number, nm: number, fNum
   return (n * stepUm) / ((nm / 1000) * fNumber);
 }
 
-/** The smallest grid on which the phase moves by less than pi/2 from one pupil sample to the next: 2 pi |grad W| 2/d < pi/2. */
+/** The smallest grid on which the phase moves by less than pi/2 from one pupil sample to the next, 2 pi |grad W| 2/d < pi/2, and on which
+ * the pupil has the fewest samples that its rim needs, as far as the largest grid gives them. */
 export function gridForPhase(wavefront: LocalWavefront, stepUm: number, nm: number, fNumber: number): number {
-  const diameter = Math.max(LEAST_DIAMETER, 8 * largestSlope(wavefront));
-  return nextPowerOfTwo((diameter * (nm / 1000) * fNumber) / stepUm);
+  const gridOf = (diameter: number) => nextPowerOfTwo((diameter * (nm / 1000) * fNumber) / stepUm);
+  return Math.max(gridOf(8 * largestSlope(wavefront)), Math.min(LARGEST_GRID, gridOf(LEAST_DIAMETER)));
 }
 
 /** Refuse a rig whose wavefront is too steep to be sampled anywhere among the given image points.
  * @param pointsMm ideal image points to look at
- * @param stepUm   image step dx of the PSF's fine grid
- * @throws {InputError} naming the coefficient that is the steepest, its size and a stop that would fit
+ * @param pitchUm  distance of the picture's samples: the fine grid of the PSF follows from it at every stop
+ * @throws {InputError} naming what is the steepest, its size and the lowest stop that would fit
  */
 export function refuseTooSteep(
   rig: Rig,
   pointsMm: readonly (readonly [xMm: number, yMm: number])[],
-  stepUm: number,
+  pitchUm: number,
 ): void {
   const lines = rig.camera.bands.flatMap((band) => band.lines.map(({ nm }) => ({ nm, band })));
+  const shortestNm = Math.min(...lines.map(({ nm }) => nm));
   const fits = (fNumber: number) => {
     const stopped = { ...rig, mount: { ...rig.mount, fNumber } };
+    const stepUm = pitchUm / samplesPerPixel(pitchUm, shortestNm, fNumber);
     return lines.every(({ nm, band }) =>
       pointsMm.every(([xMm, yMm]) => {
         const wavefront = wavefrontAt(stopped, xMm, yMm, nm, band);
@@ -65,41 +69,73 @@ export function refuseTooSteep(
   };
   const { fNumber } = rig.mount;
   if (fits(fNumber)) return;
-  let enough = fNumber;
-  while (enough < 1000 && !fits(enough)) enough *= 1.02;
-  const { name, waves } = steepestCoefficient(rig, pointsMm);
+  const stop = lowestStop(fNumber, fits);
+  const { key, name, found, waves } = steepestPart(rig, pointsMm, shortestNm);
+  const lower = `Lower ${name}${key.startsWith('lens.waves') ? ', move the sensor nearer to the focus' : ''}`;
   throw new InputError({
-    key: `lens.waves.${name}`,
-    message: `the wavefront at f/${fNumber} is too steep to be sampled: ${name} alone is ${Math.abs(waves).toPrecision(3)} waves at its worst field point`,
-    found: `${rig.lens.waves[name as keyof typeof rig.lens.waves] ?? waves} waves at f/${rig.lens.fNumber}`,
+    key,
+    message: `the wavefront at f/${fNumber} is too steep to be sampled: ${name} alone is ${waves.toPrecision(3)} waves at its worst field point`,
+    found,
     allowed: `what fits a pupil grid of ${LARGEST_GRID} samples`,
-    advice:
-      enough < 1000
-        ? `Lower ${name}, move the sensor nearer to the focus, or stop down to f/${(Math.ceil(enough * 10) / 10).toFixed(1)} or more.`
-        : `Lower ${name} or move the sensor nearer to the focus.`,
+    advice: stop === undefined ? `${lower}.` : `${lower}, or stop down to f/${stop} or more.`,
   });
 }
 
-/** The term with the largest slope of its own over the given field points, at the stop in use. */
-function steepestCoefficient(
+/** The lowest f-number that fits, in tenths. Past f/100 none is looked for: no lens of a camera is closed that far. */
+function lowestStop(fNumber: number, fits: (fNumber: number) => boolean): number | undefined {
+  for (let tenths = Math.floor(10 * fNumber) + 1; tenths <= 1000; tenths++) {
+    if (fits(tenths / 10)) return tenths / 10;
+  }
+  return undefined;
+}
+
+/** A part of the wavefront that one key of the rig is to blame for. */
+interface WavefrontPart {
+  key: string;
+  name: string;
+  /** The key's own value. */
+  found: string;
+  /** Its size at the stop in use and the shortest wavelength, without sign. */
+  waves: number;
+}
+
+/** The part with the largest slope of its own over the given field points. */
+function steepestPart(
   rig: Rig,
   pointsMm: readonly (readonly [number, number])[],
-): { name: string; waves: number } {
-  const shortestNm = Math.min(...rig.camera.bands.flatMap((band) => band.lines.map(({ nm }) => nm)));
-  let steepest = { name: 'W020', waves: 0, slope: 0 };
+  shortestNm: number,
+): WavefrontPart {
+  const { lens, mount } = rig;
+  const still = { ...rig, mount: { ...mount, sensorShiftUm: 0, sensorTiltDeg: [0, 0] as const } };
+  const focused = { ...still, lens: { ...lens, axialUm: [] } };
+  let steepest = { slope: -1, part: { key: '', name: '', found: '', waves: 0 } };
+  const look = (key: string, name: string, found: string, waves: number, steepness: number) => {
+    const slope = steepness * Math.abs(waves);
+    if (slope > steepest.slope) steepest = { slope, part: { key, name, found, waves: Math.abs(waves) } };
+  };
+  const coefficient = (name: Coefficient, waves: number, steepness: number) =>
+    look(`lens.waves.${name}`, name, `${lens.waves[name]} waves at f/${lens.fNumber}`, waves, steepness);
   for (const [xMm, yMm] of pointsMm) {
-    const w = wavefrontAt(rig, xMm, yMm, shortestNm);
-    const h = Math.hypot(xMm, yMm) / rig.lens.fullFieldMm;
-    const q = rig.lens.fNumber / rig.mount.fNumber;
-    const curvature = (rig.lens.wavelengthNm / shortestNm) * rig.lens.waves.W220 * h ** 2 * q ** 2;
-    const terms = [
-      { name: 'W040', waves: w.w40, slope: 4 * Math.abs(w.w40) },
-      { name: 'W131', waves: w.w31, slope: 3 * Math.abs(w.w31) },
-      { name: 'W222', waves: w.w22, slope: 2 * Math.abs(w.w22) },
-      { name: 'W220', waves: curvature, slope: 2 * Math.abs(curvature) },
-      { name: 'W020', waves: w.w20 - curvature, slope: 2 * Math.abs(w.w20 - curvature) },
-    ];
-    for (const term of terms) if (term.slope > steepest.slope) steepest = term;
+    const { w40, w31, w22, w20 } = wavefrontAt(focused, xMm, yMm, shortestNm);
+    const onAxis = wavefrontAt(focused, 0, 0, shortestNm).w20; // all of it W020, the curvature being none there
+    coefficient('W040', w40, 4);
+    coefficient('W131', w31, 3);
+    coefficient('W222', w22, 2);
+    coefficient('W220', w20 - onAxis, 2);
+    coefficient('W020', onAxis, 2);
+    const defocus = (defocusUm: number) => defocusWaves(defocusUm, mount.fNumber, shortestNm / 1000);
+    const [aboutX, aboutY] = mount.sensorTiltDeg;
+    const tilt = defocus(tiltShiftUm(rig, xMm, yMm));
+    look(
+      'mount.sensor_shift_um',
+      'the shift of the sensor',
+      `${mount.sensorShiftUm}`,
+      defocus(mount.sensorShiftUm),
+      2,
+    );
+    look('mount.sensor_tilt_deg', 'the tilt of the sensor', `[${aboutX}, ${aboutY}]`, tilt, 2);
+    const colourUm = axialColourUm(lens, shortestNm);
+    look('lens.colour.axial_um', 'axial colour', `${colourUm} at ${shortestNm} nm`, defocus(colourUm), 2);
   }
-  return steepest;
+  return steepest.part;
 }
