@@ -29,9 +29,11 @@ const FOR_ALL = 'optics/rig';
 
 /** Packages that one folder alone may import. */
 const HOMES: Readonly<Record<string, string>> = {
+  '@observablehq/plot': 'report',
   'cli-progress': 'cli',
   commander: 'cli',
   'fft.js': 'numeric',
+  linkedom: 'report',
   sharp: 'files',
   yaml: 'files',
   zod: 'files',
