@@ -44,8 +44,7 @@ function energyWithin(
   }
 }
 
-/** Half the side, in fine steps, of the square that holds all but `tolerance` of the light. The window looked at is at least twice as
- * large, so that light from outside it, folded back by the sampling, does not count as inside. */
+/** Half the side, in fine steps, of the square that holds all but `tolerance` of the light. */
 export function extentSteps(
   ringsOf: RingMaker,
   rig: Rig,
@@ -55,15 +54,14 @@ export function extentSteps(
   y: number,
   tolerance: number,
 ): number {
-  const radius = (cumulated: Float64Array) => {
-    const at = cumulated.findIndex((share) => share >= 1 - tolerance);
-    return at < 0 ? cumulated.length - 1 : at;
-  };
-  const isEnough = (cumulated: Float64Array) => radius(cumulated) <= cumulated.length / 2;
-  return radius(energyWithin(ringsOf, rig, band, oversample, x, y, isEnough));
+  return radiusHolding(
+    energyWithin(ringsOf, rig, band, oversample, x, y, isWideEnough(tolerance)),
+    tolerance,
+  );
 }
 
-/** Share of the light that falls outside a kernel at a place of the picture, measured as `extentSteps` does. */
+/** Share of the light that falls outside a kernel at a place of the picture, seen in the same window as `extentSteps` does with the same
+ * tolerance: a smaller one would lose more light to the pupil's soft rim, and the two would contradict each other. */
 export function energyOutside(
   ringsOf: RingMaker,
   rig: Rig,
@@ -72,12 +70,33 @@ export function energyOutside(
   x: number,
   y: number,
   kernelPx: number,
+  tolerance: number,
 ): number {
   const reach = (kernelPx * finePerSample(rig, oversample) - 1) / 2; // a ring of radius r reaches r + 1/2 steps out
-  const cumulated = energyWithin(ringsOf, rig, band, oversample, x, y, (sums) => reach <= sums.length / 2);
+  const isEnough = isWideEnough(tolerance);
+  const cumulated = energyWithin(
+    ringsOf,
+    rig,
+    band,
+    oversample,
+    x,
+    y,
+    (sums) => isEnough(sums) && reach <= sums.length / 2,
+  );
   const low = Math.min(cumulated.length - 1, Math.floor(reach));
   const high = Math.min(cumulated.length - 1, low + 1);
   return Math.max(0, 1 - (cumulated[low] + (reach - low) * (cumulated[high] - cumulated[low])));
+}
+
+function radiusHolding(cumulated: Float64Array, tolerance: number): number {
+  const at = cumulated.findIndex((share) => share >= 1 - tolerance);
+  return at < 0 ? cumulated.length - 1 : at;
+}
+
+/** Whether a window is at least twice as large as the square that holds the light, so that light from outside the window, folded back by
+ * the sampling, does not count as inside. */
+function isWideEnough(tolerance: number): (cumulated: Float64Array) => boolean {
+  return (cumulated) => radiusHolding(cumulated, tolerance) <= cumulated.length / 2;
 }
 
 /** Side of the kernel for an extent: odd for odd oversampling, even for even (so that its samples lie on pixels' middles), within

@@ -148,7 +148,7 @@ async function chooseKernel(
   const extent = largest(extents);
   const kernelPx = kernelSide(setup.rig, setup.oversample, extent);
   const widest = places.filter((_, at) => extents[at] === extent); // where the most falls outside
-  const outside = await crew.run({ kind: 'outside', setup, places: widest, kernelPx }, { signal });
+  const outside = await crew.run({ kind: 'outside', setup, places: widest, kernelPx, tolerance }, { signal });
   return { kernelPx, energyOutsideKernel: largest(outside) };
 }
 

@@ -44,7 +44,7 @@ export function taskRunner(bench: Bench, job: Job): RunTask {
         const band = rig.camera.bands[bandIndex];
         return job.kind === 'extent'
           ? extentSteps(ringsOf, rig, band, oversample, x, y, job.tolerance)
-          : energyOutside(ringsOf, rig, band, oversample, x, y, job.kernelPx);
+          : energyOutside(ringsOf, rig, band, oversample, x, y, job.kernelPx, job.tolerance);
       };
     }
     case 'spans': {

@@ -19,7 +19,7 @@ export type Job =
   /** Half the side, in fine steps, of the square that holds a PSF's light; a task a place. */
   | { kind: 'extent'; setup: BandSetup; places: [number, number][]; tolerance: number }
   /** Share of the light outside the kernel; a task a place. */
-  | { kind: 'outside'; setup: BandSetup; places: [number, number][]; kernelPx: number }
+  | { kind: 'outside'; setup: BandSetup; places: [number, number][]; kernelPx: number; tolerance: number }
   /** Blending error over single spans, kernels computed on the spot; a task a span. */
   | {
       kind: 'spans';
