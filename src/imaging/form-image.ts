@@ -197,7 +197,7 @@ function takePixels(
 /** The largest barrel W311 whose map still rises up to the corner, all else as in the rig: r' of the fold goes as W311^(-1/2). */
 function largestBarrelWaves(rig: Rig, cornerSensorMm: number): number {
   const oneWave = sensorFrame(
-    { ...rig, lens: { ...rig.lens, waves: { ...rig.lens.waves, W311: 1 } } },
+    { ...rig, lens: { ...rig.lens, waves: { ...rig.lens.waves, W311: 1 }, wavesByWavelength: undefined } },
     rig.camera.bands[0],
     1,
   );

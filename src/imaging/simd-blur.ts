@@ -35,11 +35,16 @@ export function columnCount(grid: BlurGrid, isMirrored: boolean): number {
 export function blurWorkBytes(kernels: Kernels, grid: BlurGrid): number {
   const size = kernelFftSize(grid);
   const nodes = grid.order + 1;
-  const spectra = nodes ** 2 * rounded(kernels.spectrumBytes(size, size) >>> 0);
+  const spectra = nodes * nodeRowsKept(grid) * rounded(kernels.spectrumBytes(size, size) >>> 0);
   const work = rounded(kernels.blurScratchBytes(size, size, nodes, nodes) >>> 0);
   const spectrumWork = rounded(kernels.spectrumScratchBytes(grid.kernelPx, size) >>> 0);
-  const lines = 3 * rounded(4 * nodes * grid.tilePx) + rounded(4 * grid.width) + rounded(4 * nodes ** 2);
+  const lines = 5 * rounded(4 * nodes * grid.tilePx) + rounded(4 * grid.width) + 2 * rounded(4 * nodes ** 2);
   return spectra + work + spectrumWork + lines + 16 * 64;
+}
+
+/** Rows of nodes whose spectra are at hand: those of two tiles, one above the other. */
+function nodeRowsKept({ order }: BlurGrid): number {
+  return 2 * order + 1;
 }
 
 /** The FFT size that the kernels use for a grid. */
@@ -59,15 +64,12 @@ export class SimdBlur {
   readonly #shape: number;
   readonly #first: number;
   readonly #second: number;
-  readonly #weightsX: { address: number; values: Float32Array };
-  readonly #weightsY: { address: number; values: Float32Array };
-  /** Addresses of the spectra at a tile's nodes, row by row. */
-  readonly #list: { address: number; values: Uint32Array };
-  /** Room for the spectra of (order + 1) rows of nodes; row r of the grid lies in place r modulo (order + 1). */
+  readonly #weightsX: Floats;
+  /** What belongs to single tiles, for two of them in turn: tiles of ones are blurred in pairs, one above the other. */
+  readonly #tiles: readonly [TileRoom, TileRoom];
+  /** Room for the spectra of some rows of nodes; row r of the grid lies in place r modulo the number of rows. */
   readonly #spectra: number[][];
   readonly #spectrumWork: number;
-  /** Weights along y for tiles of ones: a tile that is its own mirror image counts by half, since the mirror image is added later. */
-  readonly #onesWeightsY: { address: number; values: Float32Array };
   /** A row of ones. */
   readonly #ones: number;
   readonly #weights: Float64Array;
@@ -85,16 +87,13 @@ export class SimdBlur {
     this.#first = scratch.allocate(BLUR_TILE_BYTES);
     this.#second = scratch.allocate(BLUR_TILE_BYTES);
     this.#weightsX = scratch.floats(side * grid.tilePx);
-    this.#weightsY = scratch.floats(side * grid.tilePx);
+    this.#tiles = [tileRoom(scratch, side, grid.tilePx), tileRoom(scratch, side, grid.tilePx)];
     this.#weights = new Float64Array(side * grid.tilePx);
-    const list = scratch.allocate(4 * side * side);
-    this.#list = { address: list, values: new Uint32Array(scratch.memory.buffer, list, side * side) };
     const spectrumBytes = kernels.spectrumBytes(this.#fftSize, this.#fftSize) >>> 0;
-    this.#spectra = Array.from({ length: side }, () =>
+    this.#spectra = Array.from({ length: nodeRowsKept(grid) }, () =>
       Array.from({ length: side }, () => scratch.allocate(spectrumBytes)),
     );
     this.#spectrumWork = scratch.allocate(kernels.spectrumScratchBytes(grid.kernelPx, this.#fftSize) >>> 0);
-    this.#onesWeightsY = scratch.floats(side * grid.tilePx);
     const ones = scratch.floats(grid.width);
     ones.values.fill(1);
     this.#ones = ones.address;
@@ -113,40 +112,33 @@ export class SimdBlur {
 
   /** Blur a column of tiles from top to bottom, with what mirrors it. */
   blurColumn(tileX: number): void {
-    const { grid } = this.#nodes;
-    const { tilesX, tilesY, tilePx, originX, width } = grid;
+    const { tilesX, tilesY, originX, width } = this.#nodes.grid;
     this.#weigh(tileX, originX, width, this.#weightsX.values);
     const rows = this.#isFolded ? Math.ceil(tilesY / 2) : tilesY;
     const isOwnMirrorX = 2 * tileX === tilesX - 1;
     for (let tileY = 0; tileY < rows; tileY++) {
       const isOwnMirrorY = 2 * tileY === tilesY - 1;
-      this.#weigh(tileY, grid.originY, grid.height, this.#weightsY.values);
-      this.#prepareSpectra(tileX, tileY, tileY === 0 ? 0 : 1);
-      const left = originX + tileX * tilePx;
-      const top = grid.originY + tileY * tilePx;
+      const tile = this.#prepare(tileX, tileY);
       if (!this.#isFolded) {
         // beside a scene's tile a row of ones, seen in every row, takes the imaginary part
-        const ones = { source: this.#ones, sourceStride: 0, target: this.#planes.flatAt };
-        this.#blur(this.#sceneTile(left, top, 0), { ...this.#sceneTile(left, top, 0), ...ones });
+        this.#blur(tile, { ...tile, source: this.#ones, sourceStride: 0, target: this.#planes.flatAt });
         continue;
       }
-      this.#blur(
-        this.#sceneTile(left, top, 0),
-        isOwnMirrorX ? undefined : this.#sceneTile(left, top, MIRROR_X),
+      const mirrors = [0, MIRROR_X, MIRROR_Y, MIRROR_X + MIRROR_Y].filter(
+        (mirror) => !(isOwnMirrorX && mirror & MIRROR_X) && !(isOwnMirrorY && mirror & MIRROR_Y),
       );
-      if (!isOwnMirrorY) {
-        this.#blur(
-          this.#sceneTile(left, top, MIRROR_Y),
-          isOwnMirrorX ? undefined : this.#sceneTile(left, top, MIRROR_X + MIRROR_Y),
-        );
+      for (let at = 0; at < mirrors.length; at += 2) {
+        const second = at + 1 < mirrors.length ? { ...tile, mirror: mirrors[at + 1] } : undefined;
+        this.#blur({ ...tile, mirror: mirrors[at] }, second);
       }
-      const share = (isOwnMirrorX ? 0.5 : 1) * (isOwnMirrorY ? 0.5 : 1);
-      for (let i = 0; i < this.#weights.length; i++) this.#onesWeightsY.values[i] = share * this.#weights[i];
-      const ones = { source: 0, target: this.#planes.flatAt, weightsY: this.#onesWeightsY.address };
-      this.#blur({ ...this.#sceneTile(left, top, 0), ...ones }, undefined);
+      this.#prepareOnes(tileY, isOwnMirrorX, isOwnMirrorY);
+      const ones = this.#onesTile(tile, tileY);
+      if (tileY % 2 === 1) this.#blurOnes(this.#onesTile(this.#tileAt(tileX, tileY - 1), tileY - 1), ones);
+      else if (tileY === rows - 1) this.#blurOnes(ones, undefined);
     }
   }
 
+  /** Blur one tile, or two with the same kernels. */
   #blur(first: Tile, second: Tile | undefined): void {
     const { memory } = this.#scratch;
     writeBlurTile(memory, this.#first, first);
@@ -154,8 +146,25 @@ export class SimdBlur {
     this.#kernels.blurTiles(this.#shape, this.#first, second === undefined ? 0 : this.#second);
   }
 
-  #sceneTile(left: number, top: number, mirror: number): Tile {
-    const { width, height } = this.#nodes.grid;
+  /** Blur one tile of ones, or two with kernels of their own. */
+  #blurOnes(first: Tile, second: Tile | undefined): void {
+    const { memory } = this.#scratch;
+    writeBlurTile(memory, this.#first, first);
+    if (second !== undefined) writeBlurTile(memory, this.#second, second);
+    this.#kernels.blurTiles(this.#shape, this.#first, second === undefined ? 0 : this.#second);
+  }
+
+  /** A tile of the scene, with its weights and spectra in place. */
+  #prepare(tileX: number, tileY: number): Tile {
+    const { originY, height } = this.#nodes.grid;
+    this.#weigh(tileY, originY, height, this.#tiles[tileY % 2].weightsY.values);
+    this.#prepareSpectra(tileX, tileY, tileY === 0 ? 0 : 1);
+    return this.#tileAt(tileX, tileY);
+  }
+
+  #tileAt(tileX: number, tileY: number): Tile {
+    const { width, height, originX, originY, tilePx } = this.#nodes.grid;
+    const room = this.#tiles[tileY % 2];
     return {
       source: this.#planes.sourceAt,
       sourceStride: 4 * width,
@@ -163,12 +172,25 @@ export class SimdBlur {
       targetStride: 4 * width,
       frameWidth: width,
       frameHeight: height,
-      left,
-      top,
-      mirror,
-      weightsY: this.#weightsY.address,
-      spectra: this.#list.address,
+      left: originX + tileX * tilePx,
+      top: originY + tileY * tilePx,
+      mirror: 0,
+      weightsY: room.weightsY.address,
+      spectra: room.list,
     };
+  }
+
+  /** The tile of ones at the same place. */
+  #onesTile(tile: Tile, tileY: number): Tile {
+    const weightsY = this.#tiles[tileY % 2].onesWeightsY.address;
+    return { ...tile, source: 0, target: this.#planes.flatAt, weightsY };
+  }
+
+  /** A tile that is its own mirror image counts by half, since its mirror image is added when the picture is divided. */
+  #prepareOnes(tileY: number, isOwnMirrorX: boolean, isOwnMirrorY: boolean): void {
+    const { weightsY, onesWeightsY } = this.#tiles[tileY % 2];
+    const share = (isOwnMirrorX ? 0.5 : 1) * (isOwnMirrorY ? 0.5 : 1);
+    for (let i = 0; i < weightsY.values.length; i++) onesWeightsY.values[i] = share * weightsY.values[i];
   }
 
   /** Spectra of the tile's nodes: those of the rows that the tile above left behind, and new ones.
@@ -176,9 +198,10 @@ export class SimdBlur {
   #prepareSpectra(tileX: number, tileY: number, firstRow: number): void {
     const { order, kernelPx } = this.#nodes.grid;
     const side = order + 1;
+    const list = new Uint32Array(this.#scratch.memory.buffer, this.#tiles[tileY % 2].list, side * side);
     for (let j = 0; j <= order; j++) {
       const nodeY = tileY * order + j;
-      const room = this.#spectra[nodeY % side];
+      const room = this.#spectra[nodeY % this.#spectra.length];
       for (let i = 0; i <= order; i++) {
         if (j >= firstRow) {
           const { address, flipX, flipY } = this.#nodes.place(tileX * order + i, nodeY);
@@ -193,7 +216,7 @@ export class SimdBlur {
             room[i],
           );
         }
-        this.#list.values[j * side + i] = room[i];
+        list[j * side + i] = room[i];
       }
     }
   }
@@ -206,3 +229,20 @@ export class SimdBlur {
 }
 
 type Tile = Parameters<typeof writeBlurTile>[2];
+type Floats = ReturnType<Scratch['floats']>;
+
+/** Memory for what belongs to one tile. */
+interface TileRoom {
+  weightsY: Floats;
+  onesWeightsY: Floats;
+  /** Address of the list of its nodes' spectra, row by row. */
+  list: number;
+}
+
+function tileRoom(scratch: Scratch, side: number, tilePx: number): TileRoom {
+  return {
+    weightsY: scratch.floats(side * tilePx),
+    onesWeightsY: scratch.floats(side * tilePx),
+    list: scratch.allocate(4 * side * side),
+  };
+}

@@ -21,11 +21,16 @@ import { rounded, type Scratch } from './scratch.js';
 /** Bytes of work space for PSFs on grids of up to `n`. */
 export function psfWorkBytes(kernels: Kernels, n: number, kernelPx: number): number {
   const size = Math.min(n, LARGEST_KERNEL_FFT);
-  const fine = rounded(4 * (size + 4));
+  const fine = rounded(4 * (size + MOST_WRAPPED));
   const tables = 8 * 3 * fine; // of each size up to n
   const pupil = kernels.psfScratchBytes(size, size / 2 - 1) >>> 0;
-  return tables + rounded(pupil) + rounded(4 * (size + 4) ** 2) + rounded(4 * kernelPx ** 2) + 8 * fine;
+  return (
+    tables + rounded(pupil) + rounded(4 * (size + MOST_WRAPPED) ** 2) + rounded(4 * kernelPx ** 2) + 8 * fine
+  );
 }
+
+/** Fine samples by which a window may be larger than its grid: the taps of a pixel box beyond the pixel. */
+const MOST_WRAPPED = 32;
 
 /** What the kernels need to know of one grid size. */
 interface GridTables {
@@ -65,7 +70,8 @@ export class SimdKernelMaker implements KernelMaking {
     this.#tapCount = 4 * Math.ceil(box.taps.length / 4);
     this.#side = 4 * Math.ceil(((kernelPx - 1) * perPixel + this.#tapCount) / 4);
     this.#largestGrid = Math.min(n, LARGEST_KERNEL_FFT);
-    if (this.#window.side > this.#largestGrid) throw new RangeError('the window is larger than the grids');
+    if (this.#side > this.#largestGrid + MOST_WRAPPED)
+      throw new RangeError('the window is larger than the grids');
     const taps = scratch.floats(this.#tapCount);
     taps.values.fill(0);
     taps.values.set(box.taps);
@@ -81,7 +87,6 @@ export class SimdKernelMaker implements KernelMaking {
 
   bandKernel(lines: readonly WavefrontLine[], out: Float32Array | Float64Array): void {
     const sizes = lines.map((line) => gridSize(this.#window, line, this.#sampling.fNumber));
-    // the taps are filled up to a multiple of four with zeros, which may reach past a grid that just holds the window
     if (Math.max(...sizes) > this.#largestGrid) {
       this.#reference ??= new KernelMaker(this.#sampling);
       this.#reference.bandKernel(lines, out);
@@ -107,6 +112,7 @@ export class SimdKernelMaker implements KernelMaking {
       out: this.#intensity,
     });
     this.#kernels.psfIntensity(this.#request);
+    this.#wrapRows(n);
     const scale = weight / (this.#area(n, radius, half) * n * n);
     this.#kernels.addPixels(
       this.#intensity,
@@ -121,17 +127,19 @@ export class SimdKernelMaker implements KernelMaking {
     );
   }
 
+  /** A window larger than its grid sees the first rows again. */
+  #wrapRows(n: number): void {
+    const side = this.#side;
+    if (side <= n) return;
+    const intensity = new Float32Array(this.#scratch.memory.buffer, this.#intensity, side * side);
+    intensity.copyWithin(n * side, 0, (side - n) * side);
+  }
+
   #tablesFor(n: number): GridTables {
     let tables = this.#tables.get(n);
     if (tables === undefined) {
       const side = this.#side;
       tables = writeTables(this.#kernels, this.#scratch, n, this.#window.start, side);
-      // rows past the grid belong to taps of 0 only, but what stands there is multiplied all the same
-      if (side > n) {
-        new Float32Array(this.#scratch.memory.buffer, this.#intensity + 4 * side * n, side * (side - n)).fill(
-          0,
-        );
-      }
       this.#tables.set(n, tables);
     }
     return tables;

@@ -6,6 +6,9 @@ import { cornerMm, type SensorFrame } from './sensor-frame.js';
 /** Steps of the radial tables. The curves are smooth in r^2: linear interpolation is right to 1e-7 px at 5 % distortion. */
 export const TABLE_STEPS = 8192;
 
+/** Samples past the farthest corner that the tables still cover. */
+const LOOK_AHEAD = 16;
+
 /** What happens to light by its distance from the axis, tabulated over the square of the landed radius in samples. */
 export interface RadialTables {
   /** Table steps per squared sample. */
@@ -20,12 +23,13 @@ export interface RadialTables {
 
 /** Tables for one band's frame; the last entry lies past the farthest corner. */
 export function radialTables(lens: Lens, frame: SensorFrame): RadialTables {
-  const cornerSamples = cornerMm(frame) / frame.pitchMm;
+  // the kernels look a few samples ahead of the corner
+  const cornerSamples = cornerMm(frame) / frame.pitchMm + LOOK_AHEAD;
   const stepsPerSquare = (TABLE_STEPS - 2) / Math.max(1, cornerSamples ** 2);
   const scale = new Float64Array(TABLE_STEPS);
   const illumination = new Float64Array(TABLE_STEPS);
   const illuminationAt = relativeIllumination(lens);
-  const lastMm = cornerMm(frame);
+  const lastMm = Math.min(cornerMm(frame) + LOOK_AHEAD * frame.pitchMm, 0.999999 * frame.map.foldMm);
   for (let i = 0; i < TABLE_STEPS; i++) {
     const landedMm = Math.min(lastMm, Math.sqrt(i / stepsPerSquare) * frame.pitchMm);
     const idealMm = frame.map.ideal(landedMm);

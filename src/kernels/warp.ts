@@ -4,7 +4,7 @@
  * of them, are polynomials in f, worked out as four lanes:
  *   -f^3/2 + f^2 - f/2,  3 f^3/2 - 5 f^2/2 + 1,  -3 f^3/2 + 2 f^2 + f/2,  f^3/2 - f^2/2
  */
-import { add, mul, splat } from './vector';
+import { add, lowHalves, mul, splat } from './vector';
 
 /** What a warp works on; fields in this order. */
 @unmanaged
@@ -24,22 +24,161 @@ export class WarpRequest {
   out: usize;
 }
 
-/** Warp the rows from rowStart up to rowEnd. */
+/** Warp the rows from rowStart up to rowEnd, four samples at a time.
+ *
+ * Along a row the two radial curves are smooth: they are looked up at every fourth sample, the scale joined by parabolas (an error of
+ * 1e-9 of the place at 5 % distortion), the illumination by lines (1e-6).
+ */
 export function warpRows(request: WarpRequest, rowStart: i32, rowEnd: i32): void {
-  const width = request.width;
   for (let row = rowStart; row < rowEnd; row++) {
     const y = <f64>row - request.axisY;
-    let to = request.out + (<usize>row * <usize>width << 2);
-    for (let column = 0; column < width; column++, to += 4) {
-      const x = <f64>column - request.axisX;
-      const place = (x * x + y * y) * request.stepsPerSquare;
-      const step = <u32>place;
-      const part = place - <f64>step;
-      const shrink = between(request.scale, step, part);
-      const light = between(request.illumination, step, part);
-      store<f32>(to, <f32>light * cubicSample(request, request.axisX + x * shrink, request.axisY + y * shrink));
+    const out = request.out + (<usize>row * <usize>request.width << 2);
+    const y2 = y * y;
+    let x = -request.axisX;
+    let scale = curve(request, request.scale, x * x + y2);
+    let nextScale = curve(request, request.scale, (x + 4) * (x + 4) + y2);
+    let light = curve(request, request.illumination, x * x + y2);
+    for (let column = 0; column < request.width; column += 4, x += 4) {
+      const scaleAfter = curve(request, request.scale, (x + 8) * (x + 8) + y2);
+      const nextLight = curve(request, request.illumination, (x + 4) * (x + 4) + y2);
+      const low = parabola(scale, nextScale, scaleAfter, f64x2(0, 0.25), f64x2(0, -0.09375));
+      const high = parabola(scale, nextScale, scaleAfter, f64x2(0.5, 0.75), f64x2(-0.125, -0.09375));
+      const samples = fourSamples(
+        request,
+        place(request.axisX, f64x2.mul(low, f64x2.add(f64x2.splat(x), f64x2(0, 1)))),
+        place(request.axisX, f64x2.mul(high, f64x2.add(f64x2.splat(x), f64x2(2, 3)))),
+        place(request.axisY, f64x2.mul(low, f64x2.splat(y))),
+        place(request.axisY, f64x2.mul(high, f64x2.splat(y))),
+      );
+      const lights = add(
+        f32x4.splat(<f32>light),
+        mul(f32x4(0, 0.25, 0.5, 0.75), f32x4.splat(<f32>(nextLight - light))),
+      );
+      storeSome(out + (<usize>column << 2), request.width - column, mul(lights, samples));
+      scale = nextScale;
+      nextScale = scaleAfter;
+      light = nextLight;
     }
   }
+}
+
+/** A radial curve at a squared distance from the axis in samples. */
+@inline
+function curve(request: WarpRequest, table: usize, radius2: f64): f64 {
+  const place = radius2 * request.stepsPerSquare;
+  const step = <u32>place;
+  return between(table, step, place - <f64>step);
+}
+
+/** The parabola through a at 0, b at 1 and c at 2: a + t (b - a) + t (t - 1)/2 (c - 2 b + a), given t and t (t - 1)/2. */
+@inline
+function parabola(a: f64, b: f64, c: f64, t: v128, tt: v128): v128 {
+  const line = f64x2.add(f64x2.splat(a), f64x2.mul(t, f64x2.splat(b - a)));
+  return f64x2.add(line, f64x2.mul(tt, f64x2.splat(c - b - (b - a))));
+}
+
+@inline
+function place(axis: f64, distance: v128): v128 {
+  return f64x2.add(f64x2.splat(axis), distance);
+}
+
+/** The scene at four places. */
+@inline
+function fourSamples(request: WarpRequest, xLow: v128, xHigh: v128, yLow: v128, yHigh: v128): v128 {
+  const leftLow = f64x2.floor(xLow);
+  const leftHigh = f64x2.floor(xHigh);
+  const topLow = f64x2.floor(yLow);
+  const topHigh = f64x2.floor(yHigh);
+  const left = <i32>f64x2.extract_lane(leftLow, 0) - 1;
+  const top = <i32>f64x2.extract_lane(topLow, 0) - 1;
+  // as a rule four neighbours take four neighbours
+  const areNeighbours = v128.and(
+    v128.and(
+      f64x2.eq(leftLow, f64x2.add(f64x2.splat(<f64>(left + 1)), f64x2(0, 1))),
+      f64x2.eq(leftHigh, f64x2.add(f64x2.splat(<f64>(left + 1)), f64x2(2, 3))),
+    ),
+    v128.and(f64x2.eq(topLow, f64x2.splat(<f64>(top + 1))), f64x2.eq(topHigh, f64x2.splat(<f64>(top + 1)))),
+  );
+  if (left < 0 || left + 7 > request.width || !i64x2.all_true(areNeighbours)) {
+    return fourApart(request, xLow, xHigh, yLow, yHigh);
+  }
+  const along = narrow(f64x2.sub(xLow, leftLow), f64x2.sub(xHigh, leftHigh));
+  const down = narrow(f64x2.sub(yLow, topLow), f64x2.sub(yHigh, topHigh));
+  const a0 = keys0(along);
+  const a1 = keys1(along);
+  const a2 = keys2(along);
+  const a3 = keys3(along);
+  const start = request.scene + (<usize>left << 2);
+  let sum = mul(keys0(down), filterRow(start + rowBytes(request, top), a0, a1, a2, a3));
+  sum = add(sum, mul(keys1(down), filterRow(start + rowBytes(request, top + 1), a0, a1, a2, a3)));
+  sum = add(sum, mul(keys2(down), filterRow(start + rowBytes(request, top + 2), a0, a1, a2, a3)));
+  return add(sum, mul(keys3(down), filterRow(start + rowBytes(request, top + 3), a0, a1, a2, a3)));
+}
+
+/** Byte offset of a row; past the frame its edge goes on. */
+@inline
+function rowBytes(request: WarpRequest, row: i32): usize {
+  return <usize>clamp(row, request.height) * <usize>request.width << 2;
+}
+
+/** Each lane: four neighbours from its own place on, weighted. */
+@inline
+function filterRow(at: usize, a0: v128, a1: v128, a2: v128, a3: v128): v128 {
+  return add(
+    add(mul(a0, v128.load(at)), mul(a1, v128.load(at, 4))),
+    add(mul(a2, v128.load(at, 8)), mul(a3, v128.load(at, 12))),
+  );
+}
+
+/** Keys's weights, one function a neighbour: -f^3/2 + f^2 - f/2 */
+@inline
+function keys0(f: v128): v128 {
+  return mul(f, add(mul(f, add(mul(f, f32x4.splat(-0.5)), f32x4.splat(1))), f32x4.splat(-0.5)));
+}
+
+/** 3 f^3/2 - 5 f^2/2 + 1 */
+@inline
+function keys1(f: v128): v128 {
+  return add(mul(mul(f, f), add(mul(f, f32x4.splat(1.5)), f32x4.splat(-2.5))), f32x4.splat(1));
+}
+
+/** -3 f^3/2 + 2 f^2 + f/2 */
+@inline
+function keys2(f: v128): v128 {
+  return mul(f, add(mul(f, add(mul(f, f32x4.splat(-1.5)), f32x4.splat(2))), f32x4.splat(0.5)));
+}
+
+/** f^3/2 - f^2/2 */
+@inline
+function keys3(f: v128): v128 {
+  return mul(mul(f, f), add(mul(f, f32x4.splat(0.5)), f32x4.splat(-0.5)));
+}
+
+@inline
+function narrow(low: v128, high: v128): v128 {
+  return lowHalves(f32x4.demote_f64x2_zero(low), f32x4.demote_f64x2_zero(high));
+}
+
+function fourApart(request: WarpRequest, xLow: v128, xHigh: v128, yLow: v128, yHigh: v128): v128 {
+  let samples = f32x4.splat(cubicSample(request, f64x2.extract_lane(xLow, 0), f64x2.extract_lane(yLow, 0)));
+  const second = cubicSample(request, f64x2.extract_lane(xLow, 1), f64x2.extract_lane(yLow, 1));
+  const third = cubicSample(request, f64x2.extract_lane(xHigh, 0), f64x2.extract_lane(yHigh, 0));
+  const fourth = cubicSample(request, f64x2.extract_lane(xHigh, 1), f64x2.extract_lane(yHigh, 1));
+  samples = f32x4.replace_lane(samples, 1, second);
+  samples = f32x4.replace_lane(samples, 2, third);
+  return f32x4.replace_lane(samples, 3, fourth);
+}
+
+/** Store the first `count` lanes. */
+@inline
+function storeSome(at: usize, count: i32, values: v128): void {
+  if (count >= 4) {
+    v128.store(at, values);
+    return;
+  }
+  v128.store32_lane(at, values, 0);
+  if (count > 1) v128.store32_lane(at, values, 1, 4);
+  if (count > 2) v128.store32_lane(at, values, 2, 8);
 }
 
 /** Light the rows of a picture that no distortion moves. */

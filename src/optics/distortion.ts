@@ -1,6 +1,6 @@
 /** Where image points land: third-order distortion, the scale term W111 and lateral colour, and the way back. */
-import { bandLateralColourUm } from './colour.js';
-import type { Band, Lens } from './rig.js';
+import { bandLateralColourUm, lateralColourUm, wavesAt } from './colour.js';
+import type { Band, Lens, Waves } from './rig.js';
 
 /** The radial map of one band, r' = a r + c r^3, in mm from the axis: r is where a point lands ideally, r' where it lands. */
 export class DistortionMap {
@@ -45,16 +45,59 @@ export class DistortionMap {
  *
  * r' = r - 2 N0 lambda (W311 h^3 + W111 h) + lateral h, from eps = -2 N lambda grad W with W311 and W111 as pure image shifts.
  * A change of the stop changes neither: it scales the two coefficients by N0/N and eps by N/N0.
+ * Where the coefficients differ by wavelength, the band moves by the weighted mean of its lines; what the lines differ from it stays in
+ * the PSF of the band, as with lateral colour (`shiftWithinBandUm`).
  */
 export function distortionMap(lens: Lens, band?: Band): DistortionMap {
-  const wavesToMm = -2 * lens.fNumber * lens.wavelengthNm * 1e-6;
+  const wavesToMm = mmPerWave(lens);
+  const { W311, W111 } = band === undefined ? lens.waves : bandShiftWaves(lens, band);
   const lateralMm = band === undefined ? 0 : bandLateralColourUm(lens, band) / 1000;
-  const linearMm = wavesToMm * lens.waves.W111 + lateralMm;
-  const cubicMm = wavesToMm * lens.waves.W311;
+  const linearMm = wavesToMm * W111 + lateralMm;
+  const cubicMm = wavesToMm * W311;
   return new DistortionMap(1 + linearMm / lens.fullFieldMm, cubicMm / lens.fullFieldMm ** 3);
 }
 
-/** Third-order distortion 100 (r' - r) / r at a field h, in percent. Scale changes (W111, lateral colour) are not counted. */
+/** How far a line of a band lands from the mean of the band at a field h, in um, + outward: what its lateral colour, W311 and W111 differ
+ * from the band's. */
+export function shiftWithinBandUm(lens: Lens, h: number, nm: number, band: Band): number {
+  const colourUm = h * (lateralColourUm(lens, nm) - bandLateralColourUm(lens, band));
+  if (lens.wavesByWavelength === undefined) return colourUm;
+  return colourUm + 1000 * shiftDifferenceMm(lens, h, wavesAt(lens, nm), bandShiftWaves(lens, band));
+}
+
+/** How far the image of a band lands from that at the lens's own wavelength at a field h, in um, + outward: its lateral colour, and what
+ * its W311 and W111 differ. */
+export function bandShiftUm(lens: Lens, h: number, band: Band): number {
+  const colourUm = h * bandLateralColourUm(lens, band);
+  if (lens.wavesByWavelength === undefined) return colourUm;
+  return colourUm + 1000 * shiftDifferenceMm(lens, h, bandShiftWaves(lens, band), lens.waves);
+}
+
+/** The coefficients that only move the image. */
+type ShiftWaves = Pick<Waves, 'W311' | 'W111'>;
+
+function bandShiftWaves(lens: Lens, band: Band): ShiftWaves {
+  if (lens.wavesByWavelength === undefined) return lens.waves;
+  const mean = { W311: 0, W111: 0 };
+  for (const { nm, weight } of band.lines) {
+    const { W311, W111 } = wavesAt(lens, nm);
+    mean.W311 += weight * W311;
+    mean.W111 += weight * W111;
+  }
+  return mean;
+}
+
+function shiftDifferenceMm(lens: Lens, h: number, one: ShiftWaves, other: ShiftWaves): number {
+  return mmPerWave(lens) * ((one.W311 - other.W311) * h ** 3 + (one.W111 - other.W111) * h);
+}
+
+/** What a wave of W311 or W111 moves the image point of h = 1: eps = -2 N0 lambda dW/dm, for coefficients at the lens's own f-number. */
+function mmPerWave(lens: Lens): number {
+  return -2 * lens.fNumber * lens.wavelengthNm * 1e-6;
+}
+
+/** Third-order distortion 100 (r' - r) / r of the lens's own wavelength at a field h, in percent. Scale changes (W111, lateral colour) are not
+ * counted. */
 export function distortionPercent(lens: Lens, h: number): number {
   return (-100 * 2 * lens.fNumber * lens.wavelengthNm * 1e-6 * lens.waves.W311 * h * h) / lens.fullFieldMm;
 }

@@ -13,6 +13,11 @@ export function fieldWarning(rig: Rig, heightMm: number): string[] {
   ];
 }
 
+/** What is to be said of the lens itself: of its surfaces, where it was traced. */
+export function lensWarnings(rig: Rig): string[] {
+  return [...(rig.lens.warnings ?? [])];
+}
+
 /** A warning where a colour table is held flat. */
 export function colourWarnings(rig: Rig): string[] {
   const outside = wavelengthsOutsideTable(rig.lens, rig.camera.bands);

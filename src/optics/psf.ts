@@ -33,6 +33,8 @@ export interface KernelMaking {
 
 /** The fine samples behind a kernel: how many make a picture sample, and which of them the kernel's pixels take. */
 export interface FineWindow {
+  /** Side of the kernel in picture samples. */
+  pixels: number;
   /** Fine samples a picture sample. */
   perPixel: number;
   /** Step of the fine grid. */
@@ -52,6 +54,7 @@ export function fineWindow({ pitchUm, boxUm, shortestNm, fNumber, kernelPx }: Ke
   const isBetweenSamples = kernelPx % 2 === 0 && perPixel % 2 === 1;
   const box = pixelBox(boxUm / stepUm, isBetweenSamples);
   return {
+    pixels: kernelPx,
     perPixel,
     stepUm,
     box,
@@ -66,7 +69,8 @@ const SMALLEST_GRID = 64;
 /** The pupil grid of one line: large enough for the phase and for the window. */
 export function gridSize(window: FineWindow, line: WavefrontLine, fNumber: number): number {
   let n = Math.max(SMALLEST_GRID, gridForPhase(line.wavefront, window.stepUm, line.nm, fNumber));
-  while (n < window.side) n *= 2;
+  // the taps of the outermost pixels may wrap around, where next to no light is
+  while (n < window.pixels * window.perPixel) n *= 2;
   return Math.min(n, LARGEST_GRID);
 }
 

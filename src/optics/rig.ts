@@ -28,13 +28,16 @@ export interface Lens {
   /** The wavelength in which waves are counted. */
   wavelengthNm: number;
   waves: Waves;
-  /** Coefficients traced at several wavelengths (a lens given by its surfaces): optical path in waves of `wavelengthNm`. */
+  /** Coefficients traced at several wavelengths (a lens given by its surfaces), in rising order: optical path in waves of `wavelengthNm`.
+   * What counts is how they differ from the entry at `wavelengthNm`, so that a change of `waves` moves all wavelengths alike. */
   wavesByWavelength?: readonly { nm: number; waves: Waves }[];
   /** Paraxial focus against `wavelengthNm`, + away from the lens. Empty: no axial colour. */
   axialUm: SpectralTable;
   /** Image height at h = 1 against `wavelengthNm`, + outward. Empty: no lateral colour. */
   lateralUm: SpectralTable;
   relativeIllumination: RelativeIllumination;
+  /** Where these figures mislead, in words, whatever is done with them (a lens given by its surfaces). */
+  warnings?: readonly string[];
 }
 
 /** One wavelength of a band. The weights of a band sum to 1. */

@@ -1,13 +1,13 @@
 /** The wavefront of one field point, at one wavelength, at the stop in use. */
-import { axialColourUm, bandLateralColourUm, lateralColourUm } from './colour.js';
-import type { Band, Lens, Rig, Waves } from './rig.js';
-import { COEFFICIENTS } from './rig.js';
+import { axialColourUm, wavesAt } from './colour.js';
+import { shiftWithinBandUm } from './distortion.js';
+import type { Band, Rig } from './rig.js';
 
 /** The third-order wavefront at one field point, in waves of the wavelength at hand, over the unit pupil of the stop in use:
  *
  *     W(m, s) = w40 rho^4 + w31 rho^2 m + w22 m^2 + w20 rho^2 + w11 m,   rho^2 = m^2 + s^2
  *
- * m runs along the field, outward; s across it. Distortion and the lateral colour of the whole band are not in w11: the warp
+ * m runs along the field, outward; s across it. Distortion and lateral colour of the band as a whole are not in w11: the warp
  * applies them.
  */
 export interface LocalWavefront {
@@ -26,7 +26,7 @@ export interface LocalWavefront {
  * @param xMm    ideal image point, from the optical axis, + right
  * @param yMm    the same, + down
  * @param nm     wavelength
- * @param band   the band that the wavelength belongs to: its mean lateral colour is left to the warp. Left out: `nm` is all of the band
+ * @param band   the band that the wavelength belongs to: its mean distortion and lateral colour are left to the warp. Left out: `nm` is all of the band
  * Source: W. T. Welford, Aberrations of Optical Systems (1986), ch. 7 for the expansion (cited from memory); scaling with stop and
  * wavelength follows from the powers of rho and from optical path being a length.
  */
@@ -39,8 +39,7 @@ export function wavefrontAt(rig: Rig, xMm: number, yMm: number, nm: number, band
   const lambdaUm = nm / 1000;
   const toWavesHere = lens.wavelengthNm / nm; // the optical path stays, the number of waves changes
   const defocusUm = mount.sensorShiftUm + tiltShiftUm(rig, xMm, yMm) - axialColourUm(lens, nm);
-  const lateralUm =
-    band === undefined ? 0 : h * (lateralColourUm(lens, nm) - bandLateralColourUm(lens, band));
+  const shiftUm = band === undefined ? 0 : shiftWithinBandUm(lens, h, nm, band);
   return {
     w40: toWavesHere * waves.W040 * q ** 4,
     w31: toWavesHere * waves.W131 * h * q ** 3,
@@ -48,7 +47,7 @@ export function wavefrontAt(rig: Rig, xMm: number, yMm: number, nm: number, band
     w20:
       toWavesHere * (waves.W220 * h ** 2 + waves.W020) * q ** 2 +
       defocusWaves(defocusUm, mount.fNumber, lambdaUm),
-    w11: -lateralUm / (2 * mount.fNumber * lambdaUm), // eps = -2 N lambda dW/dm
+    w11: -shiftUm / (2 * mount.fNumber * lambdaUm), // eps = -2 N lambda dW/dm
     cos: radiusMm === 0 ? 1 : xMm / radiusMm,
     sin: radiusMm === 0 ? 0 : yMm / radiusMm,
   };
@@ -97,18 +96,4 @@ export function tiltShiftUm(rig: Rig, xMm: number, yMm: number): number {
   const [aboutX, aboutY] = rig.mount.sensorTiltDeg;
   const slope = (degrees: number) => Math.tan((degrees * Math.PI) / 180);
   return 1000 * (yMm * slope(aboutX) - xMm * slope(aboutY));
-}
-
-/** The coefficients at a wavelength, as optical path in waves of the lens's own wavelength. */
-function wavesAt(lens: Lens, nm: number): Waves {
-  const traced = lens.wavesByWavelength;
-  if (traced === undefined || traced.length === 0) return lens.waves;
-  const after = traced.findIndex((entry) => entry.nm >= nm);
-  if (after === 0 || traced.length === 1) return traced[0].waves;
-  if (after < 0) return traced[traced.length - 1].waves;
-  const low = traced[after - 1];
-  const high = traced[after];
-  const t = (nm - low.nm) / (high.nm - low.nm);
-  const blended = COEFFICIENTS.map((name) => [name, low.waves[name] * (1 - t) + high.waves[name] * t]);
-  return Object.fromEntries(blended) as unknown as Waves;
 }

@@ -1,11 +1,10 @@
 /** Contrast by field zone: what the lens, and lens and camera together, do at a field point in a band. */
 import { InputError } from '../errors.js';
-import { bandLateralColourUm } from './colour.js';
-import { distortionPercent } from './distortion.js';
+import { bandShiftUm, distortionPercent } from './distortion.js';
 import { defaultFields, type FieldPoint, type FieldSpec, fieldPoint } from './field-points.js';
 import { bestFocusUm, mtf50LpPerMm } from './focus.js';
 import { relativeIllumination } from './illumination.js';
-import { colourWarnings } from './limits.js';
+import { colourWarnings, lensWarnings } from './limits.js';
 import { bandDiffractionMtf, bandLines, bandMtf, pixelMtf } from './otf.js';
 import type { WavefrontLine } from './psf.js';
 import { type Band, pixelPitchMm, type Rig } from './rig.js';
@@ -40,7 +39,7 @@ export interface Zone {
   strehl: number;
   /** At the lens's own wavelength, piston and tilt taken out. */
   wavefrontRmsWaves: number;
-  /** Of W311 alone: changes of scale are no distortion. */
+  /** Of W311 at the lens's own wavelength: changes of scale are no distortion. */
   distortionPercent: number;
   /** Shift of the band's image against the lens's own wavelength, + outward. */
   lateralColourUm: number;
@@ -113,7 +112,7 @@ function zoneAt(rig: Rig, point: FieldPoint, band: Band, frequencies: readonly n
     strehl: strehlRatio(lines, fNumber),
     wavefrontRmsWaves: wavefrontRmsWaves(wavefrontAt(rig, xMm, yMm, lens.wavelengthNm)),
     distortionPercent: distortionPercent(lens, field),
-    lateralColourUm: field * bandLateralColourUm(lens, band),
+    lateralColourUm: bandShiftUm(lens, field, band),
     relativeIllumination: relativeIllumination(lens)(Math.hypot(xMm, yMm)),
     mtf: frequencies.map((lpPerMm) => {
       const pixel = pixelMtf(camera, lpPerMm);
@@ -186,7 +185,7 @@ function shortestNm(bands: readonly Band[]): number {
 
 function warningsFor(rig: Rig, points: readonly FieldPoint[], frequencies: readonly number[]): string[] {
   const { camera, lens } = rig;
-  const warnings: string[] = [];
+  const warnings = lensWarnings(rig);
   const past = points.filter(({ field }) => field > 1 + 1e-9);
   if (past.length > 0)
     warnings.push(

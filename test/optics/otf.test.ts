@@ -40,7 +40,7 @@ function mtfOf(terms: LocalWavefront, nu: number, direction: Direction): number 
 const degrees = (direction: Direction) =>
   direction === 'tangential' ? 0 : direction === 'sagittal' ? 90 : direction;
 
-function apart(a: readonly number[], b: readonly number[]): number {
+function apart(a: ArrayLike<number>, b: ArrayLike<number>): number {
   return Math.hypot(a[0] - b[0], a[1] - b[1]);
 }
 
