@@ -11,11 +11,20 @@ import { readSource } from './yaml-source.js';
 
 /** Reads a prescription file. @throws {InputError} all faults of the file */
 export function loadPrescription(path: string): Prescription {
+  return withPrescription(path, (prescription) => prescription);
+}
+
+/** Reads a prescription file and does something with it; the faults that this finds are told at the lines of the file.
+ * @throws {InputError} all faults of the file, else those of `use`
+ */
+export function withPrescription<Result>(path: string, use: (prescription: Prescription) => Result): Result {
   const source = readSource(path);
   checkKind('prescription', source);
   const prescription = prescriptionFromFile(checkSchema(prescriptionFile, source));
-  atLinesOf(source, [], () => checkPrescription(prescription));
-  return prescription;
+  return atLinesOf(source, [], () => {
+    checkPrescription(prescription);
+    return use(prescription);
+  });
 }
 
 /** Runs what may find faults in a prescription, and adds the place of each.
@@ -28,7 +37,7 @@ export function atLinesOf<Result>(source: Source, at: Path, run: () => Result): 
     if (!(error instanceof InputError)) throw error;
     throw new InputError(
       error.faults.map((fault) => {
-        if (fault.file !== undefined) return fault;
+        if (fault.file !== undefined || fault.key?.startsWith('--')) return fault; // an option's fault stands in no file
         const path = [...at, ...parseKeyPath(fault.key ?? '')];
         return { ...fault, ...source.place(path, fault.key === undefined ? 'key' : 'value') };
       }),

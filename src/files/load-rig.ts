@@ -3,7 +3,7 @@ import { InputError } from '../errors.js';
 import type { Camera, Lens, Rig } from '../optics/rig.js';
 import { checkSchema } from './check-schema.js';
 import { checkKind } from './kinds.js';
-import { lensFromPrescription } from './lens-from-prescription.js';
+import { type InRig, lensFromPrescription } from './lens-from-prescription.js';
 import { atLinesOf } from './load-prescription.js';
 import { prescriptionFromFile } from './prescription-from-file.js';
 import { cameraFromFile, lensFromFile, rigFromFile } from './rig-from-file.js';
@@ -63,7 +63,7 @@ export function loadLensPart(path: string, wavelengthsNm: readonly number[] = []
   tree.graftFile(['prescription'], '.', (part) => checkKind('prescription', part));
   const file = checkSchema(lensPart, tree);
   return isPrescribed(file)
-    ? tracedLens(file, wavelengthsNm, tree, ['prescription'])
+    ? tracedLens(file, { wavelengthsNm }, tree, ['prescription'])
     : lensFromFile(file as StatedLens); // the schema tells the two apart
 }
 
@@ -111,9 +111,7 @@ function checkedRig(tree: SourceTree): RigFile {
 }
 
 function toRig(tree: SourceTree): Rig {
-  const rig = rigFromFile(checkedRig(tree), (lens, wavelengthsNm) =>
-    tracedLens(lens, wavelengthsNm, tree, PRESCRIPTION),
-  );
+  const rig = rigFromFile(checkedRig(tree), (lens, inRig) => tracedLens(lens, inRig, tree, PRESCRIPTION));
   if (rig.mount.fNumber < rig.lens.fNumber) {
     // the schema has checked this where the lens states its f-number; a lens given by its surfaces has it only now
     const place = tree.place(['mount', 'f_number'], 'value');
@@ -122,15 +120,9 @@ function toRig(tree: SourceTree): Rig {
   return rig;
 }
 
-function tracedLens(
-  file: PrescribedLens,
-  wavelengthsNm: readonly number[],
-  tree: SourceTree,
-  at: Path,
-): Lens {
+function tracedLens(file: PrescribedLens, inRig: InRig, tree: SourceTree, at: Path): Lens {
   // checkSchema has seen that the name of the file has given way to its content
   const prescription = prescriptionFromFile(file.prescription as PrescriptionFile, file);
-  return atLinesOf(tree, at, () =>
-    lensFromPrescription(prescription, wavelengthsNm, file.relative_illumination),
-  );
+  const { relative_illumination: relativeIllumination } = file;
+  return atLinesOf(tree, at, () => lensFromPrescription(prescription, { ...inRig, relativeIllumination }));
 }

@@ -32,22 +32,23 @@ function isRig(value: object): value is Rig {
 export function rigData({ lens, camera, mount }: Rig): object {
   const { objectScale, ...mounting } = mount;
   return {
-    lens: resultData(lensData(lens)),
+    lens: lensData(lens),
     camera: resultData({ ...camera, bands: undefined, bandsNm: bandsData(camera.bands) }),
     mount: resultData({ ...mounting, ...objectScale }),
   };
 }
 
-function lensData({ axialUm, lateralUm, wavesByWavelength, ...lens }: Lens): object {
+/** A lens as the lens part of a rig holds it. Its warnings are no part of it. */
+export function lensData({ axialUm, lateralUm, wavesByWavelength, warnings: _, ...lens }: Lens): object {
   const colour = {
     axialUm: axialUm.length > 0 ? tableData(axialUm) : undefined,
     lateralUm: lateralUm.length > 0 ? tableData(lateralUm) : undefined,
   };
-  return {
+  return resultData({
     ...lens,
     wavesByWavelength: wavesByWavelength && wavesData(wavesByWavelength),
     colour: axialUm.length + lateralUm.length > 0 ? colour : undefined,
-  };
+  }) as object;
 }
 
 function bandsData(bands: Rig['camera']['bands']): object {

@@ -7,14 +7,20 @@ import { isPrescribed, type PrescribedLens, type StatedLens } from './schemas/le
 import type { MountFile } from './schemas/mount.js';
 import type { RigFile } from './schemas/rig.js';
 
-/** @param fromPrescription  makes the lens that is given by its surfaces, at the wavelengths of the bands */
+/** @param fromPrescription  makes the lens that is given by its surfaces, at the wavelengths of the bands and for the stop in use */
 export function rigFromFile(
   file: RigFile,
-  fromPrescription: (lens: PrescribedLens, wavelengthsNm: readonly number[]) => Lens,
+  fromPrescription: (
+    lens: PrescribedLens,
+    inRig: { wavelengthsNm: readonly number[]; fNumber?: number },
+  ) => Lens,
 ): Rig {
   const camera = cameraFromFile(file.camera);
   const lens = isPrescribed(file.lens)
-    ? fromPrescription(file.lens, wavelengthsOf(camera.bands))
+    ? fromPrescription(file.lens, {
+        wavelengthsNm: wavelengthsOf(camera.bands),
+        fNumber: file.mount.f_number,
+      })
     : lensFromFile(file.lens as StatedLens); // the schema tells the two apart
   return { lens, camera, mount: mountFromFile(file.mount, lens, camera) };
 }

@@ -2,7 +2,7 @@
 import type { RawLevels } from '../camera/converter.js';
 import type { FormedImage } from '../imaging/form-image.js';
 import type { Raster } from '../imaging/raster.js';
-import { colourWarnings, fieldWarning } from '../optics/limits.js';
+import { colourWarnings, fieldWarning, lensWarnings } from '../optics/limits.js';
 import type { Rig } from '../optics/rig.js';
 import type { Settings } from './render-options.js';
 
@@ -53,7 +53,7 @@ export function warningsFor({ rig, tolerances }: Settings, accuracy: FormedImage
   const pitchMm = rig.camera.pixelPitchUm / 1000;
   const cornerMm =
     pitchMm * Math.hypot(Math.max(axisX, width - 1 - axisX), Math.max(axisY, height - 1 - axisY));
-  const warnings = [...fieldWarning(rig, cornerMm), ...colourWarnings(rig)];
+  const warnings = [...lensWarnings(rig), ...fieldWarning(rig, cornerMm), ...colourWarnings(rig)];
   if (accuracy.energyOutsideKernel > tolerances.kernel) {
     warnings.push(
       `${(100 * accuracy.energyOutsideKernel).toFixed(2)} % of a PSF's light falls outside the largest kernel ` +

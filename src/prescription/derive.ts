@@ -82,12 +82,15 @@ export function deriveLens(prescription: Prescription, options: DeriveOptions = 
 export interface ToLensOptions {
   /** `traced` (default): what exact rays say at `fNumber`; `cos4`: the law, no exact ray is traced. */
   relativeIllumination?: 'traced' | 'cos4';
-  /** The stop in use, for vignetting: a smaller stop is cut less. Left out: the lens's own. */
+  /** The stop in use, for vignetting and for what the lens is warned of: a smaller stop is cut less. Left out,
+   * or wider than the lens's own: the lens's own. */
   fNumber?: number;
 }
 
-/** The lens of a rig that names a prescription: third-order terms at the wavelengths of the rig.
- * @throws {InputError} as `deriveLens` does; exact rays are traced only for the illumination
+/** The lens of a rig that names a prescription: third-order terms at the wavelengths of the rig, and warnings
+ * of what of them misleads at the stop in use.
+ * @throws {InputError} as `deriveLens` does; exact rays are traced only for the illumination and the warnings
+ *   that rest on them
  */
 export function toLens(
   prescription: Prescription,
@@ -96,16 +99,23 @@ export function toLens(
 ): Lens {
   const model = lensModel(prescription);
   const lens = lensOf(model, wavelengthsNm, thirdOrderWaves);
-  if (options.relativeIllumination === 'cos4') return lens;
-  const stopped = lensModel({
-    ...model.prescription,
-    aperture: { fNumber: options.fNumber ?? lens.fNumber },
-  });
+  const warnings = modelWarnings(model, wavelengthsNm);
+  if (options.relativeIllumination === 'cos4') return { ...lens, warnings };
+  const fNumber = Math.max(options.fNumber ?? lens.fNumber, lens.fNumber);
+  const stopped = lensModel({ ...model.prescription, aperture: { fNumber } });
+  const fields = EXACT_FIELDS.map((h) => exactField(stopped.reference, h));
+  const terms = thirdOrderWaves(stopped, stopped.reference);
+  const explained = explain(fields, fields[0], { ...lens, fNumber }, terms);
   return {
     ...lens,
-    relativeIllumination: illuminationTable(EXACT_FIELDS.map((h) => exactField(stopped.reference, h))),
+    relativeIllumination: illuminationTable(fields),
+    warnings: [...warnings, ...explainedWarnings(explained, false)],
   };
 }
+
+/** A relay may be afocal, or come out with a focal length of kilometres and either sign by rounding: no figure
+ * to go by. */
+const LONGEST_FOCAL_MM = 1e5;
 
 function lensOf(
   model: LensModel,
@@ -118,7 +128,7 @@ function lensOf(
   const own = spectral.wavesByWavelength.find(({ nm }) => nm === wavelengthNm) as { waves: Waves };
   return {
     name,
-    focalLengthMm,
+    ...(focalLengthMm > 0 && focalLengthMm < LONGEST_FOCAL_MM && { focalLengthMm }),
     fNumber: workingFNumber,
     fullFieldMm: imageHeightMm,
     wavelengthNm,
@@ -152,7 +162,7 @@ function checkOptions({ fields, wavelengthsNm }: DeriveOptions): void {
       refuse('--fields', 'this field is not possible', h, '0 (axis) to 1 (full field), or a little more');
   for (const nm of wavelengthsNm ?? [])
     if (!(Number.isFinite(nm) && nm > 0))
-      refuse('wavelengths', 'this wavelength is not possible', nm, 'a number above 0, in nm');
+      refuse('--wavelengths', 'this wavelength is not possible', nm, 'a number above 0, in nm');
 }
 
 /** @param fields the axis first: there the chief ray always gets through, so there is light */

@@ -60,25 +60,48 @@ export function explain(
  * Source: Born and Wolf, Principles of Optics, 9.3 (cited from memory). */
 const MARECHAL_WAVES = 1 / 14;
 
-/** Where the third-order picture misleads, in words. */
+/** Where the third-order picture misleads, in words: one warning a matter, with all field points that it
+ * concerns. */
 export function explainedWarnings(explained: readonly Explained[], fitted: boolean): string[] {
-  const warnings: string[] = [];
-  const percent = (share: number) => `${(100 * share).toFixed(0)} %`;
-  for (const { field, share, rmsLeftWaves, rmsWaves } of explained) {
-    if (share === null || rmsLeftWaves === null || rmsWaves === null || rmsLeftWaves <= MARECHAL_WAVES)
-      continue;
-    if (share >= 0.9) continue;
-    const cure = fitted
-      ? 'Higher orders matter there: lower the aperture or the field, or take the figures as a rough guide.'
-      : 'Higher orders matter there: fit the terms to the exact wavefront instead (--best-fit), or lower the aperture or the field.';
-    const what =
-      share > 0
-        ? `the five terms explain ${percent(share)} of the exact wavefront's variance`
-        : 'the five terms describe the exact wavefront worse than no aberration at all would';
+  return [
+    ...shareWarnings(explained, fitted),
+    ...distortionWarnings(explained),
+    ...vignettingWarnings(explained),
+  ];
+}
+
+const percent = (share: number) => `${(100 * share).toFixed(0)} %`;
+
+function shareWarnings(explained: readonly Explained[], fitted: boolean): string[] {
+  const poor = explained.flatMap(({ field, share, rmsLeftWaves, rmsWaves }) => {
+    const isDark = share === null || rmsLeftWaves === null || rmsWaves === null;
+    return isDark || rmsLeftWaves <= MARECHAL_WAVES || share >= 0.9
+      ? []
+      : [{ field, share, rms: rmsWaves.toFixed(2), left: rmsLeftWaves.toFixed(2) }];
+  });
+  const cure = fitted
+    ? 'Higher orders matter there: lower the aperture or the field, or take the figures as a rough guide.'
+    : 'Higher orders matter there: fit the terms to the exact wavefront instead (derive --best-fit), or lower the aperture or the field.';
+  const partly = poor
+    .filter(({ share }) => share > 0)
+    .map(({ field, share, rms, left }, i) =>
+      i === 0
+        ? `At field ${field} the five terms explain ${percent(share)} of the exact wavefront's variance (${rms} waves RMS in truth, ${left} of them unexplained)`
+        : `at field ${field} ${percent(share)} (${rms}, ${left})`,
+    );
+  const wrong = poor.filter(({ share }) => share <= 0);
+  const warnings = partly.length === 0 ? [] : [`${partly.join(', ')}. ${cure}`];
+  if (wrong.length > 0) {
+    const list = (of: 'field' | 'rms' | 'left') => wrong.map((at) => at[of]).join(', ');
     warnings.push(
-      `At field ${field} ${what}: ${rmsWaves.toFixed(2)} waves RMS in truth, ${rmsLeftWaves.toFixed(2)} of them unexplained. ${cure}`,
+      `At field ${list('field')} the five terms describe the exact wavefront worse than no aberration at all would ` +
+        `(${list('rms')} waves RMS in truth, ${list('left')} left over). ${cure}`,
     );
   }
+  return warnings;
+}
+
+function distortionWarnings(explained: readonly Explained[]): string[] {
   const worst = explained.reduce(
     (most, { distortionPercent, distortionOfTermsPercent, field }) => {
       const off = Math.abs(distortionPercent - distortionOfTermsPercent);
@@ -86,20 +109,25 @@ export function explainedWarnings(explained: readonly Explained[], fitted: boole
     },
     { off: 0, field: 0, distortionPercent: 0, distortionOfTermsPercent: 0 },
   );
-  if (worst.off > 0.1)
+  if (!(worst.off > 0.1)) return [];
+  return [
+    `At field ${worst.field} the real chief ray shows ${worst.distortionPercent.toFixed(2)} % distortion, the terms ${worst.distortionOfTermsPercent.toFixed(2)} %: ` +
+      'places in the picture are off by the difference.',
+  ];
+}
+
+function vignettingWarnings(explained: readonly Explained[]): string[] {
+  const warnings: string[] = [];
+  const cut = explained.filter(({ openShare }) => openShare > 0 && openShare < 0.9);
+  if (cut.length > 0)
     warnings.push(
-      `At field ${worst.field} the real chief ray shows ${worst.distortionPercent.toFixed(2)} % distortion, the terms ${worst.distortionOfTermsPercent.toFixed(2)} %: ` +
-        'places in the picture are off by the difference.',
+      `At field ${cut.map(({ field }) => field).join(', ')} the surfaces cut ${cut.map(({ openShare }) => percent(1 - openShare)).join(', ')} of the beam: ` +
+        'the sharpness there is computed as if the stop were open.',
     );
-  for (const { field, openShare } of explained) {
-    if (openShare === 0)
-      warnings.push(
-        `At field ${field} no light reaches the sensor: the semi-diameters of the surfaces cut all of it.`,
-      );
-    else if (openShare < 0.9)
-      warnings.push(
-        `At field ${field} the surfaces cut ${percent(1 - openShare)} of the beam: the sharpness there is computed as if the stop were open.`,
-      );
-  }
+  const dark = explained.filter(({ openShare }) => openShare === 0);
+  if (dark.length > 0)
+    warnings.push(
+      `At field ${dark.map(({ field }) => field).join(', ')} no light reaches the sensor: the semi-diameters of the surfaces cut all of it.`,
+    );
   return warnings;
 }

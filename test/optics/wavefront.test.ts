@@ -120,7 +120,7 @@ describe('wavefrontAt', () => {
   it('takes coefficients traced at several wavelengths, blended between and held outside', () => {
     const at = (nm: number, W040: number) => ({ nm, waves: { ...WAVES, W040 } });
     const lens = { wavesByWavelength: [at(450, 1), at(550, 2), at(650, 4)] };
-    const rig = sampleRig({ waves: WAVES, lens });
+    const rig = sampleRig({ waves: { ...WAVES, W040: 2 }, lens });
     const pathAt = (nm: number) => (wavefrontAt(rig, 0, 0, nm).w40 * nm) / 550;
     [
       [400, 1],

@@ -259,10 +259,42 @@ describe('toLens', () => {
       }
   });
 
-  test('is the derived lens without the account', () => {
+  test('is the derived lens, and its warnings go along', () => {
     const nm = [450, 520, 650];
-    const { lens } = deriveLens(packhouseLens(), { wavelengthsNm: nm });
-    expect(toLens(packhouseLens(), nm)).toEqual(lens);
+    const { lens, warnings } = deriveLens(packhouseLens(), { wavelengthsNm: nm });
+    expect(warnings.length).toBeGreaterThan(0);
+    expect(toLens(packhouseLens(), nm)).toEqual({ ...lens, warnings });
+  });
+
+  test('warns of what misleads at the stop in use, and of no exact ray where none is traced', () => {
+    expect(toLens(packhouseLens(), [550], { fNumber: 11 }).warnings?.join()).not.toMatch(/explain/);
+    const wider = toLens(packhouseLens(), [550], { fNumber: 2 }); // a mount that will be refused
+    expect(wider).toEqual(toLens(packhouseLens(), [550]));
+    const plain = toLens(singlet(), [365, 550], { relativeIllumination: 'cos4' });
+    expect(plain.warnings).toEqual([expect.stringMatching(/At 365 nm .* extrapolation/)]);
+  });
+
+  test('a relay that is afocal has no focal length', () => {
+    const half = { nd: 1.5168, vd: 64.17 };
+    const relay: Prescription = {
+      name: 'relay',
+      wavelengthNm: 550,
+      surfaces: [
+        { radiusMm: 60, thicknessMm: 3, glass: half },
+        { radiusMm: -60, thicknessMm: 57, semiDiameterMm: 12 },
+        { stop: true, thicknessMm: 60 },
+        { radiusMm: 60, thicknessMm: 3, glass: half },
+        { radiusMm: -60 },
+      ],
+      objectDistanceMm: 57,
+      aperture: { objectNa: 0.03 },
+      field: { objectHeightMm: 4 },
+    };
+    const { focalLengthMm } = lensModel(relay).reference.paraxial;
+    expect(Math.abs(focalLengthMm)).toBeGreaterThan(1000); // nearly afocal, and negative
+    expect(focalLengthMm).toBeLessThan(0);
+    expect(toLens(relay, [550])).not.toHaveProperty('focalLengthMm');
+    expect(toLens(relay, [550]).waves.W040).not.toBe(0);
   });
 
   test('the stop in use is cut less, and cos4 traces no exact rays', () => {

@@ -98,7 +98,7 @@ describe('warnings', () => {
     [
       'low share',
       { share: 0.4 },
-      /^At field 0.7 the five terms explain 40 % .* 1.30 waves RMS in truth, 0.30 of them .*--best-fit/,
+      /^At field 0.7 the five terms explain 40 % .*\(1.30 waves RMS in truth, 0.30 of them .*--best-fit/,
     ],
     ['negative share', { share: -2 }, /worse than no aberration at all/],
     ['distortion', { distortionOfTermsPercent: -1.2 }, /-1.00 % distortion, the terms -1.20 %/],
@@ -107,6 +107,26 @@ describe('warnings', () => {
     const warnings = explainedWarnings([{ ...good, ...change }], false);
     expect(warnings).toHaveLength(1);
     expect(warnings[0]).toMatch(text);
+  });
+
+  test('one warning a matter, with all field points', () => {
+    const bad: Partial<Explained>[] = [
+      { field: 0.5, share: 0.8 },
+      { field: 0.8, share: 0.4, openShare: 0.8 },
+      { field: 0.9, share: -1, openShare: 0.7 },
+      { field: 1, share: -2, rmsLeftWaves: 2 },
+      { field: 1.1, share: null, rmsLeftWaves: null, rmsWaves: null, openShare: 0 },
+    ];
+    const warnings = explainedWarnings(
+      bad.map((change) => ({ ...good, ...change })),
+      false,
+    );
+    expect(warnings).toEqual([
+      expect.stringMatching(/^At field 0.5 .* 80 % .*, at field 0.8 40 % \(1.30, 0.30\)\. Higher orders/),
+      expect.stringMatching(/^At field 0.9, 1 .* worse .*\(1.30, 1.30 waves RMS in truth, 0.30, 2.00 left/),
+      expect.stringMatching(/^At field 0.8, 0.9 the surfaces cut 20 %, 30 % of the beam/),
+      expect.stringMatching(/^At field 1.1 no light/),
+    ]);
   });
 
   test('after a fit another fit is no cure', () => {

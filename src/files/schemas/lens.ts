@@ -38,7 +38,8 @@ const wavesByWavelength = z
     error: 'a mapping from wavelengths in nm to coefficients',
   })
   .describe(
-    'Coefficients that differ by wavelength (a traced lens): by wavelength in nm, in waves of wavelength_nm.',
+    'Coefficients that differ by wavelength (a traced lens): by wavelength in nm, in waves of wavelength_nm. What counts is how they ' +
+      'differ from the entry at wavelength_nm: a change of waves moves all wavelengths alike.',
   );
 
 const colourTable = (what: string) =>
@@ -74,7 +75,8 @@ const relativeIllumination = z
     { error: 'cos4, none, or a list of pairs [h, value]' },
   )
   .describe(
-    'Fall-off of light with the field: cos4 (needs focal_length_mm), none, or [[h, value], ...] with rising h.',
+    'Fall-off of light with the field: cos4 (needs focal_length_mm), none, or [[h, value], ...] with rising h. ' +
+      'Left out beside a prescription: traced through its surfaces.',
   )
   .meta({ default: 'cos4' });
 
