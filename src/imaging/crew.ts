@@ -83,11 +83,6 @@ export class Crew {
     return results;
   }
 
-  /** Set bytes of the arena to 0. */
-  clear(address: number, bytes: number): void {
-    this.#kernels.clear(address, bytes);
-  }
-
   /** End the workers. The crew is of no use afterwards. */
   async close(): Promise<void> {
     const workers = await this.#workers.catch(() => []);

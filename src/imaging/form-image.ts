@@ -1,11 +1,13 @@
 /** From the ideal scene to what the pixels receive: warp, illumination and blur, band by band. */
 import { InputError } from '../errors.js';
+import { MOST_WARP_PLANES } from '../numeric/kernel-requests.js';
 import type { Rig } from '../optics/rig.js';
+import type { BlurGrid } from './blur-grid.js';
 import type { Crew, JobWatch } from './crew.js';
 import { type BandKernels, type BlurTolerances, prepareKernels, refuseUnsampled } from './plan-blur.js';
 import { cornerMm, sensorFrame } from './sensor-frame.js';
 import { columnCount, isFolded } from './simd-blur.js';
-import type { BandSetup } from './work.js';
+import type { BandSetup, TileColumn } from './work.js';
 
 export interface FormedImage {
   /** One plane a band in shared memory, of the camera's pixels, row-major, in linear light. */
@@ -89,28 +91,54 @@ export async function formImage(
     arena.floats(arena.allocateFloats(width * height), width * height),
   );
   const mark = arena.mark();
-  const warpedAt = arena.allocateFloats(samples);
+  const warpedAt = rig.camera.bands.map(() => arena.allocateFloats(samples));
   const flatAt = arena.allocateFloats(samples);
   const fineAt = isFine ? arena.allocateFloats(samples) : 0;
   const seconds = { warp: 0, blur: 0 };
-  for (const [bandIndex, kernels] of bands.entries()) {
-    const setup: BandSetup = { rig, bandIndex, oversample };
+  const timed = async (stage: 'warp' | 'blur', work: (jobWatch: JobWatch) => Promise<void>) => {
     const start = performance.now();
-    const count = Math.ceil((height * oversample) / ROWS_PER_TASK);
-    const sceneAt = scene[bandIndex].byteOffset;
-    await crew.run(
-      { kind: 'warp', setup, sceneAt, outAt: warpedAt, rowsPerTask: ROWS_PER_TASK, count },
-      stageWatch('warp', watch),
+    await work(stageWatch(stage, watch));
+    seconds[stage] += (performance.now() - start) / 1000;
+  };
+  for (const alike of bandsMovedAlike(rig, oversample)) {
+    const moved = alike.map((band) => ({ sceneAt: scene[band].byteOffset, outAt: warpedAt[band] }));
+    await timed('warp', (jobWatch) =>
+      warpPlanes(crew, { rig, bandIndex: alike[0], oversample }, moved, jobWatch),
     );
-    const warped = performance.now();
+  }
+  for (const [bandIndex, kernels] of bands.entries()) {
     const blurredAt = isFine ? fineAt : planes[bandIndex].byteOffset;
-    await blurPlane(crew, kernels, warpedAt, blurredAt, flatAt, stageWatch('blur', watch));
+    await timed('blur', (jobWatch) =>
+      blurPlane(crew, kernels, warpedAt[bandIndex], blurredAt, flatAt, jobWatch),
+    );
     if (isFine) takePixels(arena.floats(blurredAt, samples), width, height, oversample, planes[bandIndex]);
-    seconds.warp += (warped - start) / 1000;
-    seconds.blur += (performance.now() - warped) / 1000;
   }
   arena.release(mark);
   return { planes, accuracy: accuracyOf(bands), seconds };
+}
+
+/** Bands in groups that distortion and lateral colour move in the same way: all of them, where there is no lateral colour. */
+function bandsMovedAlike(rig: Rig, oversample: number): number[][] {
+  const groups = new Map<string, number[]>();
+  for (const [bandIndex, band] of rig.camera.bands.entries()) {
+    const { a, c } = sensorFrame(rig, band, oversample).map;
+    const key = `${a} ${c}`;
+    const group = groups.get(key);
+    if (group !== undefined && group.length < MOST_WARP_PLANES) group.push(bandIndex);
+    else groups.set(group === undefined ? key : `${key} ${bandIndex}`, [bandIndex]);
+  }
+  return [...groups.values()];
+}
+
+async function warpPlanes(
+  crew: Crew,
+  setup: BandSetup,
+  planes: { sceneAt: number; outAt: number }[],
+  watch: JobWatch,
+): Promise<void> {
+  const { height } = sensorFrame(setup.rig, setup.rig.camera.bands[setup.bandIndex], setup.oversample);
+  const count = Math.ceil(height / ROWS_PER_TASK);
+  await crew.run({ kind: 'warp', setup, planes, rowsPerTask: ROWS_PER_TASK, count }, watch);
 }
 
 /** The figures of the band that is the worst in each. */
@@ -140,9 +168,7 @@ function shortestFirst(rig: Rig): number[] {
  * Where the PSFs' centroids wander over the field, as coma's do, scene points draw together or apart, and a plane of ones would come
  * out as `flat`, a part in a thousand from 1. Relative illumination is by definition all that happens to a uniform scene, so the
  * plane is divided by `flat`.
- *
- * Tile columns whose results could overlap are done in turns, always in the same order, so that the sums come out
- * the same whatever the number of threads. */
+ * */
 async function blurPlane(
   crew: Crew,
   kernels: BandKernels,
@@ -154,26 +180,50 @@ async function blurPlane(
   const { grid, isMirrored, kernelsAt } = kernels;
   const isFoldedHere = crew.engine === 'simd' && isFolded(grid, isMirrored);
   const columns = crew.engine === 'simd' ? columnCount(grid, isMirrored) : grid.tilesX;
-  crew.clear(outAt, 4 * grid.width * grid.height);
-  crew.clear(flatAt, 4 * grid.width * grid.height);
-  const turns = Math.ceil((grid.tilePx + grid.kernelPx - 1) / grid.tilePx);
-  let before = 0;
-  for (let turn = 0; turn < turns; turn++) {
-    const turnColumns: number[] = [];
-    for (let column = turn; column < columns; column += turns) turnColumns.push(column);
-    const begun = before;
-    const onProgress = watch.onProgress && ((done: number) => watch.onProgress?.(begun + done, columns));
-    await crew.run(
-      { kind: 'blur', grid, isMirrored, kernelsAt, sourceAt, outAt, flatAt, columns: turnColumns },
-      { signal: watch.signal, onProgress },
-    );
-    before += turnColumns.length;
-  }
   const count = Math.ceil(grid.height / ROWS_PER_TASK);
+  const rows = { rowsPerTask: ROWS_PER_TASK, count };
+  await crew.run({ kind: 'clear', grid, planes: [outAt, flatAt], ...rows }, { signal: watch.signal });
+  const isDone = new Int32Array(new SharedArrayBuffer(4 * columns));
   await crew.run(
-    { kind: 'flatten', grid, isFolded: isFoldedHere, outAt, flatAt, rowsPerTask: ROWS_PER_TASK, count },
+    {
+      kind: 'blur',
+      grid,
+      isMirrored,
+      kernelsAt,
+      sourceAt,
+      outAt,
+      flatAt,
+      columns: columnsInTurns(grid, columns),
+      isDone,
+    },
+    watch,
+  );
+  await crew.run(
+    { kind: 'flatten', grid, isFolded: isFoldedHere, outAt, flatAt, ...rows },
     { signal: watch.signal },
   );
+}
+
+/** Columns of tiles in an order that is the same whatever the number of threads: results of neighbours overlap, so columns far enough
+ * apart come first, then their neighbours, each waiting for those before it that it overlaps with. */
+function columnsInTurns(grid: BlurGrid, columns: number): TileColumn[] {
+  const turns = Math.ceil((grid.tilePx + grid.kernelPx - 1) / grid.tilePx);
+  const list: TileColumn[] = [];
+  for (let turn = 0; turn < turns; turn++) {
+    for (let column = turn; column < columns; column += turns) {
+      const waitFor: number[] = [];
+      for (let other = 0; other < columns; other++) {
+        if (other % turns < turn && overlaps(grid, turns, column, other)) waitFor.push(other);
+      }
+      list.push({ column, waitFor });
+    }
+  }
+  return list;
+}
+
+/** Whether two columns, or one and the mirror image of the other, lie closer than results reach. */
+function overlaps({ tilesX }: BlurGrid, turns: number, column: number, other: number): boolean {
+  return Math.abs(column - other) < turns || Math.abs(tilesX - 1 - column - other) < turns;
 }
 
 /** Take the pixels out of an oversampled plane. Its kernels hold the whole pixel, so the sample at a pixel's middle is the pixel; with

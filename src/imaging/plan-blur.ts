@@ -41,7 +41,7 @@ const LARGEST_FFT = 2048;
 const LATTICE = 9;
 
 /** Plan, compute and certify the kernels of a band.
- * @param earlier the kernels of another band, a good first guess
+ * @param earlier the kernels of another band, which settle the order of interpolation and are a first guess at the tile
  * @throws {InputError} where the wavefront cannot be sampled */
 export async function prepareKernels(
   crew: Crew,
@@ -160,23 +160,36 @@ async function chooseTile(
   watch: JobWatch,
   earlier?: BlurGrid,
 ): Promise<{ tilePx: number; order: number }> {
-  const { setup, kernelPx } = task;
   if (earlier !== undefined) {
-    const room = blurFftSize(earlier.tilePx, earlier.kernelPx) - kernelPx + 1;
-    if (room > earlier.tilePx / 2) return { tilePx: Math.min(earlier.tilePx, room), order: earlier.order };
+    // the order that is best for one band is as good as the best for the others
+    const { order } = earlier;
+    const allowedPx = await largestTile(crew, task, order, tolerance, watch, earlier.tilePx, 1);
+    return { tilePx: cheapestTile(task, order, allowedPx).tilePx, order };
   }
   let best: { tilePx: number; order: number; cost: number } | undefined;
   for (const order of [1, 2, 3]) {
     const allowedPx = await largestTile(crew, task, order, tolerance, watch);
-    for (let fftSize = blurFftSize(1, kernelPx); fftSize <= LARGEST_FFT; fftSize *= 2) {
-      const tilePx = Math.min(Math.floor(allowedPx), fftSize - kernelPx + 1);
-      if (tilePx < 1 || blurFftSize(tilePx, kernelPx) !== fftSize) continue;
-      const cost = costPerSample(setup, kernelPx, tilePx, order, fftSize);
-      if (best === undefined || cost < best.cost) best = { tilePx, order, cost };
-    }
+    const candidate = cheapestTile(task, order, allowedPx);
+    if (best === undefined || candidate.cost < best.cost) best = { ...candidate, order };
     if (allowedPx > 1.5 * kernelPx) break; // higher orders pay only where tiles are small against the kernel
   }
-  return best ?? { tilePx: 1, order: 1 };
+  return best as { tilePx: number; order: number };
+}
+
+/** The tile, none larger than allowed, that costs the least work per sample. */
+function cheapestTile(
+  { setup, kernelPx }: PsfTask,
+  order: number,
+  allowedPx: number,
+): { tilePx: number; cost: number } {
+  let best = { tilePx: 1, cost: Number.POSITIVE_INFINITY };
+  for (let fftSize = blurFftSize(1, kernelPx); fftSize <= LARGEST_FFT; fftSize *= 2) {
+    const tilePx = Math.min(Math.floor(allowedPx), fftSize - kernelPx + 1);
+    if (tilePx < 1 || blurFftSize(tilePx, kernelPx) !== fftSize) continue;
+    const cost = costPerSample(setup, kernelPx, tilePx, order, fftSize);
+    if (cost < best.cost) best = { tilePx, cost };
+  }
+  return best;
 }
 
 /** Side of the largest tile that should meet the tolerance, from measured errors of single tiles: e grows as tile^(order + 1). */
@@ -186,12 +199,14 @@ async function largestTile(
   order: number,
   tolerance: number,
   watch: JobWatch,
+  firstGuess = 64 * order,
+  rounds = 2,
 ): Promise<number> {
   const { setup } = task;
   const { width, height } = frameOf(setup);
   const longest = 2 * Math.max(width, height);
-  let tilePx = Math.min(order * 64, longest);
-  for (let round = 0; round < 2; round++) {
+  let tilePx = Math.min(firstGuess, longest);
+  for (let round = 0; round < rounds; round++) {
     const spans = sampleSpans(setup, tilePx);
     const job = { kind: 'spans', ...task, order, spans } as const;
     const error = largest(await crew.run(job, { signal: watch.signal }));
@@ -253,7 +268,7 @@ export function tilesToCheck(grid: BlurGrid, isMirrored: boolean): [number, numb
     tileEdge(tile + 1, origin, grid.tilePx, size) > tileEdge(tile, origin, grid.tilePx, size);
   const xs = range(columns).filter((x) => isInFrame(x, grid.originX, grid.width));
   const ys = range(rows).filter((y) => isInFrame(y, grid.originY, grid.height));
-  const stride = Math.max(1, Math.floor(Math.sqrt((xs.length * ys.length) / MOST_CHECKED_TILES)));
+  const stride = Math.max(1, Math.ceil(Math.sqrt((xs.length * ys.length) / MOST_CHECKED_TILES)));
   const isOnSpread = (_: number, at: number, all: number[]) => at % stride === 0 || at === all.length - 1;
   return ys.filter(isOnSpread).flatMap((y) => xs.filter(isOnSpread).map((x): [number, number] => [x, y]));
 }

@@ -28,6 +28,8 @@ export interface Bench {
   engine: Engine;
   /** Work space for this job. */
   scratch: Scratch;
+  /** Whether the run was stopped. */
+  isStopped: () => boolean;
 }
 
 /** Prepare a job's tasks. */
@@ -70,6 +72,8 @@ export function taskRunner(bench: Bench, job: Job): RunTask {
       return sensorRows(arena, job);
     case 'blur':
       return blurrer(bench, job);
+    case 'clear':
+      return clearer(bench, job);
     case 'flatten':
       return flattener(bench, job);
   }
@@ -119,36 +123,43 @@ function warper({ arena, engine, kernels, scratch }: Bench, job: Extract<Job, { 
   const { rig, bandIndex, oversample } = job.setup;
   const frame = sensorFrame(rig, rig.camera.bands[bandIndex], oversample);
   const tables = radialTables(rig.lens, frame);
-  const { width, height, axisX, axisY } = frame;
-  const rows = (task: number): [number, number] => [
-    task * job.rowsPerTask,
-    Math.min(height, (task + 1) * job.rowsPerTask),
-  ];
-  if (engine === 'reference') {
-    const scene = arena.floats(job.sceneAt, width * height);
-    const out = arena.floats(job.outAt, width * height);
-    return (task) => {
-      warpRows(frame, tables, scene, out, ...rows(task));
-      return 0;
-    };
-  }
-  const request = scratch.allocate(WARP_REQUEST_BYTES);
-  writeWarpRequest(arena.memory, request, {
-    width,
-    height,
-    axisX,
-    axisY,
-    stepsPerSquare: tables.stepsPerSquare,
-    scale: scratch.doubles(tables.scale),
-    illumination: scratch.doubles(tables.illumination),
-    scene: job.sceneAt,
-    out: job.outAt,
-  });
+  const { width, height } = frame;
+  const warp = engine === 'simd' ? simdWarp() : referenceWarp();
   return (task) => {
-    if (tables.isIdentity) kernels.lightRows(request, ...rows(task));
-    else kernels.warpRows(request, ...rows(task));
+    const start = task * job.rowsPerTask;
+    const end = Math.min(height, start + job.rowsPerTask);
+    warp(start, end);
     return 0;
   };
+
+  function referenceWarp(): (start: number, end: number) => void {
+    const planes = job.planes.map(({ sceneAt, outAt }) => ({
+      scene: arena.floats(sceneAt, width * height),
+      out: arena.floats(outAt, width * height),
+    }));
+    return (start, end) => {
+      for (const { scene, out } of planes) warpRows(frame, tables, scene, out, start, end);
+    };
+  }
+
+  function simdWarp(): (start: number, end: number) => void {
+    const request = scratch.allocate(WARP_REQUEST_BYTES);
+    const { axisX, axisY } = frame;
+    writeWarpRequest(arena.memory, request, {
+      width,
+      height,
+      axisX,
+      axisY,
+      stepsPerSquare: tables.stepsPerSquare,
+      scale: scratch.doubles(tables.scale),
+      illumination: scratch.doubles(tables.illumination),
+      planes: job.planes,
+    });
+    return (start, end) => {
+      if (tables.isIdentity) kernels.lightRows(request, start, end);
+      else kernels.warpRows(request, start, end);
+    };
+  }
 }
 
 function sensorRows(arena: Arena, job: Extract<Job, { kind: 'expose' | 'develop' }>): RunTask {
@@ -167,26 +178,57 @@ function sensorRows(arena: Arena, job: Extract<Job, { kind: 'expose' | 'develop'
   };
 }
 
-function blurrer({ arena, engine, kernels, scratch }: Bench, job: Extract<Job, { kind: 'blur' }>): RunTask {
-  const { grid, columns } = job;
+function blurrer(bench: Bench, job: Extract<Job, { kind: 'blur' }>): RunTask {
+  const { columns, isDone } = job;
+  const blurColumn = columnBlur(bench, job);
+  return (task) => {
+    const { column, waitFor } = columns[task];
+    // columns that this one waits for stand earlier in the list, so some worker is at them
+    for (const other of waitFor) {
+      while (Atomics.load(isDone, other) === 0) {
+        if (bench.isStopped()) return 0;
+        Atomics.wait(isDone, other, 0, STOP_CHECK_MS);
+      }
+    }
+    blurColumn(column);
+    Atomics.store(isDone, column, 1);
+    Atomics.notify(isDone, column);
+    return 0;
+  };
+}
+
+/** How often a waiting worker looks whether the run was stopped. */
+const STOP_CHECK_MS = 50;
+
+function columnBlur(
+  { arena, engine, kernels, scratch }: Bench,
+  job: Extract<Job, { kind: 'blur' }>,
+): (column: number) => void {
+  const { grid } = job;
   const nodes = nodeKernels(arena, job);
   if (engine === 'simd') {
     const blur = new SimdBlur(kernels, scratch, nodes, job);
-    return (task) => {
-      blur.blurColumn(columns[task]);
-      return 0;
-    };
+    return (column) => blur.blurColumn(column);
   }
   const blur = new TileBlur(grid);
   const samples = grid.width * grid.height;
   const source = arena.floats(job.sourceAt, samples);
   const out = arena.floats(job.outAt, samples);
   const flat = arena.floats(job.flatAt, samples);
-  return (task) => {
+  return (column) => {
     for (let row = 0; row < grid.tilesY; row++) {
-      blur.blurTile(columns[task], row, source, out, nodes);
-      blur.blurOnes(columns[task], row, flat, nodes);
+      blur.blurTile(column, row, source, out, nodes);
+      blur.blurOnes(column, row, flat, nodes);
     }
+  };
+}
+
+function clearer({ kernels }: Bench, job: Extract<Job, { kind: 'clear' }>): RunTask {
+  const { width, height } = job.grid;
+  return (task) => {
+    const start = task * job.rowsPerTask;
+    const rows = Math.min(job.rowsPerTask, height - start);
+    for (const plane of job.planes) kernels.clear(plane + 4 * width * start, 4 * width * rows);
     return 0;
   };
 }

@@ -25,6 +25,7 @@ export function workBytes(kernels: Kernels, engine: Engine, job: Job): number {
     case 'expose':
     case 'develop':
     case 'flatten':
+    case 'clear':
       return 0;
   }
 }

@@ -4,6 +4,12 @@ import type { Rig } from '../optics/rig.js';
 import type { BlurGrid } from './blur-grid.js';
 import type { TileSpan } from './certificate.js';
 
+/** A column of tiles, and the columns whose results overlap with its own and must be there first. */
+export interface TileColumn {
+  column: number;
+  waitFor: number[];
+}
+
 /** What does the arithmetic: the compiled kernels, or plain TypeScript in float64, which they are held against. */
 export type Engine = 'simd' | 'reference';
 
@@ -49,8 +55,14 @@ export type Job =
       kernelsAt: number;
       tiles: [number, number][];
     }
-  /** Warp and illumination of a plane; a task some rows. */
-  | { kind: 'warp'; setup: BandSetup; sceneAt: number; outAt: number; rowsPerTask: number; count: number }
+  /** Warp and illumination of planes that are moved alike (of up to three bands); a task some rows. */
+  | {
+      kind: 'warp';
+      setup: BandSetup;
+      planes: { sceneAt: number; outAt: number }[];
+      rowsPerTask: number;
+      count: number;
+    }
   /** Raw numbers of the sensor from the light of all bands; a task some rows. */
   | {
       kind: 'expose';
@@ -69,7 +81,7 @@ export type Job =
       rowsPerTask: number;
       count: number;
     }
-  /** Blur of a plane, and of a plane of ones; a task a column of tiles. Columns of one job never write the same sample. */
+  /** Blur of a plane, and of a plane of ones; a task a column of tiles, in turns: see `columnsInTurns`. */
   | {
       kind: 'blur';
       grid: BlurGrid;
@@ -78,8 +90,12 @@ export type Job =
       sourceAt: number;
       outAt: number;
       flatAt: number;
-      columns: number[];
+      columns: TileColumn[];
+      /** For each column, 1 when it is done. */
+      isDone: Int32Array;
     }
+  /** Planes of the grid's size set to 0; a task some rows. */
+  | { kind: 'clear'; grid: BlurGrid; planes: number[]; rowsPerTask: number; count: number }
   /** Blurred picture over blurred ones; a task some rows. */
   | {
       kind: 'flatten';
@@ -108,6 +124,7 @@ export function taskCount(job: Job): number {
     case 'expose':
     case 'develop':
     case 'flatten':
+    case 'clear':
       return job.count;
   }
 }

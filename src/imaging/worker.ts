@@ -22,11 +22,12 @@ port.on('message', (message: JobMessage | 'end') => {
   const { job, count, control, results, engine } = message;
   let answer: JobAnswer = { ok: true };
   try {
+    const isStopped = () => Atomics.load(control, CONTROL.stop) !== 0;
     const scratch = new Scratch(memory, message.scratch.at, message.scratch.bytes);
-    const runTask = taskRunner({ arena, kernels, engine, scratch }, job);
+    const runTask = taskRunner({ arena, kernels, engine, scratch, isStopped }, job);
     for (;;) {
       const task = Atomics.add(control, CONTROL.next, 1);
-      if (task >= count || Atomics.load(control, CONTROL.stop) !== 0) break;
+      if (task >= count || isStopped()) break;
       results[task] = runTask(task);
       Atomics.add(control, CONTROL.done, 1);
     }

@@ -19,9 +19,27 @@ export class WarpRequest {
   /** float64 tables over the squared landed radius: ideal over landed radius, relative illumination. */
   scale: usize;
   illumination: usize;
-  /** float32 planes, row-major. */
-  scene: usize;
-  out: usize;
+  /** Number of planes, and for each the addresses of scene and result: float32, row-major. All are moved alike. */
+  planes: u32;
+  scene0: usize;
+  out0: usize;
+  scene1: usize;
+  out1: usize;
+  scene2: usize;
+  out2: usize;
+}
+
+/** Bytes from a plane's two addresses to the next plane's. */
+const PLANE: usize = 8;
+
+@inline
+function sceneOf(request: WarpRequest, plane: u32): usize {
+  return load<usize>(changetype<usize>(request) + <usize>plane * PLANE, offsetof<WarpRequest>('scene0'));
+}
+
+@inline
+function outOf(request: WarpRequest, plane: u32): usize {
+  return load<usize>(changetype<usize>(request) + <usize>plane * PLANE, offsetof<WarpRequest>('out0'));
 }
 
 /** Warp the rows from rowStart up to rowEnd, four samples at a time.
@@ -32,7 +50,7 @@ export class WarpRequest {
 export function warpRows(request: WarpRequest, rowStart: i32, rowEnd: i32): void {
   for (let row = rowStart; row < rowEnd; row++) {
     const y = <f64>row - request.axisY;
-    const out = request.out + (<usize>row * <usize>request.width << 2);
+    const start = <usize>row * <usize>request.width << 2;
     const y2 = y * y;
     let x = -request.axisX;
     let scale = curve(request, request.scale, x * x + y2);
@@ -43,18 +61,16 @@ export function warpRows(request: WarpRequest, rowStart: i32, rowEnd: i32): void
       const nextLight = curve(request, request.illumination, (x + 4) * (x + 4) + y2);
       const low = parabola(scale, nextScale, scaleAfter, f64x2(0, 0.25), f64x2(0, -0.09375));
       const high = parabola(scale, nextScale, scaleAfter, f64x2(0.5, 0.75), f64x2(-0.125, -0.09375));
-      const samples = fourSamples(
+      warpFour(
         request,
+        start + (<usize>column << 2),
+        request.width - column,
+        add(f32x4.splat(<f32>light), mul(f32x4(0, 0.25, 0.5, 0.75), f32x4.splat(<f32>(nextLight - light)))),
         place(request.axisX, f64x2.mul(low, f64x2.add(f64x2.splat(x), f64x2(0, 1)))),
         place(request.axisX, f64x2.mul(high, f64x2.add(f64x2.splat(x), f64x2(2, 3)))),
         place(request.axisY, f64x2.mul(low, f64x2.splat(y))),
         place(request.axisY, f64x2.mul(high, f64x2.splat(y))),
       );
-      const lights = add(
-        f32x4.splat(<f32>light),
-        mul(f32x4(0, 0.25, 0.5, 0.75), f32x4.splat(<f32>(nextLight - light))),
-      );
-      storeSome(out + (<usize>column << 2), request.width - column, mul(lights, samples));
       scale = nextScale;
       nextScale = scaleAfter;
       light = nextLight;
@@ -82,9 +98,13 @@ function place(axis: f64, distance: v128): v128 {
   return f64x2.add(f64x2.splat(axis), distance);
 }
 
-/** The scene at four places. */
+/** Up to four samples of every plane, from the scene at four places.
+ * @param to byte offset of the first in its plane
+ * @param count how many of the four lie inside the picture */
 @inline
-function fourSamples(request: WarpRequest, xLow: v128, xHigh: v128, yLow: v128, yHigh: v128): v128 {
+function warpFour(
+  request: WarpRequest, to: usize, count: i32, lights: v128, xLow: v128, xHigh: v128, yLow: v128, yHigh: v128,
+): void {
   const leftLow = f64x2.floor(xLow);
   const leftHigh = f64x2.floor(xHigh);
   const topLow = f64x2.floor(yLow);
@@ -100,7 +120,11 @@ function fourSamples(request: WarpRequest, xLow: v128, xHigh: v128, yLow: v128, 
     v128.and(f64x2.eq(topLow, f64x2.splat(<f64>(top + 1))), f64x2.eq(topHigh, f64x2.splat(<f64>(top + 1)))),
   );
   if (left < 0 || left + 7 > request.width || !i64x2.all_true(areNeighbours)) {
-    return fourApart(request, xLow, xHigh, yLow, yHigh);
+    for (let plane: u32 = 0; plane < request.planes; plane++) {
+      const samples = fourApart(request, sceneOf(request, plane), xLow, xHigh, yLow, yHigh);
+      storeSome(outOf(request, plane) + to, count, mul(lights, samples));
+    }
+    return;
   }
   const along = narrow(f64x2.sub(xLow, leftLow), f64x2.sub(xHigh, leftHigh));
   const down = narrow(f64x2.sub(yLow, topLow), f64x2.sub(yHigh, topHigh));
@@ -108,11 +132,19 @@ function fourSamples(request: WarpRequest, xLow: v128, xHigh: v128, yLow: v128, 
   const a1 = keys1(along);
   const a2 = keys2(along);
   const a3 = keys3(along);
-  const start = request.scene + (<usize>left << 2);
-  let sum = mul(keys0(down), filterRow(start + rowBytes(request, top), a0, a1, a2, a3));
-  sum = add(sum, mul(keys1(down), filterRow(start + rowBytes(request, top + 1), a0, a1, a2, a3)));
-  sum = add(sum, mul(keys2(down), filterRow(start + rowBytes(request, top + 2), a0, a1, a2, a3)));
-  return add(sum, mul(keys3(down), filterRow(start + rowBytes(request, top + 3), a0, a1, a2, a3)));
+  const start = <usize>left << 2;
+  const row0 = start + rowBytes(request, top);
+  const row1 = start + rowBytes(request, top + 1);
+  const row2 = start + rowBytes(request, top + 2);
+  const row3 = start + rowBytes(request, top + 3);
+  for (let plane: u32 = 0; plane < request.planes; plane++) {
+    const scene = sceneOf(request, plane);
+    let sum = mul(keys0(down), filterRow(scene + row0, a0, a1, a2, a3));
+    sum = add(sum, mul(keys1(down), filterRow(scene + row1, a0, a1, a2, a3)));
+    sum = add(sum, mul(keys2(down), filterRow(scene + row2, a0, a1, a2, a3)));
+    sum = add(sum, mul(keys3(down), filterRow(scene + row3, a0, a1, a2, a3)));
+    storeSome(outOf(request, plane) + to, count, mul(lights, sum));
+  }
 }
 
 /** Byte offset of a row; past the frame its edge goes on. */
@@ -159,11 +191,11 @@ function narrow(low: v128, high: v128): v128 {
   return lowHalves(f32x4.demote_f64x2_zero(low), f32x4.demote_f64x2_zero(high));
 }
 
-function fourApart(request: WarpRequest, xLow: v128, xHigh: v128, yLow: v128, yHigh: v128): v128 {
-  let samples = f32x4.splat(cubicSample(request, f64x2.extract_lane(xLow, 0), f64x2.extract_lane(yLow, 0)));
-  const second = cubicSample(request, f64x2.extract_lane(xLow, 1), f64x2.extract_lane(yLow, 1));
-  const third = cubicSample(request, f64x2.extract_lane(xHigh, 0), f64x2.extract_lane(yHigh, 0));
-  const fourth = cubicSample(request, f64x2.extract_lane(xHigh, 1), f64x2.extract_lane(yHigh, 1));
+function fourApart(request: WarpRequest, scene: usize, xLow: v128, xHigh: v128, yLow: v128, yHigh: v128): v128 {
+  let samples = f32x4.splat(cubicSample(request, scene, f64x2.extract_lane(xLow, 0), f64x2.extract_lane(yLow, 0)));
+  const second = cubicSample(request, scene, f64x2.extract_lane(xLow, 1), f64x2.extract_lane(yLow, 1));
+  const third = cubicSample(request, scene, f64x2.extract_lane(xHigh, 0), f64x2.extract_lane(yHigh, 0));
+  const fourth = cubicSample(request, scene, f64x2.extract_lane(xHigh, 1), f64x2.extract_lane(yHigh, 1));
   samples = f32x4.replace_lane(samples, 1, second);
   samples = f32x4.replace_lane(samples, 2, third);
   return f32x4.replace_lane(samples, 3, fourth);
@@ -192,7 +224,9 @@ export function lightRows(request: WarpRequest, rowStart: i32, rowEnd: i32): voi
       const place = (x * x + y * y) * request.stepsPerSquare;
       const step = <u32>place;
       const light = between(request.illumination, step, place - <f64>step);
-      store<f32>(request.out + at, <f32>light * load<f32>(request.scene + at));
+      for (let plane: u32 = 0; plane < request.planes; plane++) {
+        store<f32>(outOf(request, plane) + at, <f32>light * load<f32>(sceneOf(request, plane) + at));
+      }
     }
   }
 }
@@ -207,17 +241,17 @@ function between(table: usize, step: u32, part: f64): f64 {
 
 /** The scene at (x, y); past its frame its edge goes on. */
 @inline
-function cubicSample(request: WarpRequest, x: f64, y: f64): f32 {
+function cubicSample(request: WarpRequest, scene: usize, x: f64, y: f64): f32 {
   const left = Math.floor(x);
   const top = Math.floor(y);
   const column = <i32>left - 1;
   const row = <i32>top - 1;
   const along = keysWeights(<f32>(x - left));
   const down = keysWeights(<f32>(y - top));
-  let sum = mul(f32x4.splat(f32x4.extract_lane(down, 0)), four(request, row, column));
-  sum = add(sum, mul(f32x4.splat(f32x4.extract_lane(down, 1)), four(request, row + 1, column)));
-  sum = add(sum, mul(f32x4.splat(f32x4.extract_lane(down, 2)), four(request, row + 2, column)));
-  sum = add(sum, mul(f32x4.splat(f32x4.extract_lane(down, 3)), four(request, row + 3, column)));
+  let sum = mul(f32x4.splat(f32x4.extract_lane(down, 0)), four(request, scene, row, column));
+  sum = add(sum, mul(f32x4.splat(f32x4.extract_lane(down, 1)), four(request, scene, row + 1, column)));
+  sum = add(sum, mul(f32x4.splat(f32x4.extract_lane(down, 2)), four(request, scene, row + 2, column)));
+  sum = add(sum, mul(f32x4.splat(f32x4.extract_lane(down, 3)), four(request, scene, row + 3, column)));
   const products = mul(sum, along);
   const halves = add(products, v128.shuffle<f32>(products, products, 2, 3, 0, 1));
   return f32x4.extract_lane(halves, 0) + f32x4.extract_lane(halves, 1);
@@ -234,9 +268,9 @@ function keysWeights(f: f32): v128 {
 
 /** Samples column ... column + 3 of a row. */
 @inline
-function four(request: WarpRequest, row: i32, column: i32): v128 {
+function four(request: WarpRequest, scene: usize, row: i32, column: i32): v128 {
   const width = request.width;
-  const start = request.scene + (<usize>clamp(row, request.height) * <usize>width << 2);
+  const start = scene + rowBytes(request, row);
   if (column >= 0 && column + 4 <= width) return v128.load(start + (<usize>column << 2));
   return fourAtEdge(start, width, column);
 }

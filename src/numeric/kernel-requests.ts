@@ -31,7 +31,7 @@ export function writePsfRequest(memory: WebAssembly.Memory, at: number, request:
   new Uint32Array(memory.buffer, at + 72, 6).set([ones, scratch, side, columnOffsets, rowOfPosition, out]);
 }
 
-/** A warp of one plane; see `src/kernels/warp.ts`. */
+/** A warp of planes; see `src/kernels/warp.ts`. */
 export interface WarpRequest {
   width: number;
   height: number;
@@ -40,16 +40,23 @@ export interface WarpRequest {
   stepsPerSquare: number;
   scale: number;
   illumination: number;
-  scene: number;
-  out: number;
+  /** One to MOST_WARP_PLANES planes that are moved alike. */
+  planes: readonly { sceneAt: number; outAt: number }[];
 }
 
-export const WARP_REQUEST_BYTES = 48;
+export const MOST_WARP_PLANES = 3;
+export const WARP_REQUEST_BYTES = 72;
 
 /** Write a warp's block at `at`. */
 export function writeWarpRequest(memory: WebAssembly.Memory, at: number, request: WarpRequest): void {
-  const { width, height, axisX, axisY, stepsPerSquare, scale, illumination, scene, out } = request;
+  const { width, height, axisX, axisY, stepsPerSquare, scale, illumination, planes } = request;
   new Int32Array(memory.buffer, at, 2).set([width, height]);
   new Float64Array(memory.buffer, at + 8, 3).set([axisX, axisY, stepsPerSquare]);
-  new Uint32Array(memory.buffer, at + 32, 4).set([scale, illumination, scene, out]);
+  const addresses = planes.flatMap(({ sceneAt, outAt }) => [sceneAt, outAt]);
+  new Uint32Array(memory.buffer, at + 32, 3 + addresses.length).set([
+    scale,
+    illumination,
+    planes.length,
+    ...addresses,
+  ]);
 }
