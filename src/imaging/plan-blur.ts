@@ -171,7 +171,7 @@ async function chooseTile(
     const allowedPx = await largestTile(crew, task, order, tolerance, watch);
     const candidate = cheapestTile(task, order, allowedPx);
     if (best === undefined || candidate.cost < best.cost) best = { ...candidate, order };
-    if (allowedPx > 1.5 * kernelPx) break; // higher orders pay only where tiles are small against the kernel
+    if (allowedPx > 1.5 * task.kernelPx) break; // higher orders pay only where tiles are small against the kernel
   }
   return best as { tilePx: number; order: number };
 }
