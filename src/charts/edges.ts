@@ -1,4 +1,5 @@
 /** Slanted edges: dark squares whose sides run along and across the radius, each turned a little. */
+import { againstRadius } from './against-radius.js';
 import { type Drawn, drawShape } from './draw.js';
 import type { SettledChoices } from './options.js';
 import { patchPlaces } from './patches.js';
@@ -52,11 +53,4 @@ function edgeAt(
     angleDeg: tidy(angleToPixels(normalDeg)),
     roomPx: tidy(half),
   };
-}
-
-/** Whether a direction lies nearer to the radius than to its perpendicular, and by how much it is off: -45 to 45 degrees. */
-export function againstRadius(normalDeg: number, azimuthDeg: number): { isAlong: boolean; offDeg: number } {
-  const turn = wholeTurn(normalDeg - azimuthDeg);
-  const quarters = Math.round(turn / 90);
-  return { isAlong: quarters % 2 === 0, offDeg: turn - 90 * quarters };
 }

@@ -1,5 +1,6 @@
 /** The edge spread function: the light as a function of the distance from the edge, four samples a pixel. */
 import { polynomialAt } from '../numeric/polynomial-fit.js';
+import { SplineFit } from '../numeric/spline-fit.js';
 import type { EdgeCurve } from './edge-line.js';
 import type { Strip } from './strip.js';
 
@@ -11,19 +12,19 @@ export interface EdgeSpread {
   values: Float64Array;
   /** Index of distance 0. */
   middle: number;
-  /** Bins without a pixel, filled from their neighbours. */
-  emptyBins: number;
   /** RMS of the single pixels about the function, where it is flat. */
   noise: number;
-  /** Mean light of the outer quarters on the dark and on the bright side. */
+  /** Mean light of the outermost quarter of the dark and on the bright side. */
   dark: number;
   bright: number;
 }
 
 /** Project every pixel of the strip along the edge.
  *
- * The distance is that of the pixel from the nearest point of the curve; pixels whose nearest point lies within `rows` of the edge's middle count.
- * A bin's mean light is moved from the mean distance of its pixels to the middle of the bin along the function's slope.
+ * The distance is that of the pixel from the nearest point of the curve; pixels whose nearest point lies within `halfRows` of the edge's middle
+ * count. The function is the cubic spline with four knots a pixel that lies nearest to all of them. Means of quarter-pixel bins, the
+ * usual way, depend on where in their bins the pixels happen to stand: at edges whose slope is a simple fraction, such as 1/6 (9.46
+ * degrees), that makes errors of 0.02 of the response of a sharp edge, which the spline does not have.
  * @param halfWidthPx distances up to this one
  * @param halfRows    rows of the curve on either side of its middle
  */
@@ -34,11 +35,9 @@ export function edgeSpread(
   halfRows: number,
 ): EdgeSpread {
   const middle = Math.floor(halfWidthPx * OVERSAMPLING);
-  const bins = 2 * middle + 1;
-  const count = new Float64Array(bins);
-  const sum = new Float64Array(bins);
-  const offset = new Float64Array(bins);
-  const square = new Float64Array(bins);
+  const steps = 2 * middle;
+  const spline = new SplineFit(steps);
+  const bins = new BinSums(steps);
   const { values, width, height, uFrom, vFrom } = strip;
   const foot = new Float64Array(2);
   for (let row = 0; row < height; row++) {
@@ -46,27 +45,15 @@ export function edgeSpread(
       nearestPoint(curve, uFrom + column, vFrom + row, foot);
       if (Math.abs(foot[1] - curve.v0) > halfRows) continue;
       const place = foot[0] * curve.polarity * OVERSAMPLING + middle;
-      const bin = Math.round(place);
-      if (bin < 0 || bin >= bins) continue;
+      if (place < 0 || place > steps) continue;
       const value = values[row * width + column];
-      count[bin]++;
-      sum[bin] += value;
-      square[bin] += value * value;
-      offset[bin] += place - bin;
+      spline.add(place, value);
+      bins.add(place, value);
     }
   }
-  const { means, emptyBins } = binMeans(count, sum, offset);
-  const quarter = bins >> 3;
-  const mean = (from: number) =>
-    means.subarray(from, from + quarter).reduce((total, value) => total + value, 0) / quarter;
-  return {
-    values: means,
-    middle,
-    emptyBins,
-    noise: flatNoise(count, sum, square),
-    dark: mean(0),
-    bright: mean(bins - quarter),
-  };
+  const light = spline.valuesAtKnots();
+  const flats = bins.flats();
+  return { values: withoutShading(light, middle, flats), middle, ...flats };
 }
 
 /** Signed distance from the curve, + toward +u, and the row of the nearest point, by Newton's method for the foot of the normal: the zero of
@@ -86,40 +73,74 @@ function nearestPoint({ c, v0, halfRows }: EdgeCurve, u: number, v: number, out:
   out[1] = s;
 }
 
-function binMeans(
-  count: Float64Array,
-  sum: Float64Array,
-  offset: Float64Array,
-): { means: Float64Array; emptyBins: number } {
-  const raw = Float64Array.from(sum, (value, bin) => value / count[bin]);
-  let emptyBins = 0;
-  for (let bin = 0; bin < raw.length; bin++) {
-    if (count[bin] > 0) continue;
-    emptyBins++;
-    let left = bin - 1;
-    while (left >= 0 && count[left] === 0) left--;
-    let right = bin + 1;
-    while (right < raw.length && count[right] === 0) right++;
-    const part = (bin - left) / (right - left);
-    raw[bin] =
-      left < 0 ? raw[right] : right === raw.length ? raw[left] : raw[left] + part * (raw[right] - raw[left]);
-  }
-  const means = Float64Array.from(raw, (value, bin) => {
-    if (count[bin] === 0 || bin === 0 || bin === raw.length - 1) return value;
-    return value - ((raw[bin + 1] - raw[bin - 1]) / 2) * (offset[bin] / count[bin]);
-  });
-  return { means, emptyBins };
+/** Take out light that falls off across the edge.
+ *
+ * Fall-off is a share of the light, so it tilts the bright side more than the dark one, by bright / dark, while the skirts of a blur tilt both
+ * alike. So the difference of the two sides' tilts over their difference of light is the fall-off alone.
+ */
+function withoutShading(
+  values: Float64Array,
+  middle: number,
+  { dark, bright }: Pick<EdgeSpread, 'dark' | 'bright'>,
+): Float64Array {
+  const outer = values.length >> 2;
+  const tilt = (from: number) => {
+    const centre = from + (outer - 1) / 2;
+    let moment = 0;
+    let square = 0;
+    for (let k = from; k < from + outer; k++) {
+      moment += values[k] * (k - centre);
+      square += (k - centre) ** 2;
+    }
+    return moment / square;
+  };
+  const share = (tilt(values.length - outer) - tilt(0)) / (bright - dark);
+  return values.map((value, k) => value / (1 + share * (k - middle)));
 }
 
-/** RMS deviation of pixels from the mean of their bin, over the outer halves of both sides. */
-function flatNoise(count: Float64Array, sum: Float64Array, square: Float64Array): number {
-  let squares = 0;
-  let free = 0;
-  const quarter = count.length >> 2;
-  for (let bin = 0; bin < count.length; bin++) {
-    if ((bin >= quarter && bin < count.length - quarter) || count[bin] < 2) continue;
-    squares += Math.max(0, square[bin] - (sum[bin] * sum[bin]) / count[bin]);
-    free += count[bin] - 1;
+/** Sums over quarter-pixel bins, for what the flat parts on either side of the edge show. */
+class BinSums {
+  readonly #count: Float64Array;
+  readonly #sum: Float64Array;
+  readonly #square: Float64Array;
+
+  constructor(bins: number) {
+    this.#count = new Float64Array(bins);
+    this.#sum = new Float64Array(bins);
+    this.#square = new Float64Array(bins);
   }
-  return free === 0 ? 0 : Math.sqrt(squares / free);
+
+  add(place: number, value: number): void {
+    const bin = Math.min(this.#count.length - 1, Math.floor(place));
+    this.#count[bin]++;
+    this.#sum[bin] += value;
+    this.#square[bin] += value * value;
+  }
+
+  /** Light of the outer eighths, and the RMS deviation of pixels from the mean of their bin over the outer quarters. */
+  flats(): { dark: number; bright: number; noise: number } {
+    const bins = this.#count.length;
+    const level = (from: number, to: number) => {
+      let sum = 0;
+      let count = 0;
+      for (let bin = from; bin < to; bin++) {
+        sum += this.#sum[bin];
+        count += this.#count[bin];
+      }
+      return sum / count;
+    };
+    let squares = 0;
+    let free = 0;
+    for (let bin = 0; bin < bins; bin++) {
+      const count = this.#count[bin];
+      if ((bin >= bins >> 2 && bin < bins - (bins >> 2)) || count < 2) continue;
+      squares += Math.max(0, this.#square[bin] - this.#sum[bin] ** 2 / count);
+      free += count - 1;
+    }
+    return {
+      dark: level(0, bins >> 3),
+      bright: level(bins - (bins >> 3), bins),
+      noise: free === 0 ? 0 : Math.sqrt(squares / free),
+    };
+  }
 }

@@ -5,7 +5,7 @@ import { polynomialAt } from '../numeric/polynomial-fit.js';
 import { type EdgeCurve, fitEdge } from './edge-line.js';
 import { type EdgeSpread, edgeSpread } from './edge-spread.js';
 import type { PixelRect, Plane } from './plane.js';
-import { edgeWidthPx, halfFrequency, lineSpread, sfrAt } from './sfr.js';
+import { edgeWidthPx, lineSpread, sfrAt } from './sfr.js';
 import { cutStrip, type EdgeGuess, fromStrip, type Strip } from './strip.js';
 
 /** What one edge shows. */
@@ -23,7 +23,6 @@ export interface MeasuredEdge {
   to: [x: number, y: number];
   /** Spatial frequency response at a frequency in cycles a pixel along the normal. */
   sfr: (cyclesPerPixel: number) => number;
-  sfr50CyclesPerPixel: number | null;
   /** 10 to 90 % of the step, along the normal. */
   edgeWidthPx: number | null;
   dark: number;
@@ -90,12 +89,10 @@ export function measureEdge(
   refuseStraight(angleDeg, ends.lengthPx);
   const spread = edgeSpread(strip, curve, guess.halfWidthPx, wholeCycles(curve));
   const line = lineSpread(spread);
-  const sfr = (cyclesPerPixel: number) => sfrAt(line, cyclesPerPixel);
   return {
     ...ends,
     angleDeg,
-    sfr,
-    sfr50CyclesPerPixel: halfFrequency(sfr),
+    sfr: (cyclesPerPixel) => sfrAt(line, cyclesPerPixel),
     edgeWidthPx: edgeWidthPx(spread),
     dark: spread.dark,
     bright: spread.bright,

@@ -12,4 +12,5 @@ export { formatOf, PICTURE_EXTENSIONS, type PictureFormat } from './formats.js';
 export { limitPictureThreads } from './library.js';
 export { MAX_MEGAPIXELS } from './open.js';
 export { type AllocatePlanes, checkPicture, type Picture, sharedPlanes } from './picture.js';
+export { type PngEncoding, pngEncoding } from './png-encoding.js';
 export { type ReadOptions, readScene, type Scene } from './read.js';
