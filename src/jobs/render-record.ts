@@ -1,10 +1,13 @@
 /** How a picture was made. */
+import { basename } from 'node:path';
 import type { RawLevels } from '../camera/converter.js';
 import type { FormedImage } from '../imaging/form-image.js';
 import type { Raster } from '../imaging/raster.js';
 import { colourWarnings, fieldWarning, lensWarnings } from '../optics/limits.js';
 import type { Rig } from '../optics/rig.js';
-import type { Settings } from './render-options.js';
+import type { RenderOptions, Settings } from './render-options.js';
+
+type PictureOutputs = Pick<RenderOptions, 'out' | 'raw' | 'linear'>;
 
 export interface RenderRecord {
   foreglass: string;
@@ -15,6 +18,8 @@ export interface RenderRecord {
   oversample: number;
   image: { width: number; height: number; bands: string[] };
   accuracy: { blendBound: number; energyOutsideKernel: number; cells: [number, number]; kernelPx: number };
+  /** The pictures written, without their folders, and how light became numbers; left out where none was. */
+  files?: { out?: { name: string; encoding: 'srgb' | 'linear' }; raw?: { name: string } };
   /** What the raw numbers mean, where `raw` was asked for. */
   rawLevels?: { blackLevel: number; whiteLevel: number; sceneWhite: number; gainDnPerE: number };
   /** `total` leaves out decode and encode. */
@@ -34,6 +39,15 @@ export interface RenderResult {
   record: RenderRecord;
   /** The recorded picture in linear light, one plane a band; not clipped where there is noise. */
   picture: Raster;
+}
+
+/** The pictures that a job writes, for its record. */
+export function recordedFiles({ out, raw, linear }: PictureOutputs): RenderRecord['files'] {
+  if (out === undefined && raw === undefined) return undefined;
+  return {
+    out: out === undefined ? undefined : { name: basename(out), encoding: linear ? 'linear' : 'srgb' },
+    raw: raw === undefined ? undefined : { name: basename(raw) },
+  };
 }
 
 /** What the raw numbers of a picture mean, for its record. */

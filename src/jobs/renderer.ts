@@ -22,7 +22,13 @@ import type { Raster } from '../imaging/raster.js';
 import { recordImage } from '../imaging/record-image.js';
 import { VERSION } from '../version.js';
 import { checkOutputs, type RenderOptions, type Settings, settle, settleCrew } from './render-options.js';
-import { type RenderRecord, type RenderResult, recordedLevels, warningsFor } from './render-record.js';
+import {
+  type RenderRecord,
+  type RenderResult,
+  recordedFiles,
+  recordedLevels,
+  warningsFor,
+} from './render-record.js';
 
 /** Renders pictures one after another. Worker threads and memory are kept from one picture to the next, and so are the PSFs while
  * lens, sensor and mount stay the same. Close it when done: until then the process does not end. */
@@ -84,6 +90,7 @@ export class Renderer {
       oversample,
       image: { width, height, bands: rig.camera.bands.map(({ name }) => name) },
       accuracy: formed.accuracy,
+      files: recordedFiles(options),
       rawLevels: options.raw === undefined ? undefined : recordedLevels(recorded.levels),
       seconds: { ...seconds, warp, blur, camera, encode: 0, total: seconds.psf + warp + blur + camera },
       warnings: [...scene.warnings, ...warningsFor(settings, formed.accuracy)],
