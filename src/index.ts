@@ -1,8 +1,46 @@
 /** The library's public face: everything that a command does can be called from code. */
 export { type Fault, formatFault, InputError, InterruptedError, RunError } from './errors.js';
+export { loadPrescription } from './files/load-prescription.js';
 export { loadCameraPart, loadLensPart, loadRig, parseRig, type RigOverrides } from './files/load-rig.js';
 export { resultData } from './files/result-data.js';
 export type { Raster } from './imaging/raster.js';
+export {
+  type BarTruth,
+  type ChartChoices,
+  type ChartKind,
+  type ChartOptions,
+  type ChartPlace,
+  type ChartResult,
+  type ChartTruth,
+  type CornerTruth,
+  chart,
+  type DotTruth,
+  type EdgeTruth,
+  type Modulation,
+  type SectorTruth,
+} from './jobs/chart.js';
+export {
+  type DeriveOptions,
+  type DeriveReport,
+  type DeriveResult,
+  derive,
+  type Prescription,
+} from './jobs/derive.js';
+export {
+  type DistortionFigures,
+  type DotFigures,
+  type EdgeFigures,
+  type FlatFigures,
+  type FlatReport,
+  type LateralColourFigures,
+  type MeasureOptions,
+  type MeasureReport,
+  measure,
+  type PixelRect,
+  type RadialFigures,
+  type SfrValue,
+  type Skipped,
+} from './jobs/measure.js';
 export { type RenderOptions, type RenderRecord, type RenderResult, render } from './jobs/render.js';
 export { Renderer } from './jobs/renderer.js';
 export { type StartOptions, type StartRecord, start } from './jobs/start.js';

@@ -3,7 +3,9 @@ import { Command, CommanderError } from 'commander';
 import { VERSION } from '../version.js';
 import { chartCommand } from './chart.js';
 import { GROUP, grouped } from './common-options.js';
+import { deriveCommand } from './derive.js';
 import { DEBUG_VARIABLE, describeFailure, EXIT } from './failure.js';
+import { measureCommand } from './measure.js';
 import { renderCommand } from './render.js';
 import { startCommand } from './start.js';
 import { zonesCommand } from './zones.js';
@@ -31,7 +33,7 @@ Example:
 Exit status: 0 done, 1 done but the task is not met, 2 the input is wrong,
 3 the run failed, 130 interrupted.`,
     );
-  for (const command of [startCommand(), renderCommand(), zonesCommand(), chartCommand()]) {
+  for (const command of [startCommand(), renderCommand(), zonesCommand(), deriveCommand(), chartCommand()]) {
     program.addCommand(
       command
         .addHelpOption(grouped(GROUP.running, '-h, --help', 'print this help'))

@@ -12,7 +12,18 @@ export async function writeData(path: string, result: unknown): Promise<void> {
 
 /** The text of such a file. */
 export function dataText(path: string, result: unknown): string {
-  return path.toLowerCase().endsWith('.json') ? jsonText(result) : stringify(resultData(result));
+  return path.toLowerCase().endsWith('.json') ? jsonText(result) : yamlText(result);
+}
+
+/** A result as YAML with the keys of `resultData`; wavelengths as keys come in rising order. */
+export function yamlText(result: unknown): string {
+  return stringify(resultData(result), { sortMapEntries: byNumber });
+}
+
+/** Numbers rise, all else stays where it is: JavaScript puts 450 before 1 and both before 587.5618. */
+function byNumber({ key: a }: { key: unknown }, { key: b }: { key: unknown }): number {
+  const [x, y] = [a, b].map((key) => Number(Object(key).value ?? key));
+  return Number.isFinite(x) && Number.isFinite(y) ? x - y : 0;
 }
 
 /** A result as JSON with the keys of `resultData`. */

@@ -35,6 +35,14 @@ export interface DeriveOptions {
   bestFit?: boolean;
 }
 
+/** What one surface adds to the sums. */
+export interface SurfaceSums extends SeidelSums {
+  /** Counted from 1. */
+  surface: number;
+  /** The stop lies here. */
+  stop?: true;
+}
+
 export interface Derivation {
   /** For a rig: with the coefficients of each wavelength and, as relative illumination, what exact rays say.
    */
@@ -45,7 +53,7 @@ export interface Derivation {
   /** The terms that the sums give, whatever the method. */
   wavesOfSums: Waves;
   seidelMm: SeidelSums;
-  surfaces: readonly ({ surface: number } & SeidelSums)[];
+  surfaces: readonly SurfaceSums[];
   explained: readonly Explained[];
   warnings: readonly string[];
 }
@@ -73,7 +81,11 @@ export function deriveLens(prescription: Prescription, options: DeriveOptions = 
     method: fitted ? 'best fit' : 'sums',
     wavesOfSums: thirdOrderWaves(model, model.reference),
     seidelMm: total,
-    surfaces: surfaces.map((sums, i) => ({ surface: i + 1, ...sums })),
+    surfaces: surfaces.map((sums, i) => ({
+      surface: i + 1,
+      ...(i === model.reference.system.stop && { stop: true as const }),
+      ...sums,
+    })),
     explained,
     warnings: [...modelWarnings(model, options.wavelengthsNm ?? []), ...explainedWarnings(explained, fitted)],
   };

@@ -41,6 +41,12 @@ export function significant(value: number, digits: number): string {
   return String(Number(value.toPrecision(digits)));
 }
 
+/** The decimals with which the largest of some numbers shows so many digits: at most 9. */
+export function decimalsFor(largest: number, digits: number): number {
+  if (!(largest > 0)) return 0;
+  return Math.min(9, Math.max(0, digits - 1 - Math.floor(Math.log10(largest))));
+}
+
 /** Lay out tables below one another: the `lead` columns begin each, and the groups follow as long as `width` lasts.
  * @returns tables, each as its lines; every table has the rows in the same order
  */
