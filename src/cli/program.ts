@@ -33,7 +33,14 @@ Example:
 Exit status: 0 done, 1 done but the task is not met, 2 the input is wrong,
 3 the run failed, 130 interrupted.`,
     );
-  for (const command of [startCommand(), renderCommand(), zonesCommand(), deriveCommand(), chartCommand()]) {
+  for (const command of [
+    startCommand(),
+    renderCommand(),
+    zonesCommand(),
+    deriveCommand(),
+    chartCommand(),
+    measureCommand(),
+  ]) {
     program.addCommand(
       command
         .addHelpOption(grouped(GROUP.running, '-h, --help', 'print this help'))

@@ -26,7 +26,12 @@ export const DOT_LIMITS = {
 
 /** The outer part of the room is taken for ground. */
 const GROUND_SHARE = 0.75;
-const MOST_STEPS = 20;
+/** Blur reaches no farther from the disc than this; each pixel more would add noise and no light of the disc. */
+const BLUR_PX = 10;
+/** Width of the circle's soft rim: pixels come in and go out by degrees as the circle moves, so that it comes to rest. */
+const RIM_PX = 2;
+const MOST_STEPS = 30;
+const LEAST_STEP_PX = 1e-3;
 
 /** The centroid of the darkness, 1 - light / ground, over a circle around the disc; the ground is a plane through the ring around it, so that
  * light that falls off across the disc does not move the result. The circle follows the centroid.
@@ -34,7 +39,7 @@ const MOST_STEPS = 20;
  */
 export function measureDot(plane: Plane, guess: DotGuess): [x: number, y: number] {
   const { radiusPx, roomPx } = guess;
-  const innerPx = Math.max(radiusPx + 1, GROUND_SHARE * roomPx);
+  const innerPx = Math.min(Math.max(radiusPx + 1, GROUND_SHARE * roomPx), radiusPx + BLUR_PX);
   if (roomPx - radiusPx < DOT_LIMITS.groundPx)
     throw new InputError({
       message: 'the disc has too little ground around it',
@@ -49,12 +54,12 @@ export function measureDot(plane: Plane, guess: DotGuess): [x: number, y: number
     refuseUnlikely(plane, dark, ground, guess, x, y);
     const moved = Math.hypot(dark.x - x, dark.y - y);
     [x, y] = [dark.x, dark.y];
-    if (moved < 1e-3) return [x, y];
+    if (moved < LEAST_STEP_PX) return [x, y];
     if (step === MOST_STEPS)
       throw new InputError({
         message: 'shows no disc',
-        found: `a centroid that still moves by ${moved.toFixed(2)} px after ${MOST_STEPS} steps`,
-        allowed: 'less than 0.001 px',
+        found: `a centroid that still moves by ${moved.toPrecision(2)} px after ${MOST_STEPS} steps`,
+        allowed: `less than ${LEAST_STEP_PX} px`,
       });
   }
 }
@@ -101,10 +106,11 @@ function darkness(
   let momentY = 0;
   forCircle(plane, x0, y0, radiusPx, (dx, dy, value) => {
     const dark = 1 - value / (base + slopeX * dx + slopeY * dy);
-    area += dark;
+    const weighted = dark * Math.min(1, (radiusPx - Math.hypot(dx, dy)) / RIM_PX);
+    area += weighted;
     most = Math.max(most, dark);
-    momentX += dark * dx;
-    momentY += dark * dy;
+    momentX += weighted * dx;
+    momentY += weighted * dy;
   });
   return { area, most, x: x0 + momentX / area, y: y0 + momentY / area };
 }
