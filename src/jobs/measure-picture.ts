@@ -3,10 +3,8 @@ import { basename, extname } from 'node:path';
 import { InputError } from '../errors.js';
 import { loadRecord, type PictureRecord } from '../files/load-record.js';
 import { checkPicture, type Picture, pngEncoding, readScene } from '../files/pictures/index.js';
+import type { Encoding } from '../measure/figures.js';
 import type { Rig } from '../optics/rig.js';
-
-/** How the numbers of a picture stand for light. */
-export type Encoding = 'linear' | 'srgb' | 'raw';
 
 export interface MeasuredPicture {
   picture: Picture;

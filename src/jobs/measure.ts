@@ -6,25 +6,21 @@ import { loadTruth } from '../files/load-truth.js';
 import type { Picture } from '../files/pictures/index.js';
 import { type BandPlane, chartDots } from '../measure/dots.js';
 import { chartEdges, type EdgeSetting, regionEdge } from '../measure/edges.js';
-import type {
-  DistortionFigures,
-  DotFigures,
-  EdgeFigures,
-  LateralColourFigures,
-  RadialFigures,
-  Skipped,
-} from '../measure/figures.js';
-import { type FlatFigures, flatField } from '../measure/flat-field.js';
+import type { MeasureReport } from '../measure/figures.js';
+import { flatField } from '../measure/flat-field.js';
 import { opticalFrame } from '../measure/optical-frame.js';
 import type { PixelRect } from '../measure/plane.js';
 import type { Rig } from '../optics/rig.js';
-import { type Encoding, readMeasured } from './measure-picture.js';
+import { readMeasured } from './measure-picture.js';
 
 export type {
   DistortionFigures,
   DotFigures,
   EdgeFigures,
+  Encoding,
+  FlatReport,
   LateralColourFigures,
+  MeasureReport,
   RadialFigures,
   SfrValue,
   Skipped,
@@ -52,31 +48,6 @@ export interface MeasureOptions {
   /** The same in line pairs a mm; needs a rig, a record or a truth for the pitch. */
   lpPerMm?: readonly number[];
   signal?: AbortSignal;
-}
-
-/** Flat regions in the order asked for, each in all bands. */
-export interface FlatReport extends FlatFigures {
-  region: PixelRect;
-  band: string;
-}
-
-export interface MeasureReport {
-  /** Name of the file; null for a picture from memory. */
-  image: string | null;
-  encoding: Encoding;
-  pixels: [width: number, height: number];
-  /** Kind of the chart; null without a truth. */
-  chart: string | null;
-  /** Of a chart: edges of the truth, then of the regions, band by band. */
-  edges: EdgeFigures[];
-  dots: DotFigures[];
-  distortion: DistortionFigures[];
-  lateralColour: LateralColourFigures[];
-  radialFit: RadialFigures[];
-  flats: FlatReport[];
-  /** Parts of the chart that could not be measured, with the reason. */
-  skipped: Skipped[];
-  warnings: string[];
 }
 
 const DEFAULT_FREQUENCIES = Array.from({ length: 10 }, (_, i) => (i + 1) / 20);

@@ -1,6 +1,8 @@
 /** What a measurement gives out. Places are in pixels of the picture, pixel (0, 0) having its middle at (0, 0); angles in degrees from +x toward
  * +y. Frequencies count along the normal of an edge; along the rows of pixels such a frequency is f cos(angle_deg). */
 import type { Modulation } from '../charts/truth.js';
+import type { FlatFigures } from './flat-field.js';
+import type { PixelRect } from './plane.js';
 
 export interface SfrValue {
   cyclesPerPixel: number;
@@ -90,4 +92,32 @@ export interface Skipped {
   y: number;
   band: string;
   reason: string;
+}
+
+/** Flat regions in the order asked for, each in all bands. */
+export interface FlatReport extends FlatFigures {
+  region: PixelRect;
+  band: string;
+}
+
+/** How the numbers of a picture stand for light. */
+export type Encoding = 'linear' | 'srgb' | 'raw';
+
+export interface MeasureReport {
+  /** Name of the file; null for a picture from memory. */
+  image: string | null;
+  encoding: Encoding;
+  pixels: [width: number, height: number];
+  /** Kind of the chart; null without a truth. */
+  chart: string | null;
+  /** Edges of the truth, then of the regions, band by band. */
+  edges: EdgeFigures[];
+  dots: DotFigures[];
+  distortion: DistortionFigures[];
+  lateralColour: LateralColourFigures[];
+  radialFit: RadialFigures[];
+  flats: FlatReport[];
+  /** Parts of the chart that could not be measured, with the reason. */
+  skipped: Skipped[];
+  warnings: string[];
 }

@@ -1,21 +1,9 @@
 /** The closing words of `chart`: what was drawn, and how to send it through the lens. */
+import type { ChartTruth } from '../charts/truth.js';
 import { wrapText } from './text.js';
 
-/** The part of the truth that is told. */
-export interface ChartFigures {
-  chart: string;
-  pixels: readonly number[];
-  oversample: number;
-  levels: { white: number; dark: number };
-  edges?: readonly { patch: number }[];
-  dots?: readonly unknown[];
-  sectors?: readonly { star: number }[];
-  bars?: readonly { group: number }[];
-  corners?: readonly unknown[];
-}
-
 export function chartSummary(
-  truth: ChartFigures,
+  truth: ChartTruth,
   files: { out?: string; truth?: string },
   rigFile: string,
 ): string {
@@ -32,7 +20,7 @@ export function chartSummary(
   return `${sentences.flatMap((sentence) => wrapText(sentence, 80)).join('\n')}\n${command}\n`;
 }
 
-function contents({ chart, edges, dots, sectors, bars, corners }: ChartFigures): string {
+function contents({ chart, edges, dots, sectors, bars, corners }: ChartTruth): string {
   const most = (values: readonly number[]) => Math.max(...values) + 1;
   if (edges !== undefined)
     return `${count(edges.length, 'edge')} of ${count(most(edges.map(({ patch }) => patch)), 'square')}`;

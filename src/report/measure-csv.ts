@@ -1,11 +1,11 @@
 /** A measurement as CSV: a line for each edge and frequency, or, of a picture without edges, for each disc or else each flat field. What belongs to an
  * edge as a whole stands on each of its lines. */
+import type { DotFigures, EdgeFigures, FlatReport, MeasureReport } from '../measure/figures.js';
 import { type Cell, csvText } from './csv.js';
-import type { DotShown, EdgeShown, MeasurementShown } from './measure-figures.js';
 
 interface EdgeRow {
-  edge: EdgeShown;
-  sfr: EdgeShown['sfr'][number];
+  edge: EdgeFigures;
+  sfr: EdgeFigures['sfr'][number];
 }
 
 type Columns<Row> = readonly (readonly [name: string, cell: (row: Row) => Cell])[];
@@ -31,7 +31,7 @@ const EDGE_COLUMNS: Columns<EdgeRow> = [
   ['noise', ({ edge }) => edge.noise],
 ];
 
-const DOT_COLUMNS: Columns<DotShown> = [
+const DOT_COLUMNS: Columns<DotFigures> = [
   ['field', ({ field }) => field],
   ['azimuth_deg', ({ azimuthDeg }) => azimuthDeg],
   ['band', ({ band }) => band],
@@ -43,7 +43,7 @@ const DOT_COLUMNS: Columns<DotShown> = [
   ['expected_y', ({ expected }) => expected?.[1] ?? null],
 ];
 
-const FLAT_COLUMNS: Columns<MeasurementShown['flats'][number]> = [
+const FLAT_COLUMNS: Columns<FlatReport> = [
   ['x', ({ region }) => region.x],
   ['y', ({ region }) => region.y],
   ['width', ({ region }) => region.width],
@@ -55,7 +55,7 @@ const FLAT_COLUMNS: Columns<MeasurementShown['flats'][number]> = [
   ['snr_db', ({ snrDb }) => snrDb],
 ];
 
-export function measureCsv({ edges, dots, flats }: MeasurementShown): string {
+export function measureCsv({ edges, dots, flats }: MeasureReport): string {
   if (edges.length > 0)
     return csvText(
       edges.flatMap((edge) => edge.sfr.map((sfr) => ({ edge, sfr }))),

@@ -1,6 +1,6 @@
 /** A measurement as tables for the terminal. It only shows: every number comes from the report. */
+import type { EdgeFigures, MeasureReport } from '../measure/figures.js';
 import { CAUTION } from './caution.js';
-import type { EdgeShown, MeasurementShown } from './measure-figures.js';
 import {
   type Column,
   type ColumnGroup,
@@ -19,7 +19,7 @@ const MOST_FREQUENCIES = 3;
 /** Fields in a table of distortion. */
 const MOST_FIELDS = 12;
 
-export function measureTable(report: MeasurementShown, paint: Paint = PLAIN): string {
+export function measureTable(report: MeasureReport, paint: Paint = PLAIN): string {
   const [width, height] = report.pixels;
   const encodings: Readonly<Record<string, string>> = {
     linear: 'linear light',
@@ -55,7 +55,7 @@ interface Section {
 
 const DIRECTIONS: Readonly<Record<string, string>> = { tangential: 'along', sagittal: 'across' };
 
-function edgeSection({ edges }: MeasurementShown): Section | undefined {
+function edgeSection({ edges }: MeasureReport): Section | undefined {
   if (edges.length === 0) return undefined;
   const [first] = edges;
   const shown = spread(
@@ -96,7 +96,7 @@ function edgeSection({ edges }: MeasurementShown): Section | undefined {
   return { title: 'Slanted edges', notes, lead: { title: '', columns: lead }, groups: [half, width, ...sfr] };
 }
 
-function dotSection({ dots, distortion, lateralColour, radialFit }: MeasurementShown): Section | undefined {
+function dotSection({ dots, distortion, lateralColour, radialFit }: MeasureReport): Section | undefined {
   if (dots.length === 0) return undefined;
   const reference = lateralColour[0]?.against ?? radialFit[0].band;
   const all = distortion.filter(({ band }) => band === reference);
@@ -130,7 +130,7 @@ function dotSection({ dots, distortion, lateralColour, radialFit }: MeasurementS
   };
 }
 
-function flatSection({ flats }: MeasurementShown): Section | undefined {
+function flatSection({ flats }: MeasureReport): Section | undefined {
   if (flats.length === 0) return undefined;
   const region = text('region', flats, ({ region: { x, y, width, height } }) => [x, y, width, height].join());
   return {
@@ -152,7 +152,7 @@ function flatSection({ flats }: MeasurementShown): Section | undefined {
 }
 
 /** The band, where there is more than one. */
-function bandColumn(rows: readonly Pick<EdgeShown, 'band'>[]): Column[] {
+function bandColumn(rows: readonly Pick<EdgeFigures, 'band'>[]): Column[] {
   const isOne = new Set(rows.map(({ band }) => band)).size === 1;
   return isOne ? [] : [{ ...text('band', rows, ({ band }) => band), align: 'left' }];
 }
