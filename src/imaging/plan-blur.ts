@@ -19,6 +19,8 @@ export interface BlurTolerances {
   blend: number;
   /** Largest share of light outside the kernel. */
   kernel: number;
+  /** Side of the kernel, in place of the one that `kernel` asks for: for tests and benches. */
+  kernelPx?: number;
 }
 
 /** Kernels of a band in shared memory, with what was measured of them. */
@@ -29,6 +31,8 @@ export interface BandKernels {
   /** The certificate: largest measured blending error over all tiles that were probed. */
   blendBound: number;
   energyOutsideKernel: number;
+  /** The places where PSFs are the widest. */
+  widestPlaces: [number, number][];
 }
 
 /** The error changes smoothly over the field: a grid of more tiles than this (of a quadrant, where they mirror each other) is checked on
@@ -50,8 +54,15 @@ export async function prepareKernels(
   watch: JobWatch,
   earlier?: BandKernels,
 ): Promise<BandKernels> {
-  const places = samplePlaces(setup);
-  const { kernelPx, energyOutsideKernel } = await chooseKernel(crew, setup, places, tolerances.kernel, watch);
+  // where light spreads the widest in one band, it does so in the others
+  const places = earlier?.widestPlaces ?? samplePlaces(setup);
+  const { kernelPx, energyOutsideKernel, widestPlaces } = await chooseKernel(
+    crew,
+    setup,
+    places,
+    tolerances,
+    watch,
+  );
   const largestGrid = largestPupilGrid(setup, kernelPx);
   const task = { setup, kernelPx, largestGrid };
   let { tilePx, order } = await chooseTile(crew, task, tolerances.blend, watch, earlier?.grid);
@@ -77,6 +88,7 @@ export async function prepareKernels(
         kernelsAt,
         blendBound,
         energyOutsideKernel,
+        widestPlaces,
       };
     }
     tilePx = shrinkTile(grid.tilePx, order, blendBound, tolerances.blend);
@@ -140,16 +152,23 @@ async function chooseKernel(
   crew: Crew,
   setup: BandSetup,
   places: [number, number][],
-  tolerance: number,
+  tolerances: BlurTolerances,
   watch: JobWatch,
-): Promise<{ kernelPx: number; energyOutsideKernel: number }> {
+): Promise<{ kernelPx: number; energyOutsideKernel: number; widestPlaces: [number, number][] }> {
   const { signal } = watch;
-  const extents = await crew.run({ kind: 'extent', setup, places, tolerance }, { signal });
+  const extents = await crew.run({ kind: 'extent', setup, places, tolerance: tolerances.kernel }, { signal });
   const extent = largest(extents);
-  const kernelPx = kernelSide(setup.rig, setup.oversample, extent);
+  const kernelPx = tolerances.kernelPx ?? kernelSide(setup.rig, setup.oversample, extent);
   const widest = places.filter((_, at) => extents[at] === extent); // where the most falls outside
-  const outside = await crew.run({ kind: 'outside', setup, places: widest, kernelPx, tolerance }, { signal });
-  return { kernelPx, energyOutsideKernel: largest(outside) };
+  const outside = await crew.run(
+    { kind: 'outside', setup, places: widest, kernelPx, tolerance: tolerances.kernel },
+    { signal },
+  );
+  const byExtent = places
+    .map((place, at) => ({ place, extent: extents[at] }))
+    .sort((a, b) => b.extent - a.extent);
+  const widestPlaces = byExtent.slice(0, 2).map(({ place }) => place);
+  return { kernelPx, energyOutsideKernel: largest(outside), widestPlaces };
 }
 
 /** The tile and order that promise the certificate for the least work. */
@@ -238,7 +257,8 @@ function sampleSpans(setup: BandSetup, tilePx: number): TileSpan[] {
   });
 }
 
-/** Work per sample of the picture, in butterflies: transforms of tile and kernels, and the PSFs themselves. */
+/** Work per sample of the picture, in butterflies: transforms of tiles, of ones and of kernels, and the PSFs themselves. Two tiles share
+ * each complex transform; mirrored quadrants share kernels. The counts are those of `src/kernels/blur.ts`. */
 function costPerSample(
   setup: BandSetup,
   kernelPx: number,
@@ -247,17 +267,18 @@ function costPerSample(
   fftSize: number,
 ): number {
   const line = fftSize * Math.log2(fftSize);
-  const nodes = (order + 1) ** 2;
-  const tile = (order + 1) * tilePx + (nodes * fftSize) / 2;
-  const back = fftSize / 2 + tilePx + kernelPx;
-  const spectra = order ** 2 * (kernelPx + fftSize / 2);
+  const along = order + 1;
+  const sharing = isSymmetric(setup.rig) ? 4 : 1;
+  const tile = (along * tilePx + along ** 2 * fftSize + fftSize + tilePx + kernelPx) / 2;
+  const ones = tile / (sharing === 4 ? 8 : 1);
+  const spectra = (order * along * (kernelPx + fftSize / 2)) / sharing;
   const { pitchUm, shortestNm, fNumber } = kernelSampling(setup.rig, setup.oversample, kernelPx);
-  const psfSide =
-    2 ** Math.ceil(Math.log2(Math.max(64, kernelPx * samplesPerPixel(pitchUm, shortestNm, fNumber))));
-  const psfs = (order ** 2 + probeCount(order)) / (isSymmetric(setup.rig) ? 4 : 1);
-  const psf =
-    psfs * setup.rig.camera.bands[setup.bandIndex].lines.length * 2 * psfSide ** 2 * Math.log2(psfSide);
-  return (line * (tile + back + spectra) + psf) / tilePx ** 2;
+  const fineSide = kernelPx * samplesPerPixel(pitchUm, shortestNm, fNumber);
+  const psfSide = 2 ** Math.ceil(Math.log2(Math.max(64, fineSide)));
+  const psfs = (order ** 2 + probeCount(order) / 4) / sharing; // most tiles are not checked
+  const lines = setup.rig.camera.bands[setup.bandIndex].lines.length;
+  const psf = psfs * lines * psfSide ** 2 * Math.log2(psfSide);
+  return (line * (tile + ones + spectra) + psf) / tilePx ** 2;
 }
 
 /** Tiles of the grid (of its upper left quadrant where the quadrants mirror each other) whose blend is measured. */
