@@ -25,8 +25,9 @@ const HEADING_PX = { title: 26, subtitle: 20 };
  * The library is loaded here and not before: a tenth of a second that commands without plots save.
  */
 export async function drawPlot(figure: Figure): Promise<string> {
-  const [plotting, { parseHTML }] = await Promise.all([import('@observablehq/plot'), import('linkedom')]);
-  const { document } = parseHTML('<html><body></body></html>');
+  const [plotting, { DOMParser }] = await Promise.all([import('@observablehq/plot'), import('linkedom')]);
+  // a document of XML, so that names with & and < are written as XML wants them
+  const document = new DOMParser().parseFromString(`<svg xmlns="${SVG}"/>`, 'image/svg+xml');
   const heading = HEADING_PX.title + (figure.subtitle === undefined ? 0 : HEADING_PX.subtitle);
   const options = figure.plot(plotting);
   const svg = plotting.plot({
