@@ -1,8 +1,7 @@
 /** How an edge is slanted so that it can be measured: the pixels must stand at many different distances from it. */
 
-/** Slopes p/q at which pixels along an edge stand at so few distances from it that quarter-pixel bins stay empty: lines of pixels along such an
- * edge are 1 / sqrt(p^2 + q^2) apart, more than a quarter of a pixel. */
-const REPEATING: readonly [p: number, q: number][] = [
+/** Slopes p/q at which the lines of pixels along an edge are far apart: 1 / sqrt(p^2 + q^2) of a pixel, which leaves quarter-pixel bins empty. */
+const REPEATING: readonly (readonly [p: number, q: number])[] = [
   [0, 1],
   [1, 1],
   [1, 2],
@@ -16,14 +15,15 @@ export function angleToPixels(directionDeg: number): number {
   return Math.min(turned, 90 - turned);
 }
 
-/** How many quarter-pixel bins the pixels of an edge fill evenly, at its worst slope nearby: the drift of the distances along the edge over
- * the gap that it has to fill. 1 and more: every distance occurs.
- * @param angleDeg   of the edge against the pixels, 0 to 45
- * @param lengthPx   of the edge
+/** How often the pixels along an edge run through all distances from it: how far their lines drift along the edge, over the gap that lies between
+ * two lines, at the worst slope nearby. 1 and more: the gap is filled.
+ * @param angleDeg  of the edge against the pixels, 0 to 45
+ * @param lengthPx  of the edge
+ * @param gapPx     gaps up to this one do no harm
  */
-export function phaseCycles(angleDeg: number, lengthPx: number): number {
+export function phaseCycles(angleDeg: number, lengthPx: number, gapPx: number): number {
   return Math.min(
-    ...REPEATING.map(([p, q]) => {
+    ...REPEATING.filter(([p, q]) => 1 / Math.hypot(p, q) > gapPx).map(([p, q]) => {
       const offDeg = angleDeg - (Math.atan2(p, q) * 180) / Math.PI;
       const drift = lengthPx * Math.abs(Math.sin((offDeg * Math.PI) / 180));
       return drift * Math.hypot(p, q);
@@ -38,11 +38,13 @@ export function measurableSlant(directionDeg: number, slantDeg: number, lengthPx
     for (const slant of [slantDeg + more, -slantDeg - more]) {
       const angleDeg = angleToPixels(directionDeg + slant);
       const isEnough = angleDeg >= Math.min(slantDeg, LEAST_ANGLE_DEG) - 1e-9;
-      if (isEnough && phaseCycles(angleDeg, lengthPx) >= LEAST_CYCLES) return slant;
+      if (isEnough && phaseCycles(angleDeg, lengthPx, FINEST_GAP_PX) >= LEAST_CYCLES) return slant;
     }
   }
   return slantDeg; // an edge too short for any slant: its measurement says so
 }
 
 const LEAST_CYCLES = 2;
+/** No gap in quarter-pixel bins. */
+const FINEST_GAP_PX = 0.25;
 const LEAST_ANGLE_DEG = 3;

@@ -39,8 +39,10 @@ export const EDGE_LIMITS = {
   halfWidthPx: 8,
   /** Straighter edges do not pass enough rows or columns to be sampled between the pixels. */
   angleDeg: 1.5,
-  /** Times that the pixels along the edge run through all distances from it: see `phaseCycles`. */
+  /** Times that the pixels along the edge run through all distances from it, gaps up to `gapPx` left aside: see `phaseCycles`. */
   phaseCycles: 1,
+  /** Gaps that the spline bridges: light that has come through a lens has no detail finer than a pixel. */
+  gapPx: 0.5,
   /** Step over noise of a pixel. Below, the derivative is mostly noise. */
   stepOverNoise: 10,
   /** (bright - dark) / (bright + dark). */
@@ -192,7 +194,7 @@ function refuseStraight(angleDeg: number, lengthPx: number): void {
       `from ${EDGE_LIMITS.angleDeg} degrees up`,
       'Turn the chart or the camera by about 5 degrees.',
     );
-  const cycles = phaseCycles(angleDeg, lengthPx);
+  const cycles = phaseCycles(angleDeg, lengthPx, EDGE_LIMITS.gapPx);
   if (cycles < EDGE_LIMITS.phaseCycles)
     throw refusal(
       angleDeg > 40 ? 'the edge is too steep' : 'the edge is too short for its angle',
