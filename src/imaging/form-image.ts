@@ -72,9 +72,9 @@ export async function prepareBands(
 }
 
 /** Form the picture.
- * @param scene one plane a band in the crew's arena, oversample times the camera's pixels on each side; not changed
+ * @param scene one plane a band in the crew's arena, oversample times the camera's pixels on each side; overwritten
  * @param bands kernels as `prepareBands` made them
- * @returns planes that live in the crew's arena, below what the caller reserves next */
+ * @returns planes that live in the crew's arena, in place of the scene's where that is possible */
 export async function formImage(
   crew: Crew,
   rig: Rig,
@@ -87,8 +87,10 @@ export async function formImage(
   const [width, height] = rig.camera.pixels;
   const samples = width * height * oversample ** 2;
   const isFine = oversample > 1;
-  const planes = rig.camera.bands.map(() =>
-    arena.floats(arena.allocateFloats(width * height), width * height),
+  // the scene is done with when it is warped, and its planes can take the picture, unless bands share one
+  const isReusable = !isFine && new Set(scene.map((plane) => plane.byteOffset)).size === scene.length;
+  const planes = rig.camera.bands.map((_, band) =>
+    isReusable ? scene[band] : arena.floats(arena.allocateFloats(width * height), width * height),
   );
   const mark = arena.mark();
   const warpedAt = rig.camera.bands.map(() => arena.allocateFloats(samples));
