@@ -1,15 +1,11 @@
 // @ts-check
 /** The demo: draw the scenes of the packing hall, render each with the command line, and say what to look at. */
-import { spawnSync } from 'node:child_process';
 import { mkdir, writeFile } from 'node:fs/promises';
-import { join, relative } from 'node:path';
-import { fileURLToPath } from 'node:url';
+import { join } from 'node:path';
 import { DEMO_SCENES, writeScenes } from './draw/pictures.js';
+import { foreglass, HALL, OUT, PROGRAM, say, shown } from './draw/run.js';
 import { showcase } from './draw/showcase.js';
-
-const PROGRAM = fileURLToPath(new URL('../bin/foreglass.js', import.meta.url));
-const HALL = fileURLToPath(new URL('./packhouse/', import.meta.url));
-const OUT = join(HALL, 'out');
+import { BARS, compareSurfaces, SHEET } from './surfaces.js';
 
 /** What is rendered, and where in the pictures to look. */
 const TAGS = { scene: scene('tags/crate-tags'), rig: rig('tags-green'), picture: picture('crate-tags') };
@@ -32,6 +28,7 @@ await writeFile(
   ]),
 );
 foreglass(['zones', '--rig', shown(TAGS.rig)], 'aloud');
+const { isSame } = await compareSurfaces();
 
 say(`Done in ${((performance.now() - begin) / 1000).toFixed(0)} s. Open these, at full size:
 
@@ -45,21 +42,15 @@ say(`Done in ${((performance.now() - begin) / 1000).toFixed(0)} s. Open these, a
       other, more the farther out; the row of lamps in each apple turns from points into smears
   ${shown(CHART.picture)}
       the same panel 30 times: bars on the radius and bars across it blur by different amounts (astigmatism)
+  ${shown(SHEET)}
+      a lens from its surfaces and from the coefficients that were derived from them: ${isSame ? 'the same picture, byte for byte' : 'the pictures DIFFER, which is a fault'}
+  ${shown(BARS)}
+      which surface of that lens contributes what: long bars to both sides that all but cancel
 
 The ideal scenes are in ${shown(join(OUT, 'scenes'))}; what the rigs are made of is in ${join(shown(HALL), '*.rig.yaml')}.
 Stop the lens down and see the corners sharpen:
 
   node ${shown(PROGRAM)} render ${shown(TAGS.scene)} --rig ${shown(TAGS.rig)} --f-number 5.6 --out ${shown(join(OUT, 'pictures', 'crate-tags-f5.6.png'))}`);
-
-/** Run the command line as a user would, and show the line.
- * @param {string[]} words @param {'quiet' | 'aloud'} results  of the command: shown or not (progress and warnings always are) */
-function foreglass(words, results) {
-  say(`$ foreglass ${words.join(' ')}`);
-  const { status } = spawnSync(process.execPath, [PROGRAM, ...words], {
-    stdio: ['ignore', results === 'aloud' ? 'inherit' : 'ignore', 'inherit'],
-  });
-  if (status !== 0) process.exit(status ?? 130); // it has said what is wrong; without a status it was interrupted
-}
 
 /** @param {string} name */
 function scene(name) {
@@ -74,14 +65,4 @@ function rig(name) {
 /** @param {string} name */
 function picture(name) {
   return join(OUT, 'pictures', `${name}.png`);
-}
-
-/** A path as seen from where the demo was started. @param {string} path */
-function shown(path) {
-  return relative(process.cwd(), path) || '.';
-}
-
-/** @param {string} line */
-function say(line) {
-  process.stdout.write(`\n${line}\n`);
 }

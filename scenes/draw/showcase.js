@@ -9,6 +9,7 @@ import { text } from './stroke-font.js';
  * @property {string} picture
  * @property {readonly [left: number, top: number]} middle  of the details, in pixels
  * @property {readonly [left: number, top: number]} corner
+ * @property {string} [label]  over the whole picture
  */
 
 /** Details of 190 x 160 pixels are shown at twice their size, each pixel as a block of four: what is soft is the picture. */
@@ -29,9 +30,9 @@ export async function showcase(subjects) {
   const width = columnLeft(HEADINGS.length);
   const height = rowTop(subjects.length);
   const cells = await Promise.all(
-    subjects.flatMap(({ scene, picture, middle, corner }, row) =>
+    subjects.flatMap(({ scene, picture, middle, corner, label }, row) =>
       [
-        overview(picture, [middle, corner]),
+        overview(picture, [middle, corner], label),
         detail(picture, middle),
         detail(scene, corner),
         detail(picture, corner),
@@ -49,8 +50,8 @@ export async function showcase(subjects) {
 }
 
 /** The whole picture, reduced, with a frame around each detail.
- * @param {string} file @param {readonly (readonly [number, number])[]} details */
-async function overview(file, details) {
+ * @param {string} file @param {readonly (readonly [number, number])[]} details @param {string} [label] */
+async function overview(file, details, label) {
   const { width } = await sharp(file).metadata();
   const fitted = sharp(file).resize(CELL.width, CELL.height, { fit: 'contain', background: PAGE });
   const scale = CELL.width / width;
@@ -60,12 +61,18 @@ async function overview(file, details) {
     const place = `x="${x * scale}" y="${y * scale + top}"`;
     return `<rect ${place} width="${DETAIL.width * scale}" height="${DETAIL.height * scale}"/>`;
   });
-  const marks = `<g fill="none" stroke="${FRAME}" stroke-width="2">${frames.join('')}</g>`;
+  const marks = `<g fill="none" stroke="${FRAME}" stroke-width="2">${frames.join('')}</g>${label === undefined ? '' : tag(label)}`;
   return fitted
     .toColourspace('srgb')
     .composite([{ input: svg(CELL.width, CELL.height, marks), left: 0, top: 0 }])
     .png()
     .toBuffer();
+}
+
+/** A label on a strip of the page's colour. @param {string} label */
+function tag(label) {
+  const lettering = text(label, { x: 8, y: 20, capHeight: 11, weight: 0.15, ink: INK });
+  return `<rect width="${CELL.width}" height="28" fill="${PAGE}" fill-opacity="0.9"/>${lettering}`;
 }
 
 /** @param {string} file @param {readonly [number, number]} corner  its left and top */

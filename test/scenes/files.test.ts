@@ -16,6 +16,7 @@ import { DEMO_SCENES, START_SCENES } from '../../scenes/draw/pictures.js';
 import { loadRecipe } from '../../src/files/load-recipe.js';
 import { loadRig } from '../../src/files/load-rig.js';
 import { loadTask } from '../../src/files/load-task.js';
+import { derive } from '../../src/jobs/derive.js';
 import { colourWarnings } from '../../src/optics/limits.js';
 import type { Rig } from '../../src/optics/rig.js';
 import { pixelPitchMm } from '../../src/optics/rig.js';
@@ -31,6 +32,7 @@ const PAIRS = [
   { rig: join(HALL, 'tags-green.rig.yaml'), scene: scene(DEMO_SCENES, 'crate-tags') },
   { rig: join(HALL, 'tags-green.rig.yaml'), scene: scene(DEMO_SCENES, 'test-chart') },
   { rig: join(HALL, 'belt-colour.rig.yaml'), scene: scene(DEMO_SCENES, 'apple-belt') },
+  { rig: join(HALL, 'tags-surfaces.rig.yaml'), scene: scene(START_SCENES, 'crate-tags') },
   { rig: join(START, 'tags.rig.yaml'), scene: scene(START_SCENES, 'crate-tags') },
   { rig: join(START, 'belt.rig.yaml'), scene: scene(START_SCENES, 'apples-1') },
   { rig: join(START, 'belt.rig.yaml'), scene: scene(START_SCENES, 'apples-2') },
@@ -47,6 +49,18 @@ describe('the rigs of the packing hall', () => {
     expect(cornerField(loaded)).toBeLessThanOrEqual(1);
     expect(cornerField(loaded)).toBeGreaterThan(0.99); // so that h = 1 is the corner, as the comments say
     expect(colourWarnings(loaded)).toEqual([]);
+  });
+});
+
+describe('the lenses that are given by their surfaces', () => {
+  it.each([HALL, START])('are derived, and serve the rig beside them (%s)', (place) => {
+    const { report, lens } = derive(join(place, 'three-element.lens.yaml'));
+    expect(report.explained[0].share).toBeGreaterThan(0.99); // the terms carry in the middle
+    const camera = loadRig(join(place, place === HALL ? 'tags-surfaces.rig.yaml' : 'tags.rig.yaml')).camera;
+    const [width, height] = camera.pixels;
+    const corner = Math.hypot((width - 1) / 2, (height - 1) / 2) * pixelPitchMm(camera);
+    expect(corner / lens.fullFieldMm).toBeLessThanOrEqual(1);
+    expect(corner / lens.fullFieldMm).toBeGreaterThan(0.99);
   });
 });
 
