@@ -1,3 +1,5 @@
+import { readFileSync } from 'node:fs';
+import { fileURLToPath } from 'node:url';
 import { describe, expect, it } from 'vitest';
 import { derive } from '../../src/jobs/derive.js';
 import { SEIDEL_SUMS } from '../../src/prescription/seidel.js';
@@ -101,6 +103,16 @@ describe('deriveTable', () => {
     // biome-ignore lint/suspicious/noControlCharactersInRegex: they are what is looked for
     expect(deriveTable(report, COLOURED).replaceAll(/\x1b\[\d+m/g, '')).toBe(table);
   });
+});
+
+it('the README shows what the program prints', () => {
+  const at = (path: string) => fileURLToPath(new URL(`../../${path}`, import.meta.url));
+  const section =
+    /## From a prescription\n[\s\S]*?\n## /.exec(readFileSync(at('README.md'), 'utf8'))?.[0] ?? '';
+  const shown = /\n```\n(What each surface[\s\S]*?)\n```/.exec(section)?.[1].split('\n') ?? [];
+  const printed = deriveTable(derive(at('scenes/start/three-element.lens.yaml')).report).split('\n');
+  expect(shown.length).toBeGreaterThan(10);
+  for (const line of shown.filter((text) => text !== '...')) expect(printed).toContain(line);
 });
 
 it('surfacesCsv has a line for each surface, in mm', () => {

@@ -1,6 +1,6 @@
 /** From marks to an SVG file: the one place that knows the plotting library. */
 import type { Markish, PlotOptions } from '@observablehq/plot';
-import { darkStyle, FAINT, FONT, GRID, INK, PAGE, PLOT_CLASS } from './theme.js';
+import { darkStyle, FAINT, FONT, INK, PAGE, PLOT_CLASS } from './theme.js';
 
 /** The plotting library as the plots use it. */
 export type Plotting = typeof import('@observablehq/plot');
@@ -11,6 +11,8 @@ export interface Figure {
   subtitle?: string;
   /** The figure in words, for who cannot see it. */
   description: string;
+  /** Begins the ids within the plot: plots on one page need different ones. Default: `plot`. */
+  id?: string;
   /** Of the plot without its heading. */
   widthPx: number;
   heightPx: number;
@@ -39,7 +41,7 @@ export async function drawPlot(figure: Figure): Promise<string> {
     marginTop: (options.marginTop ?? 20) + heading,
   });
   finish(svg as unknown as SvgElement, document as unknown as SvgDocument, figure);
-  return numberIds(`${svg.outerHTML}\n`);
+  return numberIds(`${svg.outerHTML}\n`, figure.id ?? 'plot');
 }
 
 /** What of the document this file uses; Node's types know no document. */
@@ -83,13 +85,10 @@ function finish(svg: SvgElement, document: SvgDocument, { title, subtitle, descr
 }
 
 /** The library counts its ids on from plot to plot; here each plot begins anew. */
-function numberIds(svg: string): string {
+function numberIds(svg: string, prefix: string): string {
   const seen = new Map<string, string>();
   return svg.replace(/\bplot-(clip|pattern|gradient)-\d+\b/g, (id, kind) => {
-    if (!seen.has(id)) seen.set(id, `plot-${kind}-${seen.size + 1}`);
+    if (!seen.has(id)) seen.set(id, `${prefix}-${kind}-${seen.size + 1}`);
     return seen.get(id)!;
   });
 }
-
-/** Faint straight lines, for scales and zeros. */
-export const GUIDE = { stroke: GRID.light };

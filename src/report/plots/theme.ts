@@ -17,7 +17,8 @@ export const FAINT = tone('#6b7280', '#9aa3ad');
 export const GRID = tone('#d4d8dd', '#3a4048');
 export const PAGE = tone('#ffffff', '#16191d');
 
-/** Colours of data in the order in which they are to be used. Never the only sign: a plot also tells its data apart by place, label or dash.
+/** Colours of data in the order in which they are to be used. Never the only sign: a plot also tells its data apart by place, label or dash. The first three
+ * stand out from the page enough for thin lines.
  * Source: the light ones are of the set of M. Okabe and K. Ito, "Color Universal Design" (2008), without its yellow, which is too pale for
  * lines on white (cited from memory); the dark ones are the same hues, lighter. */
 export const SERIES: readonly Tone[] = [
