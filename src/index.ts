@@ -2,6 +2,7 @@
 export { type Fault, formatFault, InputError, InterruptedError, RunError } from './errors.js';
 export { loadPrescription } from './files/load-prescription.js';
 export { loadCameraPart, loadLensPart, loadRig, parseRig, type RigOverrides } from './files/load-rig.js';
+export { loadTask, parseTask, type Rule, type Task } from './files/load-task.js';
 export { resultData } from './files/result-data.js';
 export type { Raster } from './imaging/raster.js';
 export {
@@ -26,6 +27,15 @@ export {
   derive,
   type Prescription,
 } from './jobs/derive.js';
+export {
+  type Advice,
+  type JudgeOptions,
+  type JudgeReport,
+  judge,
+  type PartGain,
+  type RuleVerdict,
+  type ZoneVerdict,
+} from './jobs/judge.js';
 export {
   type DistortionFigures,
   type DotFigures,

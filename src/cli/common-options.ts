@@ -7,6 +7,7 @@ export const GROUP = {
   rig: 'Lens, camera and mount:',
   scene: 'Scene:',
   zones: 'What to look at:',
+  task: 'Task:',
   derive: 'What is traced:',
   chart: 'Chart:',
   picture: 'The picture:',

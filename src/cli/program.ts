@@ -5,12 +5,14 @@ import { chartCommand } from './chart.js';
 import { GROUP, grouped } from './common-options.js';
 import { deriveCommand } from './derive.js';
 import { DEBUG_VARIABLE, describeFailure, EXIT } from './failure.js';
+import { judgeCommand } from './judge.js';
 import { measureCommand } from './measure.js';
 import { renderCommand } from './render.js';
 import { startCommand } from './start.js';
 import { zonesCommand } from './zones.js';
 
-export function buildProgram(): Command {
+/** @param endWith takes the exit status of a command that is done without a fault, where it is not 0 */
+export function buildProgram(endWith: (status: number) => void = () => {}): Command {
   const program = new Command('foreglass')
     .description(
       'Shows what a camera lens will do to a picture before the lens is bought, from its third-order aberrations.',
@@ -37,6 +39,7 @@ Exit status: 0 done, 1 done but the task is not met, 2 the input is wrong,
     startCommand(),
     renderCommand(),
     zonesCommand(),
+    judgeCommand(endWith),
     deriveCommand(),
     chartCommand(),
     measureCommand(),
@@ -57,8 +60,12 @@ Exit status: 0 done, 1 done but the task is not met, 2 the input is wrong,
  */
 export async function run(words: readonly string[]): Promise<number> {
   try {
-    await buildProgram().parseAsync(words, { from: 'user' });
-    return EXIT.done;
+    let status: number = EXIT.done;
+    const program = buildProgram((given) => {
+      status = given;
+    });
+    await program.parseAsync(words, { from: 'user' });
+    return status;
   } catch (error) {
     if (error instanceof CommanderError) {
       if (error.code === 'commander.missingArgument') process.stderr.write(swallowedHint(words));

@@ -19,7 +19,9 @@ export type Limit = { atMostPx: number } | { atMostMm: number };
 
 export type Rule =
   | { kind: 'contrast'; size: FeatureSize | { lpPerMm: number }; atLeast: number }
-  | { kind: 'placement'; limit: Limit; after: 'none' | 'radial-model' }
+  | { kind: 'placement'; limit: Limit; after: 'none' }
+  /** The model is a polynomial of odd powers of the radius, up to its order: 1 (a scale), 3, 5 or 7. */
+  | { kind: 'placement'; limit: Limit; after: 'radial-model'; modelOrder: number }
   | { kind: 'edge_blur'; limit: Limit }
   | {
       kind: 'decode';
@@ -54,8 +56,11 @@ function ruleFromFile({ contrast, placement, edge_blur, decode, detect }: TaskFi
     const size = contrast.lp_per_mm === undefined ? featureSize(contrast) : { lpPerMm: contrast.lp_per_mm };
     return { kind: 'contrast', size, atLeast: contrast.at_least };
   }
-  if (placement !== undefined)
-    return { kind: 'placement', limit: limitOf(placement), after: placement.after };
+  if (placement !== undefined) {
+    const limit = limitOf(placement);
+    if (placement.after === 'none') return { kind: 'placement', limit, after: 'none' };
+    return { kind: 'placement', limit, after: 'radial-model', modelOrder: placement.model_order ?? 3 };
+  }
   if (edge_blur !== undefined) return { kind: 'edge_blur', limit: limitOf(edge_blur) };
   if (decode !== undefined) {
     const { symbol, module_mm, module_px, success_at_least, trials } = decode;

@@ -31,6 +31,7 @@ test('the other ways to state a size or a limit, and the defaults', () => {
       { contrast: { lp_per_mm: 40, at_least: 0.3 } },
       { contrast: { feature_px: 2, at_least: 0.3 } },
       { placement: { at_most_mm: 0.1, after: 'radial-model' } },
+      { placement: { at_most_mm: 0.1, after: 'radial-model', model_order: 5 } },
       { edge_blur: { at_most_mm: 0.2 } },
       { decode: { symbol: 'data_matrix', module_px: 3, success_at_least: 1 } },
       { detect: { feature_px: 4, contrast: 0.2 } },
@@ -41,7 +42,8 @@ test('the other ways to state a size or a limit, and the defaults', () => {
     rules: [
       { kind: 'contrast', size: { lpPerMm: 40 }, atLeast: 0.3 },
       { kind: 'contrast', size: { featurePx: 2 }, atLeast: 0.3 },
-      { kind: 'placement', limit: { atMostMm: 0.1 }, after: 'radial-model' },
+      { kind: 'placement', limit: { atMostMm: 0.1 }, after: 'radial-model', modelOrder: 3 },
+      { kind: 'placement', limit: { atMostMm: 0.1 }, after: 'radial-model', modelOrder: 5 },
       { kind: 'edge_blur', limit: { atMostMm: 0.2 } },
       { kind: 'decode', symbol: 'data_matrix', module: { modulePx: 3 }, successAtLeast: 1, trials: 50 },
       { kind: 'detect', size: { featurePx: 4 }, contrast: 0.2, ratioAtLeast: 5 }, // Rose's rule of 5
@@ -95,6 +97,16 @@ test.each([
     '{ at_most_px: 1.5 }',
     '{ at_most_px: 1.5, after: model }',
     '5:42: require[1].placement.after: is none of the choices, found "model". Allowed: none, radial-model. Did you mean \'radial-model\'?',
+  ],
+  [
+    '{ at_most_px: 1.5 }',
+    '{ at_most_px: 1.5, after: radial-model, model_order: 4 }',
+    '5:69: require[1].placement.model_order: is even, found 4. Allowed: 1, 3, 5 or 7.',
+  ],
+  [
+    '{ at_most_px: 1.5 }',
+    '{ at_most_px: 1.5, model_order: 3 }',
+    '5:35: require[1].placement.model_order: stands without after: radial-model.',
   ],
   [
     '{ at_most_px: 2.5 }',

@@ -15,11 +15,11 @@ export const FLOORS: Readonly<Record<string, number>> = {
   files: 3,
   imaging: 3,
   measure: 3.5,
+  tasks: 3.5,
   dataset: 4,
   fit: 4,
-  jobs: 4,
   report: 4,
-  tasks: 4,
+  jobs: 4.5,
   cli: 5,
   index: 5,
 };
@@ -37,6 +37,7 @@ const HOMES: Readonly<Record<string, string>> = {
   sharp: 'files',
   yaml: 'files',
   zod: 'files',
+  'zxing-wasm': 'tasks',
 };
 
 /** Folders that run anywhere: none of Node's own modules. */

@@ -58,8 +58,8 @@ describe('the check of the floors', () => {
   });
 
   it('finds an import to a neighbour on the same floor', () => {
-    expect(faultsOf({ 'fit/a.ts': "import { b } from '../tasks/b.js';", 'tasks/b.ts': '' })).toEqual([
-      'fit/a.ts: imports sideways: tasks/b (floor 4) from floor 4',
+    expect(faultsOf({ 'fit/a.ts': "import { b } from '../dataset/b.js';", 'dataset/b.ts': '' })).toEqual([
+      'fit/a.ts: imports sideways: dataset/b (floor 4) from floor 4',
     ]);
   });
 

@@ -1,6 +1,6 @@
 /** What a vision task asks of the picture. */
 import type { z } from 'zod';
-import { checkOneOf, crossChecked } from './cross-check.js';
+import { checkOneOf, crossChecked, numberIn } from './cross-check.js';
 import { fieldPoint } from './field-point.js';
 import { choice, list, mapping, number, text } from './values.js';
 
@@ -32,8 +32,19 @@ const placement = crossChecked(
       ['none', 'radial-model'],
       'What is taken out first: nothing, or the best radial model.',
     ).default('none'),
+    model_order: number(
+      { min: 1, max: 7, whole: true },
+      'Order of the radial model, 1, 3, 5 or 7: 1 is a scale alone. Default: 3.',
+    ).optional(),
   }),
-  (rule, report) => checkOneOf(rule, Object.keys(atMost), report, { needed: true }),
+  (rule, report) => {
+    checkOneOf(rule, Object.keys(atMost), report, { needed: true });
+    const order = numberIn(rule.model_order);
+    if (order !== undefined && order % 2 === 0)
+      report(['model_order'], { message: 'is even', allowed: '1, 3, 5 or 7' });
+    if (rule.model_order !== undefined && rule.after !== 'radial-model')
+      report(['model_order'], { message: 'stands without after: radial-model', inKey: true });
+  },
 ).describe('Displacement of a point against the ideal picture.');
 
 const edgeBlur = crossChecked(mapping(atMost), (rule, report) =>

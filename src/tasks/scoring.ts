@@ -1,0 +1,57 @@
+/** One number for how good a changed rig is for a task, for those who look for what limits it and what to change. */
+import { InputError } from '../errors.js';
+import type { FieldPoint } from '../optics/field-points.js';
+import type { Rig } from '../optics/rig.js';
+import { benchFor } from './bench.js';
+import { isOpticsRule, type LaidOut, leastMargin, type OpticsRule } from './evaluate.js';
+import { marginAtLeast } from './figures.js';
+import type { PixelRuleOf } from './rules.js';
+import { type RuleVerdict, type Trials, tryAt } from './verdict.js';
+
+/** Scores variants of one rig on one task: the least margin of the closed-form rules in the task's zones, and of those `decode` rules that
+ * the rig as it stands does not meet, each in its worst zone. A `decode` rule that is met stays out: its margin ends at a rate of 1, where
+ * it says nothing any more. A task of nothing but `decode` is scored by the edge blur, which is to stay within a module. */
+export class Scoring {
+  readonly rules: readonly OpticsRule[];
+  readonly points: readonly FieldPoint[];
+  readonly #tried: readonly { rule: PixelRuleOf<'decode'>; worst: FieldPoint }[];
+  readonly #trials: Trials;
+
+  /** @param verdicts of the rig as it stands, in the order of the rules */
+  constructor({ rules, points }: LaidOut, verdicts: readonly RuleVerdict[], trials: Trials) {
+    const optics = rules.filter(isOpticsRule);
+    const decode = rules.filter((rule) => rule.kind === 'decode');
+    this.rules = optics.length > 0 ? optics : decode.map(blurWithinModule);
+    this.points = points;
+    this.#tried = decode.flatMap((rule) => {
+      const { met, margin, zones } = verdicts[rules.indexOf(rule)];
+      return met ? [] : [{ rule, worst: points[zones.findIndex((zone) => zone.margin === margin)] }];
+    });
+    this.#trials = trials;
+  }
+
+  /** The least margin of the closed-form rules. -Infinity where a variant cannot be computed. */
+  opticsMargin(rig: Rig): number {
+    try {
+      return leastMargin(benchFor(rig), this.rules, this.points);
+    } catch (error) {
+      if (error instanceof InputError) return Number.NEGATIVE_INFINITY;
+      throw error;
+    }
+  }
+
+  /** The least margin, trials included. */
+  async margin(rig: Rig): Promise<number> {
+    let margin = this.opticsMargin(rig);
+    for (const { rule, worst } of this.#tried) {
+      const { value } = await tryAt(rig, rule, worst, this.#trials);
+      margin = Math.min(margin, marginAtLeast(value, rule.successAtLeast));
+    }
+    return margin;
+  }
+}
+
+/** What stands for a symbol where nothing but its decoding is asked: an edge as wide as a module. */
+export function blurWithinModule({ modulePx }: PixelRuleOf<'decode'>): OpticsRule {
+  return { kind: 'edge_blur', limit: { atMost: modulePx, unit: 'px', perPixel: 1 } };
+}
