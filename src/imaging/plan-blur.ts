@@ -223,7 +223,7 @@ async function largestTile(
 ): Promise<number> {
   const { setup } = task;
   const { width, height } = frameOf(setup);
-  const longest = 2 * Math.max(width, height);
+  const longest = Math.max(width, height) + task.kernelPx; // all that the blur sees
   let tilePx = Math.min(firstGuess, longest);
   for (let round = 0; round < rounds; round++) {
     const spans = sampleSpans(setup, tilePx);

@@ -36,20 +36,31 @@ describe('NodeKernels', () => {
     }
   });
 
-  it('knows the place of each slot and gives each node a number of its own', () => {
-    const grid = makeBlurGrid(40, 30, 3, 12, 2);
-    const kernels = telling(grid, false);
-    const [nodesX, nodesY] = [nodeCount(grid.tilesX, 2), nodeCount(grid.tilesY, 2)];
-    const keys = new Set<number>();
-    for (let y = 0; y < nodesY; y++) {
-      for (let x = 0; x < nodesX; x++) {
-        keys.add(kernels.key(x, y));
-        expect(kernels.slotPosition(y * nodesX + x)).toEqual([
+  it('knows the place of each slot, and each place has one slot', () => {
+    // a reach of 15 samples on tiles of 8: two nodes and more stand on every border
+    const grid = makeBlurGrid(40, 30, 31, 8, 2);
+    const kernels = new NodeKernels(grid, false, new Float32Array(31 ** 2 * slotCount(grid, false)));
+    const slots = new Map<string, number>();
+    const keys = new Map<string, number>();
+    for (let y = 0; y < nodeCount(grid.tilesY, 2); y++) {
+      for (let x = 0; x < nodeCount(grid.tilesX, 2); x++) {
+        const place = [
           nodePosition(x, grid.originX, grid.tilePx, 2, 40),
           nodePosition(y, grid.originY, grid.tilePx, 2, 30),
-        ]);
+        ];
+        const { slot } = kernels.place(x, y);
+        expect(kernels.slotPosition(slot)).toEqual(place);
+        expect(slots.get(place.join()) ?? slot).toBe(slot);
+        expect(keys.get(place.join()) ?? kernels.key(x, y)).toBe(kernels.key(x, y));
+        slots.set(place.join(), slot);
+        keys.set(place.join(), kernels.key(x, y));
       }
     }
-    expect(keys.size).toBe(nodesX * nodesY);
+    expect(slots.size).toBe(slotCount(grid, false));
+    expect(new Set(keys.values()).size).toBe(slots.size);
+  });
+
+  it('keeps no more kernels for a reach that is far larger than the picture', () => {
+    expect(slotCount(makeBlurGrid(20, 20, 501, 20, 1), false)).toBeLessThanOrEqual(9);
   });
 });
