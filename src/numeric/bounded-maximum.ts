@@ -12,25 +12,29 @@ export interface Peak {
  * Where there are more peaks it finds one of them.
  *
  * Source: J. Kiefer, Proc. Am. Math. Soc. 4 (1953) 502 (cited from memory)
+ * @param f its second argument is a floor: where the value is at or below it, any number there will do
  * @param tolerance the length of the interval to stop at
  */
-export function goldenMaximum(f: (x: number) => number, from: number, to: number, tolerance: number): Peak {
+export function goldenMaximum(
+  f: (x: number, floor: number) => number,
+  from: number,
+  to: number,
+  tolerance: number,
+): Peak {
   let [a, b] = [from, to];
-  let low = { x: b - GOLDEN * (b - a), value: 0 };
-  let high = { x: a + GOLDEN * (b - a), value: 0 };
-  low.value = f(low.x);
-  high.value = f(high.x);
+  const at = (x: number, floor: number): Peak => ({ x, value: f(x, floor) });
+  let low = at(b - GOLDEN * (b - a), Number.NEGATIVE_INFINITY);
+  let high = at(a + GOLDEN * (b - a), low.value);
   while (b - a > tolerance) {
+    // the higher of the two is kept, so its value is exact
     if (low.value >= high.value) {
       b = high.x;
       high = low;
-      low = { x: b - GOLDEN * (b - a), value: 0 };
-      low.value = f(low.x);
+      low = at(b - GOLDEN * (b - a), high.value);
     } else {
       a = low.x;
       low = high;
-      high = { x: a + GOLDEN * (b - a), value: 0 };
-      high.value = f(high.x);
+      high = at(a + GOLDEN * (b - a), low.value);
     }
   }
   return low.value >= high.value ? low : high;

@@ -41,9 +41,9 @@ interface EdgeSpectrum {
   im: Float64Array;
 }
 
-/** Nodes of a panel, and the turn of phase that it may hold: an 8-point rule follows 10 radians to 1e-6. */
+/** Nodes of a panel, and the turn of phase that it may hold: an 8-point rule follows 10 radians to 1e-6, 14 to 1e-3. */
 const PANEL_NODES = 8;
-const PANEL_RADIANS = 10;
+const PANEL_RADIANS = { full: 10, rough: 14 } as const;
 
 /** What the frequencies left out may change of E. */
 const TRUNCATION = { full: 3e-4, rough: 2e-3 } as const;
@@ -67,7 +67,7 @@ function sampleSpectrum(
   accuracy: Accuracy,
 ): EdgeSpectrum {
   const cutOff = Math.max(...lines.map(({ nm }) => 1 / (nm * 1e-6 * fNumber)));
-  const panels = Math.ceil((4 * Math.PI * reachMm * cutOff) / PANEL_RADIANS);
+  const panels = Math.ceil((4 * Math.PI * reachMm * cutOff) / PANEL_RADIANS[accuracy]);
   const width = cutOff / panels;
   const { nodes, weights } = gaussLegendre(PANEL_NODES);
   const omega = new Float64Array(panels * PANEL_NODES);

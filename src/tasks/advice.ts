@@ -81,19 +81,19 @@ function beyondAnyLens(rig: Rig, { rules, points }: Scoring): Advice | undefined
 /** Steps of the first look over focus. */
 const FOCUS_STEPS = 14;
 
-/** The sensor shift with the largest margin, to about a hundredth of the range of foci. */
+/** The sensor shift with the largest margin, to about a seventieth of the range of foci. */
 function bestShiftUm(rig: Rig, scoring: Scoring): number {
   const reachUm = focusReachUm(rig, scoring);
   const middle = rig.mount.sensorShiftUm;
-  const margin = (shiftUm: number) => scoring.opticsMargin(withShift(rig, shiftUm));
+  const margin = (shiftUm: number, floor?: number) => scoring.opticsMargin(withShift(rig, shiftUm), floor);
   let best = { x: middle, value: margin(middle) };
   const step = (2 * reachUm) / FOCUS_STEPS;
   for (let i = 0; i <= FOCUS_STEPS; i++) {
     const x = middle - reachUm + i * step;
-    const value = margin(x);
+    const value = margin(x, best.value);
     if (value > best.value) best = { x, value };
   }
-  const refined = goldenMaximum(margin, best.x - step, best.x + step, 0.1 * step);
+  const refined = goldenMaximum(margin, best.x - step, best.x + step, 0.2 * step);
   return tidy(refined.value > best.value ? refined.x : best.x, 2);
 }
 
@@ -120,7 +120,8 @@ function bestStop(rig: Rig, scoring: Scoring): number {
   let best = { fNumber: now, margin: scoring.opticsMargin(rig) };
   for (let half = 0; half <= HALF_STOPS; half++) {
     const fNumber = Math.max(rig.lens.fNumber, tidy(rig.lens.fNumber * 2 ** (half / 4), 2));
-    const margin = scoring.opticsMargin(withStop(rig, fNumber));
+    const floor = Math.min(best.margin, 0);
+    const margin = scoring.opticsMargin(withStop(rig, fNumber), floor - 1e-12);
     const isNearer = Math.abs(Math.log(fNumber / now)) < Math.abs(Math.log(best.fNumber / now));
     const isBetter = best.margin >= 0 ? margin >= 0 && isNearer : margin > best.margin;
     if (isBetter) best = { fNumber, margin };

@@ -81,20 +81,6 @@ export function layOut(rig: Rig, rules: readonly Rule[], fields: readonly FieldS
   return { bench, rules: inPixels, points };
 }
 
-/** The least margin of the closed-form rules over some places, for searches: Infinity where there are none. */
-export function leastMargin(
-  bench: Bench,
-  rules: readonly PixelRule[],
-  places: readonly Place[],
-  accuracy: Accuracy = 'rough',
-): number {
-  let least = Number.POSITIVE_INFINITY;
-  for (const rule of rules.filter(isOpticsRule)) {
-    for (const place of places) least = Math.min(least, judgeRule(bench, rule, place, accuracy).margin);
-  }
-  return least;
-}
-
 function shortestNm(rig: Rig): number {
   return Math.min(...rig.camera.bands.flatMap(({ lines }) => lines.map(({ nm }) => nm)));
 }

@@ -11,10 +11,11 @@ import type { Band, Rig } from '../optics/rig.js';
  */
 export function landingMm(rig: Rig, band: Band): (idealMm: number) => number {
   const map = distortionMap(rig.lens, band);
-  return (idealMm) => {
-    let shiftMm = 0;
-    for (const { nm, weight, wavefront } of bandLines(rig, idealMm, 0, band))
-      shiftMm -= weight * 2 * rig.mount.fNumber * nm * 1e-6 * wavefront.w31;
-    return map.distorted(idealMm) + shiftMm;
-  };
+  // w31 is proportional to the radius, so one look gives the shift everywhere
+  const atMm = rig.lens.fullFieldMm;
+  let shiftMm = 0;
+  for (const { nm, weight, wavefront } of bandLines(rig, atMm, 0, band))
+    shiftMm -= weight * 2 * rig.mount.fNumber * nm * 1e-6 * wavefront.w31;
+  const shiftPerMm = shiftMm / atMm;
+  return (idealMm) => map.distorted(idealMm) + shiftPerMm * idealMm;
 }

@@ -3,8 +3,8 @@ import type { FieldPoint } from '../optics/field-points.js';
 import { fieldPoint } from '../optics/field-points.js';
 import { isSymmetric, type Rig } from '../optics/rig.js';
 
-/** Steps of the first look along a diagonal, and halvings of the step in which it fails: to 1/3000 of the diagonal. */
-const STEPS = 24;
+/** Steps of the first look along a diagonal, and halvings of the step in which it fails: to 1/2000 of the diagonal. */
+const STEPS = 16;
 const HALVINGS = 7;
 
 /** The field points of the corners that must be looked at: one where they are all alike. */

@@ -3,7 +3,7 @@ import { InputError } from '../errors.js';
 import type { FieldPoint } from '../optics/field-points.js';
 import type { Rig } from '../optics/rig.js';
 import { benchFor } from './bench.js';
-import { isOpticsRule, type LaidOut, leastMargin, type OpticsRule } from './evaluate.js';
+import { isOpticsRule, judgeRule, type LaidOut, type OpticsRule } from './evaluate.js';
 import { marginAtLeast } from './figures.js';
 import type { PixelRuleOf } from './rules.js';
 import { type RuleVerdict, type Trials, tryAt } from './verdict.js';
@@ -16,6 +16,8 @@ export class Scoring {
   readonly points: readonly FieldPoint[];
   readonly #tried: readonly { rule: PixelRuleOf<'decode'>; worst: FieldPoint }[];
   readonly #trials: Trials;
+  /** Every rule at every place; the one that was the worst last time comes first. */
+  readonly #pairs: { rule: OpticsRule; point: FieldPoint }[];
 
   /** @param verdicts of the rig as it stands, in the order of the rules */
   constructor({ rules, points }: LaidOut, verdicts: readonly RuleVerdict[], trials: Trials) {
@@ -28,16 +30,29 @@ export class Scoring {
       return met ? [] : [{ rule, worst: points[zones.findIndex((zone) => zone.margin === margin)] }];
     });
     this.#trials = trials;
+    this.#pairs = this.rules.flatMap((rule) => points.map((point) => ({ rule, point })));
   }
 
-  /** The least margin of the closed-form rules. -Infinity where a variant cannot be computed. */
-  opticsMargin(rig: Rig): number {
+  /** The least margin of the closed-form rules. -Infinity where a variant cannot be computed.
+   * @param floor a margin at or below which the exact value does not matter: the search then ends early */
+  opticsMargin(rig: Rig, floor = Number.NEGATIVE_INFINITY): number {
+    let least = Number.POSITIVE_INFINITY;
+    let worst = 0;
     try {
-      return leastMargin(benchFor(rig), this.rules, this.points);
+      const bench = benchFor(rig);
+      for (const [at, { rule, point }] of this.#pairs.entries()) {
+        const { margin } = judgeRule(bench, rule, point, 'rough');
+        if (margin >= least) continue;
+        least = margin;
+        worst = at;
+        if (least <= floor) break;
+      }
     } catch (error) {
       if (error instanceof InputError) return Number.NEGATIVE_INFINITY;
       throw error;
     }
+    this.#pairs.unshift(...this.#pairs.splice(worst, 1));
+    return least;
   }
 
   /** The least margin, trials included. */
