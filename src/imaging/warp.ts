@@ -6,8 +6,8 @@ import { cornerMm, type SensorFrame } from './sensor-frame.js';
 /** Steps of the radial tables. The curves are smooth in r^2: linear interpolation is right to 1e-7 px at 5 % distortion. */
 export const TABLE_STEPS = 8192;
 
-/** Samples past the farthest corner that the tables still cover. */
-const LOOK_AHEAD = 16;
+/** Samples past the farthest corner that the tables still cover: look-ups of the kernels beyond the last sample. */
+const LOOK_AHEAD = 64;
 
 /** What happens to light by its distance from the axis, tabulated over the square of the landed radius in samples. */
 export interface RadialTables {
