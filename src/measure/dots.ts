@@ -12,7 +12,7 @@ import type {
 } from './figures.js';
 import { type OpticalFrame, opticalFrame } from './optical-frame.js';
 import type { Plane } from './plane.js';
-import { centroidPlace, radialMap } from './predict.js';
+import { dotPlace, radialMap } from './predict.js';
 import { cubicMap, fitRadialMap, type RadialPair } from './radial-fit.js';
 
 export interface BandPlane {
@@ -73,7 +73,7 @@ function bandDots(
   const all = truth.dots ?? [];
   for (const dot of all.toSorted((a, b) => a.field - b.field)) {
     const { x, y, radiusPx, field, azimuthDeg } = dot;
-    const expected = rig && band && centroidPlace(rig, band, x, y);
+    const expected = rig && band && dotPlace(rig, band, x, y, radiusPx);
     const [nearX, nearY] = expected ?? radialMap(frame.axisPx, frame.pitchMm, cubicMap(pairs)).landed(x, y);
     const guess: DotGuess = { x: nearX, y: nearY, radiusPx, roomPx };
     try {

@@ -47,7 +47,7 @@ export interface DotFigures {
   ideal: [x: number, y: number];
   /** The disc's centroid. */
   found: [x: number, y: number];
-  /** Where the rig's distortion, lateral colour and coma put the centroid; left out without a rig. */
+  /** Where the rig's distortion, lateral colour and coma put the disc's centroid; left out without a rig. */
   expected?: [x: number, y: number];
   field: number;
   azimuthDeg: number;

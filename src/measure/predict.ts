@@ -29,14 +29,24 @@ export function rigMap(rig: Rig, band: Band): PlaceMap {
   return radialMap(rig.mount.axisPx, pixelPitchMm(rig.camera), distortionMap(rig.lens, band));
 }
 
-/** Where the centroid of a small thing lands: the place of its image point, and the PSF's own centroid, which coma and the colours of a band
- * move along the radius by the mean of eps = -2 N lambda dW/dm over the pupil, -2 N lambda (w31 + w11). */
-export function centroidPlace(rig: Rig, band: Band, x: number, y: number): [x: number, y: number] {
+/** Where the centroid of a disc lands: the place of its middle, moved along the radius by
+ *
+ * - the PSF's own centroid, which coma and the colours of a band put at the mean of eps = -2 N lambda dW/dm over the pupil, -2 N lambda (w31 + w11);
+ * - the bending of the map over the disc, 3 c R^2 r for r' = a r + c r^3: its parts farther out shrink or grow more than those farther in (the mean of
+ *   the map over the disc, weighted with its determinant; derived).
+ */
+export function dotPlace(
+  rig: Rig,
+  band: Band,
+  x: number,
+  y: number,
+  radiusPx: number,
+): [x: number, y: number] {
   const pitchMm = pixelPitchMm(rig.camera);
   const [axisX, axisY] = rig.mount.axisPx;
   const [xMm, yMm] = [(x - axisX) * pitchMm, (y - axisY) * pitchMm];
   const [landedX, landedY] = rigMap(rig, band).landed(x, y);
-  let shiftMm = 0;
+  let shiftMm = 3 * distortionMap(rig.lens, band).c * (radiusPx * pitchMm) ** 2 * Math.hypot(xMm, yMm);
   const lines = bandLines(rig, xMm, yMm, band);
   for (const { nm, weight, wavefront } of lines)
     shiftMm -= weight * 2 * rig.mount.fNumber * nm * 1e-6 * (wavefront.w31 + wavefront.w11);

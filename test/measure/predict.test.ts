@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { parseRig } from '../../src/files/load-rig.js';
-import { centroidPlace, chartMtf, predictedSfr, radialMap, rigMap } from '../../src/measure/predict.js';
+import { chartMtf, dotPlace, predictedSfr, radialMap, rigMap } from '../../src/measure/predict.js';
 import { cubicMap, fitRadialMap } from '../../src/measure/radial-fit.js';
 import { DistortionMap } from '../../src/optics/distortion.js';
 import { zonesOf } from '../../src/optics/zones.js';
@@ -44,13 +44,42 @@ describe('rigMap', () => {
     expect(rigMap(RIG, GREEN).landed(AXIS[0], AXIS[1])).toEqual(AXIS);
   });
 
-  it('puts the centroid of a small thing where coma moves it: 2 N lambda W131 h toward the axis', () => {
+  it('puts the centroid of a small disc where coma moves it: 2 N lambda W131 h toward the axis', () => {
     const [x, y] = [AXIS[0] + 300, AXIS[1] - 400];
     const landed = rigMap(RIG, GREEN).landed(x, y);
-    const [centroidX, centroidY] = centroidPlace(RIG, GREEN, x, y);
+    const [centroidX, centroidY] = dotPlace(RIG, GREEN, x, y, 0);
     const comaPx = (2 * 2.8 * 0.55 * 1.2 * 0.5) / 4;
     expect(centroidX - landed[0]).toBeCloseTo(-0.6 * comaPx, 9);
     expect(centroidY - landed[1]).toBeCloseTo(0.8 * comaPx, 9);
+  });
+
+  it('puts the centroid of a large disc where the middle of its distorted area is', () => {
+    const [x, y] = [AXIS[0] + 300, AXIS[1] - 400];
+    const map = rigMap(RIG, GREEN);
+    const radiusPx = 90;
+    // the area of the distorted disc, square by square: each goes where its corners go
+    let [area, momentX, momentY] = [0, 0, 0];
+    for (let u = -radiusPx; u < radiusPx; u += 2)
+      for (let v = -radiusPx; v < radiusPx; v += 2) {
+        if (Math.hypot(u + 1, v + 1) > radiusPx) continue;
+        const [a, b, c] = [
+          [u, v],
+          [u + 2, v],
+          [u, v + 2],
+        ].map(([i, j]) => map.landed(x + i, y + j));
+        const [middleX, middleY] = map.landed(x + u + 1, y + v + 1);
+        const size = (b[0] - a[0]) * (c[1] - a[1]) - (c[0] - a[0]) * (b[1] - a[1]);
+        area += size;
+        momentX += size * middleX;
+        momentY += size * middleY;
+      }
+    const small = dotPlace(RIG, GREEN, x, y, 0);
+    const large = dotPlace(RIG, GREEN, x, y, radiusPx);
+    const landed = map.landed(x, y);
+    const bentX = momentX / area - landed[0];
+    expect(Math.abs(bentX)).toBeGreaterThan(0.02);
+    expect(Math.abs(large[0] - small[0] - bentX)).toBeLessThan(0.05 * Math.abs(bentX)); // squares, and terms of higher order
+    expect(Math.abs(large[1] - small[1] - (momentY / area - landed[1]))).toBeLessThan(0.05 * Math.abs(bentX));
   });
 });
 

@@ -104,6 +104,14 @@ describe('measureEdge', () => {
     }
   });
 
+  it('takes light that falls off along the edge for no noise', () => {
+    const plane = edgePicture({ normalDeg: 5, sigmaPx: 1 });
+    const samples = plane.samples.map((value, i) => value * (1 + 0.001 * (Math.floor(i / 80) - 39.5)));
+    const edge = measureEdge({ ...plane, samples }, { ...MIDDLE, normalDeg: 5 });
+    expect(edge.noise).toBeLessThan(2e-4); // the fall-off over 70 px is 7 % of the light
+    expect(worstError(edge, 5, 1)).toBeLessThan(0.003);
+  });
+
   it('keeps to the response in noise', () => {
     const errors = [1, 2, 3, 4].map((seed) => {
       const plane = withNoise(edgePicture({ normalDeg: 5, sigmaPx: 1 }), 0.008, seed);
