@@ -3,12 +3,14 @@ import { Command, CommanderError } from 'commander';
 import { VERSION } from '../version.js';
 import { chartCommand } from './chart.js';
 import { GROUP, grouped } from './common-options.js';
+import { datasetCommand } from './dataset.js';
 import { deriveCommand } from './derive.js';
 import { DEBUG_VARIABLE, describeFailure, EXIT } from './failure.js';
 import { judgeCommand } from './judge.js';
 import { measureCommand } from './measure.js';
 import { renderCommand } from './render.js';
 import { startCommand } from './start.js';
+import { workerCommand } from './worker.js';
 import { zonesCommand } from './zones.js';
 
 /** @param endWith takes the exit status of a command that is done without a fault, where it is not 0 */
@@ -43,6 +45,8 @@ Exit status: 0 done, 1 done but the task is not met, 2 the input is wrong,
     deriveCommand(),
     chartCommand(),
     measureCommand(),
+    datasetCommand(),
+    workerCommand(),
   ]) {
     program.addCommand(
       command

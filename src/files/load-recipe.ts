@@ -4,7 +4,12 @@ import { type Fault, InputError } from '../errors.js';
 import { checkSchema } from './check-schema.js';
 import { unreadableFault } from './input-text.js';
 import { checkKind } from './kinds.js';
-import { type Distribution as DistributionFile, type RecipeFile, recipeFile } from './schemas/recipe.js';
+import {
+  correlationMatrix,
+  type Distribution as DistributionFile,
+  type RecipeFile,
+  recipeFile,
+} from './schemas/recipe.js';
 import type { Path } from './source.js';
 import { SourceTree } from './source-tree.js';
 import { readSource } from './yaml-source.js';
@@ -12,18 +17,42 @@ import { readSource } from './yaml-source.js';
 /** How a data set is made, in the names of the code; files are named so that they open from the working folder. */
 export interface Recipe {
   rigs: readonly string[];
-  scenes: { images: string; labels?: string };
+  scenes: {
+    images: string;
+    labels?: string;
+    order: 'in_turn' | 'random';
+    /** The numbers of the scenes are linear light. */
+    isLinear: boolean;
+  };
   count: number;
   seed: number;
+  /** Parts of the pictures, in any unit. */
+  shares?: Readonly<Partial<Record<Split, number>>>;
   /** Numbers of the rig by path, in the order of the file. */
   vary: readonly { key: string; distribution: Distribution }[];
+  /** Groups of these keys with the matrix of their correlations. */
+  correlated: readonly { keys: readonly string[]; matrix: readonly (readonly number[])[] }[];
+  placement: {
+    cover: 'sensor' | 'picture' | 'none';
+    scale: Distribution;
+    at: 'middle' | 'random';
+    quarterTurns: boolean;
+  };
+  accuracy: { oversample: number; tolerance: number; kernelTolerance: number };
   output: {
+    /** Left out: the whole sensor. */
     size?: readonly [width: number, height: number];
+    window: 'random' | 'middle' | readonly [column: number, row: number];
     format: 'png' | 'jpeg' | 'webp' | 'tiff';
+    picture: 'developed' | 'linear' | 'raw';
     quality?: number;
     labels: 'coco' | 'none';
+    /** Least share of a label's area that must be left in the picture. */
+    leastLeft: number;
   };
 }
+
+export type Split = 'train' | 'val' | 'test';
 
 export type Distribution =
   | { kind: 'uniform'; low: number; high: number }
@@ -54,15 +83,30 @@ export function loadRecipe(path: string): Recipe {
       typeof rig === 'string'
         ? [found(['rig'], rig, 'file')]
         : rig.map((name, index) => found(['rig', index], name, 'file')),
-    scenes: { images: found(['scenes', 'images'], scenes.images, 'folder') },
+    scenes: {
+      images: found(['scenes', 'images'], scenes.images, 'folder'),
+      order: scenes.order,
+      isLinear: scenes.linear === true,
+    },
     count: file.count,
     seed: file.seed,
     vary: Object.entries(file.vary).map(([key, value]) => ({
       key,
       distribution: distributionFromFile(value),
     })),
+    correlated: file.correlated.map((group) => ({
+      keys: group.keys,
+      matrix: correlationMatrix(group.keys.length, group)!, // the schema has seen to it
+    })),
+    placement: placementFromFile(file.placement),
+    accuracy: {
+      oversample: file.accuracy.oversample,
+      tolerance: file.accuracy.tolerance,
+      kernelTolerance: file.accuracy.kernel_tolerance,
+    },
     output: outputFromFile(file.output),
   };
+  if (file.shares !== undefined) recipe.shares = file.shares;
   if (scenes.labels !== undefined) recipe.scenes.labels = found(['scenes', 'labels'], scenes.labels, 'file');
   if (faults.length > 0) throw new InputError(faults);
   return recipe;
@@ -78,8 +122,24 @@ function absenceFault(path: string, kind: 'file' | 'folder'): Fault | undefined 
   }
 }
 
-function outputFromFile({ size, format, quality, labels }: RecipeFile['output']): Recipe['output'] {
-  const output: Recipe['output'] = { format, labels };
+function placementFromFile({
+  cover,
+  scale,
+  at,
+  quarter_turns,
+}: RecipeFile['placement']): Recipe['placement'] {
+  return {
+    cover,
+    scale: typeof scale === 'number' ? { kind: 'fixed', value: scale } : distributionFromFile(scale),
+    at,
+    quarterTurns: quarter_turns === true,
+  };
+}
+
+function outputFromFile(file: RecipeFile['output']): Recipe['output'] {
+  const { size, window, format, quality, labels, least_left: leastLeft } = file;
+  const picture = file.picture ?? (format === 'tiff' ? 'linear' : 'developed');
+  const output: Recipe['output'] = { window, format, picture, labels, leastLeft };
   if (size !== undefined) output.size = size;
   if (quality !== undefined) output.quality = quality;
   return output;

@@ -22,6 +22,8 @@ export interface RenderOptions {
   linear?: boolean;
   /** File for the sensor's own numbers (16-bit PNG or TIFF); a camera without mosaic must have one band. */
   raw?: string;
+  /** Hand the sensor's own numbers back, beside the picture. */
+  keepRaw?: boolean;
   /** File for the record (.json, .yaml). */
   recordFile?: string;
   /** The scene's numbers are linear light, not sRGB. */

@@ -39,6 +39,8 @@ export interface RenderResult {
   record: RenderRecord;
   /** The recorded picture in linear light, one plane a band; not clipped where there is noise. */
   picture: Raster;
+  /** The sensor's own numbers, one plane with a mosaic, else one a band; where `raw` or `keepRaw` asked for them. */
+  raw?: Uint16Array[];
 }
 
 /** The pictures that a job writes, for its record. */

@@ -50,10 +50,11 @@ export class Renderer {
   /** Render a scene, as the function `render` does; one at a time. `threads` and `engine` of the options are not looked at.
    * @returns a picture of its own, and how it was made */
   async render(options: RenderOptions): Promise<RenderResult> {
-    const { record, picture } = await this.renderInPlace(options);
+    const { record, picture, raw } = await this.renderInPlace(options);
     return {
       record,
       picture: { ...picture, planes: picture.planes.map((plane) => Float32Array.from(plane)) },
+      raw: raw?.map((plane) => Uint16Array.from(plane)),
     };
   }
 
@@ -72,7 +73,8 @@ export class Renderer {
     const { scene, bands, seconds } = await this.#readAndPrepare(options, settings, watch);
     const formed = await formImage(crew, rig, scene.planes, oversample, bands, watch);
     const cameraStart = performance.now();
-    const recorded = await recordImage(crew, rig.camera, formed.planes, seeds, options.raw !== undefined, {
+    const wantsRaw = options.raw !== undefined || options.keepRaw === true;
+    const recorded = await recordImage(crew, rig.camera, formed.planes, seeds, wantsRaw, {
       signal,
       onProgress: (done, total) => options.onProgress?.({ stage: 'camera', done, total }),
     });
@@ -91,7 +93,7 @@ export class Renderer {
       image: { width, height, bands: rig.camera.bands.map(({ name }) => name) },
       accuracy: formed.accuracy,
       files: recordedFiles(options),
-      rawLevels: options.raw === undefined ? undefined : recordedLevels(recorded.levels),
+      rawLevels: wantsRaw ? recordedLevels(recorded.levels) : undefined,
       seconds: { ...seconds, warp, blur, camera, encode: 0, total: seconds.psf + warp + blur + camera },
       warnings: [...scene.warnings, ...warningsFor(settings, formed.accuracy)],
     };
@@ -110,7 +112,7 @@ export class Renderer {
     }
     if (signal?.aborted) throw new InterruptedError();
     await writeAllWhole(files);
-    return { record, picture };
+    return { record, picture, raw: wantsRaw ? recorded.raw : undefined };
   }
 
   /** End the worker threads. */

@@ -25,16 +25,22 @@ export function lanczos3(x: number): number {
 }
 
 /** Weights that take a line of `inputLength` samples to one of `outputLength` samples at a magnification of
- * `scale`, middle on middle: output sample k lies at (k - (outputLength - 1) / 2) / scale +
- * (inputLength - 1) / 2 of the input.
+ * `scale`: output sample k lies at (k - middle) / scale + (inputLength - 1) / 2 of the input.
  *
  * Where the line shrinks, the kernel widens by 1 / scale, so that what the coarser grid cannot carry is
  * filtered out. The input is extended past its ends by its end samples.
+ *
+ * @param middle  where the input's middle comes to lie, in samples of the output; default: on its middle
  */
-export function resampleWeights(inputLength: number, outputLength: number, scale: number): ResampleWeights {
+export function resampleWeights(
+  inputLength: number,
+  outputLength: number,
+  scale: number,
+  middle = (outputLength - 1) / 2,
+): ResampleWeights {
   const widening = Math.max(1, 1 / scale);
   const support = LOBES * widening;
-  const position = (k: number) => (k - (outputLength - 1) / 2) / scale + (inputLength - 1) / 2;
+  const position = (k: number) => (k - middle) / scale + (inputLength - 1) / 2;
   if (scale === 1 && Number.isInteger(position(0))) {
     const first = Int32Array.from({ length: outputLength }, (_, k) => position(k));
     return { taps: 1, first, weights: new Float64Array(outputLength).fill(1) };
@@ -43,11 +49,11 @@ export function resampleWeights(inputLength: number, outputLength: number, scale
   const first = new Int32Array(outputLength);
   const weights = new Float64Array(outputLength * taps);
   for (let k = 0; k < outputLength; k++) {
-    const middle = position(k);
-    first[k] = Math.floor(middle - support) + 1;
+    const place = position(k);
+    first[k] = Math.floor(place - support) + 1;
     const own = weights.subarray(k * taps, (k + 1) * taps);
-    for (let j = 0; j < taps; j++) own[j] = lanczos3((first[k] + j - middle) / widening);
-    centreWeights(own, first[k] - middle, support);
+    for (let j = 0; j < taps; j++) own[j] = lanczos3((first[k] + j - place) / widening);
+    centreWeights(own, first[k] - place, support);
   }
   return { taps, first, weights };
 }

@@ -15,7 +15,12 @@ beforeEach(() => {
 test('a recipe comes in, with names that open from the working folder', () => {
   expect(loadRecipe(folder.write('a.recipe.yaml', RECIPE))).toEqual({
     rigs: [folder.path('packhouse.rig.yaml')],
-    scenes: { images: folder.path('scenes/'), labels: folder.path('labels.json') },
+    scenes: {
+      images: folder.path('scenes/'),
+      labels: folder.path('labels.json'),
+      order: 'in_turn',
+      isLinear: false,
+    },
     count: 2000,
     seed: 7,
     vary: [
@@ -25,21 +30,108 @@ test('a recipe comes in, with names that open from the working folder', () => {
       { key: 'mount.sensor_tilt_deg[0]', distribution: { kind: 'choice', values: [0, 0.1] } },
       { key: 'lens.colour.axial_um.450', distribution: { kind: 'fixed', value: 3 } },
     ],
-    output: { size: [640, 480], format: 'jpeg', quality: 90, labels: 'coco' },
+    ...ASIDE,
+    output: {
+      size: [640, 480],
+      window: 'random',
+      format: 'jpeg',
+      picture: 'developed',
+      quality: 90,
+      labels: 'coco',
+      leastLeft: 0.2,
+    },
   });
 });
+
+/** What a recipe has although it does not say so. */
+const ASIDE = {
+  correlated: [],
+  placement: { cover: 'sensor', scale: { kind: 'fixed', value: 1 }, at: 'middle', quarterTurns: false },
+  accuracy: { oversample: 1, tolerance: 0.004, kernelTolerance: 0.005 },
+};
 
 test('the shortest recipe; several rigs', () => {
   const text = 'rig: [packhouse.rig.yaml, packhouse.rig.yaml]\nscenes: { images: scenes }\ncount: 3\n';
   const rig = folder.path('packhouse.rig.yaml');
   expect(loadRecipe(folder.write('a.recipe.yaml', text))).toEqual({
     rigs: [rig, rig],
-    scenes: { images: folder.path('scenes') },
+    scenes: { images: folder.path('scenes'), order: 'in_turn', isLinear: false },
     count: 3,
     seed: 1,
     vary: [],
-    output: { format: 'png', labels: 'coco' },
+    ...ASIDE,
+    output: { window: 'random', format: 'png', picture: 'developed', labels: 'coco', leastLeft: 0.2 },
   });
+});
+
+test('all that a recipe can say besides', () => {
+  const text = `${RECIPE.replace('count: 2000', 'shares: { train: 8, test: 2 }\ncount: 2000')
+    .replace('labels: labels.json', 'labels: labels.json, order: random, linear: true')
+    .replace('format: jpeg, quality: 90', 'format: tiff, window: [16, 8], least_left: 0.5')}correlated:
+  - { keys: [lens.waves.W131, mount.sensor_shift_um], correlation: -0.5 }
+placement: { cover: none, scale: { uniform: [0.8, 1.25] }, at: random, quarter_turns: true }
+accuracy: { oversample: 2, tolerance: 0.01, kernel_tolerance: 0.02 }
+`;
+  const recipe = loadRecipe(folder.write('a.recipe.yaml', text));
+  expect(recipe).toMatchObject({
+    scenes: { order: 'random', isLinear: true },
+    shares: { train: 8, test: 2 },
+    correlated: [
+      {
+        keys: ['lens.waves.W131', 'mount.sensor_shift_um'],
+        matrix: [
+          [1, -0.5],
+          [-0.5, 1],
+        ],
+      },
+    ],
+    placement: {
+      cover: 'none',
+      scale: { kind: 'uniform', low: 0.8, high: 1.25 },
+      at: 'random',
+      quarterTurns: true,
+    },
+    accuracy: { oversample: 2, tolerance: 0.01, kernelTolerance: 0.02 },
+    output: { window: [16, 8], format: 'tiff', picture: 'linear', leastLeft: 0.5 },
+  });
+});
+
+const GROUP = 'correlated:\n  - { keys: [lens.waves.W131, mount.sensor_shift_um, camera.sensor.white_e], ';
+test.each([
+  [
+    'correlation: -0.6 }',
+    '13:91: correlated[0].correlation: contradicts itself: no variables can be correlated so, found -0.6. Allowed: from -0.500 to 1 for 3 keys.',
+  ],
+  [
+    'matrix: [[1, 0], [0, 1]] }',
+    '13:86: correlated[0].matrix: has not a row and a column for each key, found [[1,0],[0,1]]. Allowed: 3 x 3 numbers.',
+  ],
+  [
+    'matrix: [[1, 0.5, 0], [0.4, 1, 0], [0, 0, 1]] }',
+    '13:86: correlated[0].matrix: is no correlation matrix, found [[1,0.5,0],[0.4,1,0],[0,0,1]]. Allowed: a symmetric one with 1 on the diagonal.',
+  ],
+  [
+    'matrix: [[1, 0.9, 0.9], [0.9, 1, -0.9], [0.9, -0.9, 1]] }',
+    '13:86: correlated[0].matrix: contradicts itself: no variables can be correlated so, found [[1,0.9,0.9],[0.9,1,-0.9],[0.9,-0.9,1]]. Allowed: a positive semidefinite matrix.',
+  ],
+  [
+    'correlation: 0.5, matrix: [[1]] }',
+    '13:96: correlated[0].matrix: stands beside correlation, which says the same thing. Allowed: one of correlation, matrix.',
+  ],
+  ['}', '13:5: correlated[0]: lacks correlation or matrix.'],
+])('a group that ends in %j', (ending, fault) => {
+  const path = folder.write('a.recipe.yaml', `${RECIPE}${GROUP}${ending}\n`);
+  expect(faultsOf(() => loadRecipe(path)).map(formatFault)[0]).toBe(`${path}:${fault}`);
+});
+
+test('groups of keys that are not varied, or in two groups', () => {
+  const group = (keys: string) => `  - { keys: [${keys}], correlation: 0.5 }\n`;
+  const text = `${RECIPE}correlated:\n${group('lens.waves.W131, lens.waves.W040')}${group('mount.sensor_shift_um, lens.waves.W131')}`;
+  const path = folder.write('a.recipe.yaml', text);
+  expect(faultsOf(() => loadRecipe(path)).map(({ key, message }) => [key, message])).toEqual([
+    ['correlated[0].keys[1]', 'is no key of vary'],
+    ['correlated[1].keys[1]', 'stands in two places of the groups'],
+  ]);
 });
 
 // [a part of the recipe, what stands there instead, the one fault that follows]
@@ -139,6 +231,22 @@ test.each([
     'format: jpeg',
     'format: png',
     '11:42: output.quality: does not fit the format png. Allowed: beside jpeg or webp.',
+  ],
+  [
+    'quality: 90',
+    'picture: raw',
+    '11:52: output.picture: needs 16 bits, which jpeg has not, found "raw". Allowed: developed, or the format png or tiff.',
+  ],
+  [
+    'labels: coco',
+    'window: left, labels: coco',
+    '11:64: output.window: is none of the choices, found "left". Allowed: random, middle, or a pair [column, row] of whole numbers.',
+  ],
+  ['seed: 7', 'shares: {}', '4:1: shares: names no part. Allowed: one of train, val, test or more.'],
+  [
+    'seed: 7',
+    'shares: { train: 0 }',
+    '4:18: shares.train: is too small, found 0. Allowed: a number above 0 and up to 1000000000.',
   ],
   [
     'labels: coco',

@@ -30,10 +30,13 @@ const FOR_ALL = 'optics/rig';
 /** Packages that one folder alone may import. */
 const HOMES: Readonly<Record<string, string>> = {
   '@observablehq/plot': 'report',
+  bullmq: 'jobs',
   'cli-progress': 'cli',
   commander: 'cli',
   'fft.js': 'numeric',
+  ioredis: 'jobs',
   linkedom: 'report',
+  'polyclip-ts': 'dataset',
   sharp: 'files',
   yaml: 'files',
   zod: 'files',

@@ -14,3 +14,4 @@ export { MAX_MEGAPIXELS } from './open.js';
 export { type AllocatePlanes, checkPicture, type Picture, sharedPlanes } from './picture.js';
 export { type PngEncoding, pngEncoding } from './png-encoding.js';
 export { type ReadOptions, readScene, type Scene } from './read.js';
+export { pictureSize } from './size.js';
