@@ -140,7 +140,7 @@ function partOfSensor(parts: RigParts & { camera: Partial<Camera> }, side: 1 | -
 // normalising, and 0.1 % or so the blending.
 const PROMISE = 0.01;
 
-describe('bright pixels come out as the exact PSF of their own field point', { timeout: 60_000 }, () => {
+describe('bright pixels come out as the exact PSF of their own field point', () => {
   const none = { relativeIllumination: 'none' as const };
 
   it.each([

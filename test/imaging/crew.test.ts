@@ -3,13 +3,16 @@ import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { promisify } from 'node:util';
-import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest';
 import { InterruptedError } from '../../src/errors.js';
 import { Crew } from '../../src/imaging/crew.js';
 import { extentSteps } from '../../src/imaging/kernel-size.js';
 import type { Job } from '../../src/imaging/work.js';
 import { energyBySquareRing } from '../../src/optics/psf.js';
 import { sampleRig } from '../optics/samples.js';
+import { BUSY_MS } from '../support/form.js';
+
+vi.setConfig({ testTimeout: BUSY_MS });
 
 let crew: Crew;
 beforeAll(() => {

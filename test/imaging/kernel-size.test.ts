@@ -1,5 +1,5 @@
 import fc from 'fast-check';
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { energyOutside, extentSteps, kernelSide } from '../../src/imaging/kernel-size.js';
 import { kernelSampling } from '../../src/imaging/kernel-source.js';
 import { bandLines } from '../../src/optics/otf.js';
@@ -8,6 +8,9 @@ import type { Rig } from '../../src/optics/rig.js';
 import { samplesPerPixel } from '../../src/optics/sampling.js';
 import { sampleRig } from '../optics/samples.js';
 import { exactPixels } from '../support/exact-psf.js';
+import { BUSY_MS } from '../support/form.js';
+
+vi.setConfig({ testTimeout: BUSY_MS });
 
 const WAVES = { W040: 0.5, W131: 1.5, W222: 1, W220: -0.7 };
 const PIXELS = [400, 300] as const;

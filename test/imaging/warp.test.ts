@@ -1,10 +1,13 @@
 /** Where the light lands: the warp alone, by plain TypeScript and by the compiled kernels. */
-import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest';
 import { Crew } from '../../src/imaging/crew.js';
 import { sensorFrame } from '../../src/imaging/sensor-frame.js';
 import { radialTables, warpRows } from '../../src/imaging/warp.js';
 import type { Rig } from '../../src/optics/rig.js';
 import { type RigParts, sampleRig } from '../optics/samples.js';
+import { BUSY_MS } from '../support/form.js';
+
+vi.setConfig({ testTimeout: BUSY_MS });
 
 let crew: Crew;
 beforeAll(() => {

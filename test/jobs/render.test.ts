@@ -1,7 +1,7 @@
 import { mkdirSync, readdirSync, readFileSync, writeFileSync } from 'node:fs';
 import fc from 'fast-check';
 import sharp from 'sharp';
-import { describe, expect, it } from 'vitest';
+import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest';
 import { parse } from 'yaml';
 import { type Fault, InputError, InterruptedError } from '../../src/errors.js';
 import type { Raster } from '../../src/imaging/raster.js';
@@ -14,6 +14,9 @@ import { srgbDecode, srgbEncode } from '../../src/numeric/srgb.js';
 import type { Rig, Sensor } from '../../src/optics/rig.js';
 import { useFolder } from '../files/packhouse.js';
 import { type RigParts, sampleRig } from '../optics/samples.js';
+import { BUSY_MS } from '../support/form.js';
+
+vi.setConfig({ testTimeout: BUSY_MS });
 
 const folder = useFolder();
 
@@ -60,8 +63,19 @@ function noise(seed: number, planes = 1, width = WIDTH, height = HEIGHT): Raster
 
 /** Kernels that may lose a little more light are small and quick. */
 const QUICK = { kernelTolerance: 0.03, threads: 1 };
-const quick = (options: Omit<RenderOptions, 'rig'> & { rig?: Rig }) =>
-  render({ ...QUICK, rig: rigOf(), ...options });
+
+type Options = Omit<RenderOptions, 'rig'> & { rig?: Rig };
+
+/** A render from the start. */
+const fresh = (options: Options) => render({ ...QUICK, rig: rigOf(), ...options });
+
+/** The same with a worker thread that is kept: what each call does is held against a fresh one at the end of this file. */
+let kept: Renderer;
+beforeAll(() => {
+  kept = new Renderer(QUICK);
+});
+afterAll(() => kept.close());
+const quick = (options: Options) => kept.render({ ...QUICK, rig: rigOf(), ...options });
 
 /** A smooth ramp in colour that no coding of pictures changes by more than its steps, as 8-bit sRGB. */
 function rampFile(name: string, width = WIDTH, height = HEIGHT): Promise<string> {
@@ -88,7 +102,7 @@ const samplesOf = (path: string, depth: 'uchar' | 'ushort') =>
 
 describe('render of pictures in memory', () => {
   it('gives a picture of the sensor, and the record of how it was made', async () => {
-    const { picture, record } = await quick({ scene: noise(1) });
+    const { picture, record } = await fresh({ scene: noise(1) });
     expect([picture.width, picture.height, picture.planes.length]).toEqual([WIDTH, HEIGHT, 1]);
     expect(record).toMatchObject({
       foreglass: expect.stringMatching(/^\d+\.\d+\.\d+/),
@@ -125,32 +139,26 @@ describe('render of pictures in memory', () => {
   });
 
   it('is linear in the scene', async () => {
-    const renderer = new Renderer({ threads: 1 });
-    try {
-      const pictureOf = async (scene: Raster) =>
-        (await renderer.render({ ...QUICK, rig: rigOf(), scene })).picture.planes[0];
-      await fc.assert(
-        fc.asyncProperty(
-          fc.integer({ min: 1, max: 1e6 }),
-          fc.float({ min: 0, max: 1, noNaN: true }),
-          async (seed, share) => {
-            const [a, b] = [noise(seed), noise(seed + 1)];
-            const mixed = a.planes[0].map((value, i) => share * value + (1 - share) * b.planes[0][i]);
-            const expected = await pictureOf(a);
-            const other = await pictureOf(b);
-            expect(
-              largestDifference(
-                await pictureOf({ ...a, planes: [mixed] }),
-                expected.map((value, i) => share * value + (1 - share) * other[i]),
-              ),
-            ).toBeLessThan(6e-6); // float32 transforms
-          },
-        ),
-        { numRuns: 5, seed: 1 },
-      );
-    } finally {
-      await renderer.close();
-    }
+    const pictureOf = async (scene: Raster) => (await quick({ scene })).picture.planes[0];
+    await fc.assert(
+      fc.asyncProperty(
+        fc.integer({ min: 1, max: 1e6 }),
+        fc.float({ min: 0, max: 1, noNaN: true }),
+        async (seed, share) => {
+          const [a, b] = [noise(seed), noise(seed + 1)];
+          const mixed = a.planes[0].map((value, i) => share * value + (1 - share) * b.planes[0][i]);
+          const expected = await pictureOf(a);
+          const other = await pictureOf(b);
+          expect(
+            largestDifference(
+              await pictureOf({ ...a, planes: [mixed] }),
+              expected.map((value, i) => share * value + (1 - share) * other[i]),
+            ),
+          ).toBeLessThan(6e-6); // float32 transforms
+        },
+      ),
+      { numRuns: 5, seed: 1 },
+    );
   });
 
   it('fits a scene of another size, and takes one of the oversampled size as it is', async () => {
@@ -414,7 +422,7 @@ describe('warnings', () => {
 describe('refusals', () => {
   const faultsOf = async (options: Partial<RenderOptions>): Promise<readonly Fault[]> => {
     try {
-      await quick({ scene: noise(1), ...options });
+      await fresh({ scene: noise(1), ...options });
     } catch (error) {
       expect(error).toBeInstanceOf(InputError);
       return (error as InputError).faults;
@@ -530,7 +538,7 @@ describe('interrupts', () => {
   );
 
   it('before the start end it at once', async () => {
-    await expect(quick({ scene: noise(1), signal: AbortSignal.abort() })).rejects.toThrow(InterruptedError);
+    await expect(fresh({ scene: noise(1), signal: AbortSignal.abort() })).rejects.toThrow(InterruptedError);
   });
 });
 
@@ -544,17 +552,17 @@ describe('Renderer', () => {
     ];
     const renderer = new Renderer({ threads: 2 });
     try {
-      const kept: Raster[] = [];
+      const pictures: Raster[] = [];
       for (const rig of [...rigs, rigs[0]]) {
-        kept.push((await renderer.render({ ...QUICK, rig, scene: noise(1) })).picture);
+        pictures.push((await renderer.render({ ...QUICK, rig, scene: noise(1) })).picture);
         await expect(renderer.render({ ...QUICK, rig, scene: folder.path('missing.png') })).rejects.toThrow(
           InputError,
         );
-        kept.push((await renderer.render({ ...QUICK, rig, scene: noise(2) })).picture); // the PSFs are at hand
+        pictures.push((await renderer.render({ ...QUICK, rig, scene: noise(2) })).picture); // the PSFs are at hand
       }
       for (const [i, rig] of [...rigs, rigs[0]].entries()) {
-        expect(kept[2 * i]).toEqual((await quick({ rig, scene: noise(1) })).picture);
-        expect(kept[2 * i + 1]).toEqual((await quick({ rig, scene: noise(2) })).picture);
+        expect(pictures[2 * i]).toEqual((await fresh({ rig, scene: noise(1) })).picture);
+        expect(pictures[2 * i + 1]).toEqual((await fresh({ rig, scene: noise(2) })).picture);
       }
     } finally {
       await renderer.close();

@@ -1,10 +1,13 @@
 import fc from 'fast-check';
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { energyBySquareRing, KernelMaker, type WavefrontLine } from '../../src/optics/psf.js';
 import type { LocalWavefront } from '../../src/optics/wavefront.js';
 import { wavefrontAt } from '../../src/optics/wavefront.js';
 import { exactPixels } from '../support/exact-psf.js';
+import { BUSY_MS } from '../support/form.js';
 import { line, sampleRig, wavefront } from './samples.js';
+
+vi.setConfig({ testTimeout: BUSY_MS });
 
 interface Camera {
   fNumber: number;

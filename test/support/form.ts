@@ -1,5 +1,5 @@
 /** Pictures formed from planes in memory, for tests of the imaging: workers are kept between the tests of a file. */
-import { afterAll, beforeAll } from 'vitest';
+import { afterAll, beforeAll, vi } from 'vitest';
 import { Crew } from '../../src/imaging/crew.js';
 import { type FormedImage, formImage, prepareBands } from '../../src/imaging/form-image.js';
 import type { Engine } from '../../src/imaging/work.js';
@@ -13,6 +13,9 @@ export interface FormOptions {
   kernel?: number;
 }
 
+/** Time that a test may take on a busy machine; on an idle one each takes a second or two at most. */
+export const BUSY_MS = 60_000;
+
 export interface Former {
   /** The crew, for tests of single jobs. */
   crew(): Crew;
@@ -22,6 +25,7 @@ export interface Former {
 
 /** Workers for the tests of the file, ended after the last one. */
 export function useFormer(threads = 2, engine: Engine = 'simd'): Former {
+  vi.setConfig({ testTimeout: BUSY_MS });
   let crew: Crew | undefined;
   beforeAll(() => {
     crew = new Crew(threads, engine);
