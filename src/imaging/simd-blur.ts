@@ -38,7 +38,7 @@ export function blurWorkBytes(kernels: Kernels, grid: BlurGrid): number {
   const spectra = nodes * nodeRowsKept(grid) * rounded(kernels.spectrumBytes(size, size) >>> 0);
   const work = rounded(kernels.blurScratchBytes(size, size, nodes, nodes) >>> 0);
   const spectrumWork = rounded(kernels.spectrumScratchBytes(grid.kernelPx, size) >>> 0);
-  const lines = 5 * rounded(4 * nodes * grid.tilePx) + rounded(4 * grid.width) + 2 * rounded(4 * nodes ** 2);
+  const lines = 5 * rounded(4 * nodes * grid.tilePx) + 2 * rounded(4 * nodes ** 2);
   return spectra + work + spectrumWork + lines + 16 * 64;
 }
 
@@ -53,7 +53,7 @@ export function kernelFftSize(grid: BlurGrid): number {
 }
 
 /** Blurs columns of tiles of one grid. In a rig whose quadrants mirror each other two tiles that mirror each other share their
- * kernels, so that one complex transform serves both. Elsewhere a tile shares it with the tile of ones at the same place. */
+ * kernels, so that one complex transform serves both. Elsewhere, and for tiles of ones, two neighbours share it. */
 export class SimdBlur {
   readonly #kernels: Kernels;
   readonly #scratch: Scratch;
@@ -70,8 +70,6 @@ export class SimdBlur {
   /** Room for the spectra of some rows of nodes; row r of the grid lies in place r modulo the number of rows. */
   readonly #spectra: number[][];
   readonly #spectrumWork: number;
-  /** A row of ones. */
-  readonly #ones: number;
   readonly #weights: Float64Array;
 
   constructor(kernels: Kernels, scratch: Scratch, nodes: NodeKernels, planes: BlurPlanes) {
@@ -94,9 +92,6 @@ export class SimdBlur {
       Array.from({ length: side }, () => scratch.allocate(spectrumBytes)),
     );
     this.#spectrumWork = scratch.allocate(kernels.spectrumScratchBytes(grid.kernelPx, this.#fftSize) >>> 0);
-    const ones = scratch.floats(grid.width);
-    ones.values.fill(1);
-    this.#ones = ones.address;
     writeBlurShape(scratch.memory, this.#shape, {
       fftWidth: this.#fftSize,
       fftHeight: this.#fftSize,
@@ -119,22 +114,26 @@ export class SimdBlur {
     for (let tileY = 0; tileY < rows; tileY++) {
       const isOwnMirrorY = 2 * tileY === tilesY - 1;
       const tile = this.#prepare(tileX, tileY);
-      if (!this.#isFolded) {
-        // beside a scene's tile a row of ones, seen in every row, takes the imaginary part
-        this.#blur(tile, { ...tile, source: this.#ones, sourceStride: 0, target: this.#planes.flatAt });
-        continue;
-      }
-      const mirrors = [0, MIRROR_X, MIRROR_Y, MIRROR_X + MIRROR_Y].filter(
-        (mirror) => !(isOwnMirrorX && mirror & MIRROR_X) && !(isOwnMirrorY && mirror & MIRROR_Y),
-      );
-      for (let at = 0; at < mirrors.length; at += 2) {
-        const second = at + 1 < mirrors.length ? { ...tile, mirror: mirrors[at + 1] } : undefined;
-        this.#blur({ ...tile, mirror: mirrors[at] }, second);
-      }
-      this.#prepareOnes(tileY, isOwnMirrorX, isOwnMirrorY);
-      const ones = this.#onesTile(tile, tileY);
-      if (tileY % 2 === 1) this.#blurOnes(this.#onesTile(this.#tileAt(tileX, tileY - 1), tileY - 1), ones);
-      else if (tileY === rows - 1) this.#blurOnes(ones, undefined);
+      if (this.#isFolded) this.#blurMirrored(tile, isOwnMirrorX, isOwnMirrorY);
+      this.#prepareOnes(tileY, this.#isFolded && isOwnMirrorX, this.#isFolded && isOwnMirrorY);
+      // two tiles, one above the other, share a transform, each with kernels of its own
+      if (tileY % 2 === 0 && tileY < rows - 1) continue;
+      const pair = tileY % 2 === 1 ? [tileY - 1, tileY] : [tileY];
+      const [first, second] = pair.map((at) => this.#tileAt(tileX, at));
+      if (!this.#isFolded) this.#blurApart(first, second);
+      const [ones, moreOnes] = pair.map((at) => this.#onesTile(this.#tileAt(tileX, at), at));
+      this.#blurApart(ones, moreOnes);
+    }
+  }
+
+  /** Blur a tile together with its mirror images: they are seen mirrored, and have the same kernels then. */
+  #blurMirrored(tile: Tile, isOwnMirrorX: boolean, isOwnMirrorY: boolean): void {
+    const mirrors = [0, MIRROR_X, MIRROR_Y, MIRROR_X + MIRROR_Y].filter(
+      (mirror) => !(isOwnMirrorX && mirror & MIRROR_X) && !(isOwnMirrorY && mirror & MIRROR_Y),
+    );
+    for (let at = 0; at < mirrors.length; at += 2) {
+      const second = at + 1 < mirrors.length ? { ...tile, mirror: mirrors[at + 1] } : undefined;
+      this.#blur({ ...tile, mirror: mirrors[at] }, second);
     }
   }
 
@@ -146,8 +145,8 @@ export class SimdBlur {
     this.#kernels.blurTiles(this.#shape, this.#first, second === undefined ? 0 : this.#second);
   }
 
-  /** Blur one tile of ones, or two with kernels of their own. */
-  #blurOnes(first: Tile, second: Tile | undefined): void {
+  /** Blur one tile, or two with kernels of their own. */
+  #blurApart(first: Tile, second: Tile | undefined): void {
     const { memory } = this.#scratch;
     writeBlurTile(memory, this.#first, first);
     if (second !== undefined) writeBlurTile(memory, this.#second, second);
