@@ -1,6 +1,6 @@
 /** The edge in a region that a user has marked. */
 import { InputError } from '../errors.js';
-import type { PixelRect, Plane } from './plane.js';
+import { type PixelRect, type Plane, roomTo } from './plane.js';
 import type { EdgeGuess } from './strip.js';
 
 /** Widest useful strip: more room on the sides adds noise and no light of the edge. */
@@ -86,21 +86,4 @@ function roomiest(region: PixelRect, x: number, y: number, normal: number): Edge
     if (lengthPx * halfWidthPx > best.lengthPx * best.halfWidthPx) best = { lengthPx, halfWidthPx };
   }
   return { x: x - middle * ny, y: y + middle * nx, normalDeg: (normal * 180) / Math.PI, ...best };
-}
-
-/** Distance from a point of a region to its border in a direction; 0 outside. */
-function roomTo(
-  { x: left, y: top, width, height }: PixelRect,
-  x: number,
-  y: number,
-  dx: number,
-  dy: number,
-): number {
-  const along = (at: number, step: number, from: number, size: number) =>
-    step > 0
-      ? (from + size - 0.5 - at) / step
-      : step < 0
-        ? (from - 0.5 - at) / step
-        : Number.POSITIVE_INFINITY;
-  return Math.max(0, Math.min(along(x, dx, left, width), along(y, dy, top, height)));
 }

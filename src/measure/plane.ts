@@ -14,3 +14,20 @@ export interface PixelRect {
   width: number;
   height: number;
 }
+
+/** Distance from a point of a region to its border in a direction; 0 outside. */
+export function roomTo(
+  { x: left, y: top, width, height }: PixelRect,
+  x: number,
+  y: number,
+  dx: number,
+  dy: number,
+): number {
+  const along = (at: number, step: number, from: number, size: number) =>
+    step > 0
+      ? (from + size - 0.5 - at) / step
+      : step < 0
+        ? (from - 0.5 - at) / step
+        : Number.POSITIVE_INFINITY;
+  return Math.max(0, Math.min(along(x, dx, left, width), along(y, dy, top, height)));
+}

@@ -6,7 +6,7 @@ import { type EdgeCurve, fitEdge } from './edge-line.js';
 import { type EdgeSpread, edgeSpread } from './edge-spread.js';
 import type { PixelRect, Plane } from './plane.js';
 import { edgeWidthPx, lineSpread, sfrAt } from './sfr.js';
-import { cutStrip, type EdgeGuess, fromStrip, type Strip } from './strip.js';
+import { cutStrip, type EdgeGuess, fromStrip, narrowedTo, type Strip } from './strip.js';
 
 /** What one edge shows. */
 export interface MeasuredEdge {
@@ -62,15 +62,16 @@ export const EDGE_LIMITS = {
  * frequency counts along the edge's normal; along the rows of pixels it is f cos(angle).
  *
  * Source: ISO 12233:2017, e-SFR, in outline (from memory).
- * @param guess  where to look; the edge may be up to half of `halfWidthPx` away
+ * @param where  where to look; the edge may be up to half of `halfWidthPx` away. Narrowed to what fits between the borders of `bounds`
  * @param bounds only pixels in it are used
  * @throws {InputError} no edge, too short, too straight, clipped, too noisy, not one smooth line: with the limit and the value
  */
 export function measureEdge(
   plane: Plane,
-  guess: EdgeGuess,
+  where: EdgeGuess,
   bounds: PixelRect = wholeOf(plane),
 ): MeasuredEdge {
+  const guess = narrowedTo(bounds, where);
   refuseSmall(guess);
   const strip = cutStrip(plane, guess, bounds);
   refuseClipped(strip);
@@ -159,7 +160,7 @@ function refuseClipped({ values }: Strip): void {
 
 function refuseFaint({ dark, bright, noise }: EdgeSpread): void {
   const modulation = (bright - dark) / (bright + dark);
-  if (!(modulation >= EDGE_LIMITS.modulation))
+  if (!(bright > dark && modulation >= EDGE_LIMITS.modulation))
     throw refusal(
       'shows no edge',
       `a modulation of ${modulation.toFixed(3)}`,

@@ -1,5 +1,5 @@
 /** The pixels around an edge, seen so that the edge runs down. */
-import type { PixelRect, Plane } from './plane.js';
+import { type PixelRect, type Plane, roomTo } from './plane.js';
 
 /** Where an edge is thought to lie. */
 export interface EdgeGuess {
@@ -12,6 +12,18 @@ export interface EdgeGuess {
   lengthPx: number;
   /** How far pixels on either side of it belong to the measurement. */
   halfWidthPx: number;
+}
+
+/** The guess with no more width than there is between the ends of the edge and the borders of a region. */
+export function narrowedTo(bounds: PixelRect, guess: EdgeGuess): EdgeGuess {
+  const angle = (guess.normalDeg * Math.PI) / 180;
+  const [nx, ny] = [Math.cos(angle), Math.sin(angle)];
+  const half = guess.lengthPx / 2;
+  const rooms = [-half, half].flatMap((along) => {
+    const [x, y] = [guess.x - along * ny, guess.y + along * nx];
+    return [roomTo(bounds, x, y, nx, ny), roomTo(bounds, x, y, -nx, -ny)];
+  });
+  return { ...guess, halfWidthPx: Math.min(guess.halfWidthPx, ...rooms) };
 }
 
 /** Pixels in coordinates u, v in which the edge runs within 45 degrees of the v axis: u = x and v = y, or turned about, u = y and v = x. Sample

@@ -123,6 +123,18 @@ describe('measureEdge', () => {
     expect(Math.max(...errors)).toBeLessThan(0.03);
   });
 
+  it('makes do with less width near the border of the picture', () => {
+    const [near, middle] = [22, 39.5].map((x) =>
+      measureEdge(edgePicture({ normalDeg: 5, at: [x, 39.5], sigmaPx: 0.7 }), {
+        ...MIDDLE,
+        x,
+        normalDeg: 5,
+        lengthPx: 50,
+      }),
+    );
+    for (const f of FREQUENCIES) expect(Math.abs(near.sfr(f) - middle.sfr(f))).toBeLessThan(0.003);
+  });
+
   it('uses no pixel outside of its bounds', () => {
     const plane = edgePicture({ normalDeg: 5, sigmaPx: 0.5 });
     const bounds = { x: 15, y: 10, width: 50, height: 60 };
@@ -164,6 +176,14 @@ describe('refusals', () => {
       edgePicture({ normalDeg: 5 }),
       { halfWidthPx: 5 },
       /too little room beside it, found 5.0 px. Allowed: from 8 px up/,
+    );
+  });
+
+  it('refuses an edge at the border of the picture', () => {
+    check(
+      edgePicture({ normalDeg: 5, at: [10, 39.5] }),
+      { x: 10 },
+      /too little room beside it, found 7.\d px/,
     );
   });
 

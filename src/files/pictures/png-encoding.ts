@@ -12,10 +12,11 @@ const LINEAR_GAMMA = 100_000;
 const MOST_CHUNKS = 64;
 
 /** The transfer curve that the tags of a PNG file name: an sRGB chunk or a profile before gAMA, as the standard has it. Undefined for another
- * format, without tags, or for a gamma of another kind.
+ * format, without tags, for a gamma of another kind, or where there is no file to be read: that is told by who reads the picture.
  * Source: Portable Network Graphics (PNG) Specification, W3C, gAMA, sRGB and iCCP (from memory). */
 export async function pngEncoding(path: string): Promise<PngEncoding | undefined> {
-  const file = await open(path);
+  const file = await open(path).catch(() => undefined);
+  if (file === undefined) return undefined;
   try {
     const read = async (length: number, at: number) => {
       const { buffer, bytesRead } = await file.read(Buffer.alloc(length), 0, length, at);
