@@ -22,7 +22,7 @@ function normalShares(shares: NonNullable<Recipe['shares']>): [Split, number][] 
 }
 
 /** The part of a picture. Parts take turns as evenly as whole pictures allow, so that any number of pictures, counted from the first,
- * is divided as the shares say, to within one; the number of pictures does not enter. */
+ * is divided as the shares say, to within two; the number of pictures does not enter. */
 export function turnOf(shares: Recipe['shares'], picture: number): Turn {
   if (shares === undefined) return { turn: picture };
   const parts = normalShares(shares);
