@@ -185,15 +185,23 @@ async function chooseTile(
     const allowedPx = await largestTile(crew, task, order, tolerance, watch, earlier.tilePx, 1);
     return { tilePx: cheapestTile(task, order, allowedPx).tilePx, order };
   }
-  let best: { tilePx: number; order: number; cost: number } | undefined;
+  const { width, height } = frameOf(task.setup);
+  let best = { tilePx: 1, order: 1, cost: Number.POSITIVE_INFINITY };
+  let allowedPx = FIRST_GUESS_PX;
   for (const order of [1, 2, 3]) {
-    const allowedPx = await largestTile(crew, task, order, tolerance, watch);
+    // a higher order allows tiles about twice as large: one round of measuring is enough to tell whether it pays
+    const [guessPx, rounds] = order === 1 ? [allowedPx, 2] : [2 * allowedPx, 1];
+    allowedPx = await largestTile(crew, task, order, tolerance, watch, guessPx, rounds);
     const candidate = cheapestTile(task, order, allowedPx);
-    if (best === undefined || candidate.cost < best.cost) best = { ...candidate, order };
-    if (allowedPx > 1.5 * task.kernelPx) break; // higher orders pay only where tiles are small against the kernel
+    if (candidate.cost < best.cost) best = { ...candidate, order };
+    // higher orders pay only where tiles are small against the kernel, and the picture has more than one
+    if (allowedPx > 1.5 * task.kernelPx || allowedPx >= Math.max(width, height)) break;
   }
-  return best as { tilePx: number; order: number };
+  return best;
 }
+
+/** Side of the tile whose error is measured first. */
+const FIRST_GUESS_PX = 64;
 
 /** The tile, none larger than allowed, that costs the least work per sample. */
 function cheapestTile(
@@ -218,13 +226,13 @@ async function largestTile(
   order: number,
   tolerance: number,
   watch: JobWatch,
-  firstGuess = 64 * order,
-  rounds = 2,
+  guessPx: number,
+  rounds: number,
 ): Promise<number> {
   const { setup } = task;
   const { width, height } = frameOf(setup);
   const longest = Math.max(width, height) + task.kernelPx; // all that the blur sees
-  let tilePx = Math.min(firstGuess, longest);
+  let tilePx = Math.min(guessPx, longest);
   for (let round = 0; round < rounds; round++) {
     const spans = sampleSpans(setup, tilePx);
     const job = { kind: 'spans', ...task, order, spans } as const;
@@ -250,11 +258,13 @@ function sampleSpans(setup: BandSetup, tilePx: number): TileSpan[] {
     [0.25, 0.25],
   ];
   if (!isSymmetric(setup.rig)) shares.push([1, 0], [0, 1], [1, 1], [0.5, 1], [1, 0.5], [0.5, 0.5]);
-  return shares.map(([u, v]) => {
+  const spans = new Map<string, TileSpan>(); // in a small picture several are the same
+  for (const [u, v] of shares) {
     const [nearX, farX] = span(width, u);
     const [nearY, farY] = span(height, v);
-    return { nearX, farX, nearY, farY };
-  });
+    spans.set(`${nearX} ${nearY}`, { nearX, farX, nearY, farY });
+  }
+  return [...spans.values()];
 }
 
 /** Work per sample of the picture, in butterflies: transforms of tiles, of ones and of kernels, and the PSFs themselves. Two tiles share

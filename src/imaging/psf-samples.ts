@@ -18,15 +18,16 @@ export interface PsfSamples {
   sideUm: number;
   /** Side in samples; the middle one has the image point of the lens's own wavelength in its middle. */
   samples: number;
-  /** For each point, a plane for each band: the light in each sample, row-major, x right and y down; each plane sums to 1. */
+  /** For each point, a plane for each band: the light in each sample, row-major, x right and y down; each plane sums to 1 with what
+   * falls outside of it. */
   psfs: Float32Array[][];
 }
 
 /** PSFs of the lens, the pixel left out, on one scale for all points, so that they can be compared. Bands lie where lateral colour puts
  * them.
  *
- * The side follows the rays that land farthest from the image point (eps = -2 N lambda grad W), and leaves room for the diffraction around
- * them.
+ * They are computed as far as the rays land from the image point (eps = -2 N lambda grad W), with room for diffraction around them, and
+ * cut to the square that holds nearly all of the light.
  */
 export function psfSamples(rig: Rig, points: readonly ImagePoint[]): PsfSamples {
   const { camera, mount } = rig;
@@ -47,26 +48,55 @@ export function psfSamples(rig: Rig, points: readonly ImagePoint[]): PsfSamples 
     shortestNm: shortestWavelengthNm(rig),
     kernelPx: samples,
   });
+  const psfs = lines.map((bands) =>
+    bands.map((band) => {
+      const out = new Float32Array(samples ** 2);
+      maker.bandKernel(band, out);
+      return out;
+    }),
+  );
+  const least = LEAST_PX * perPixel;
+  const kept = Math.max(...psfs.flat().map((psf) => sideOfShare(psf, samples, least)));
   return {
-    sidePx: samples / perPixel,
-    sideUm: (samples * camera.pixelPitchUm) / perPixel,
-    samples,
-    psfs: lines.map((bands) =>
-      bands.map((band) => {
-        const out = new Float32Array(samples ** 2);
-        maker.bandKernel(band, out);
-        return out;
-      }),
-    ),
+    sidePx: kept / perPixel,
+    sideUm: (kept * camera.pixelPitchUm) / perPixel,
+    samples: kept,
+    psfs: psfs.map((bands) => bands.map((psf) => middleOf(psf, samples, kept))),
   };
+}
+
+/** Side of the smallest square about the middle that holds `SHOWN_SHARE` of the light, odd as the whole side is. */
+function sideOfShare(psf: Float32Array, side: number, least: number): number {
+  const middle = (side - 1) / 2;
+  const rings = new Float64Array(middle + 1);
+  for (let row = 0; row < side; row++) {
+    for (let column = 0; column < side; column++)
+      rings[Math.max(Math.abs(row - middle), Math.abs(column - middle))] += psf[row * side + column];
+  }
+  let inside = rings[0];
+  let radius = 0;
+  while (radius < middle && (inside < SHOWN_SHARE || 2 * radius + 1 < least)) inside += rings[++radius];
+  return 2 * radius + 1;
+}
+
+function middleOf(psf: Float32Array, side: number, kept: number): Float32Array {
+  const edge = (side - kept) / 2;
+  const out = new Float32Array(kept ** 2);
+  for (let row = 0; row < kept; row++) {
+    const from = (row + edge) * side + edge;
+    out.set(psf.subarray(from, from + kept), row * kept);
+  }
+  return out;
 }
 
 /** Room for diffraction, in units of lambda N: two dark rings of the perfect PSF. */
 const MARGIN = 2.3;
 const LEAST_PX = 4;
 const LARGEST_PX = 96;
-/** About so many samples a side, a picture of the size at which it is shown. */
-const SAMPLES = 72;
+/** About so many samples a side before the cut: after it about as many as a page shows. */
+const SAMPLES = 108;
+/** Of the light of every PSF: the rest lies so thin that it would be black, and the middle the smaller for it. */
+const SHOWN_SHARE = 0.97;
 
 /** The lines of a band with the shift of the band's whole image in their tilt. */
 function placedLines(rig: Rig, { xMm, yMm }: ImagePoint, band: Band): WavefrontLine[] {
