@@ -1,7 +1,14 @@
 /** The library's public face: everything that a command does can be called from code. */
 export { type Fault, formatFault, InputError, InterruptedError, RunError } from './errors.js';
 export { loadPrescription } from './files/load-prescription.js';
-export { loadCameraPart, loadLensPart, loadRig, parseRig, type RigOverrides } from './files/load-rig.js';
+export {
+  loadCameraPart,
+  loadLensPart,
+  loadRig,
+  loadRigFile,
+  parseRig,
+  type RigOverrides,
+} from './files/load-rig.js';
 export { loadTask, parseTask, type Rule, type Task } from './files/load-task.js';
 export { resultData } from './files/result-data.js';
 export type { Raster } from './imaging/raster.js';
@@ -54,6 +61,15 @@ export {
 export { type RenderOptions, type RenderRecord, type RenderResult, render } from './jobs/render.js';
 export { Renderer } from './jobs/renderer.js';
 export { type StartOptions, type StartRecord, start } from './jobs/start.js';
+export {
+  type CoefficientBudget,
+  type DepthRange,
+  type SweepAxis,
+  type SweepOptions,
+  type SweepReport,
+  type SweptFigure,
+  sweep,
+} from './jobs/sweep.js';
 export { type ZonesOptions, type ZonesReport, zones } from './jobs/zones.js';
 export type {
   Band,

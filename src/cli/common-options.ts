@@ -8,6 +8,7 @@ export const GROUP = {
   scene: 'Scene:',
   zones: 'What to look at:',
   task: 'Task:',
+  sweep: 'What is swept:',
   derive: 'What is traced:',
   chart: 'Chart:',
   picture: 'The picture:',

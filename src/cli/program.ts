@@ -10,6 +10,7 @@ import { judgeCommand } from './judge.js';
 import { measureCommand } from './measure.js';
 import { renderCommand } from './render.js';
 import { startCommand } from './start.js';
+import { sweepCommand } from './sweep.js';
 import { workerCommand } from './worker.js';
 import { zonesCommand } from './zones.js';
 
@@ -42,6 +43,7 @@ Exit status: 0 done, 1 done but the task is not met, 2 the input is wrong,
     renderCommand(),
     zonesCommand(),
     judgeCommand(endWith),
+    sweepCommand(endWith),
     deriveCommand(),
     chartCommand(),
     measureCommand(),

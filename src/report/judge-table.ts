@@ -3,7 +3,7 @@ import type { Advice } from '../tasks/advice.js';
 import type { JudgeReport } from '../tasks/judge.js';
 import type { RuleVerdict, ZoneVerdict } from '../tasks/verdict.js';
 import { CAUTION } from './caution.js';
-import { partName, RULE_NAMES } from './task-words.js';
+import { partName, percentText, RULE_NAMES } from './task-words.js';
 import { type Column, fixed, layOutColumns, type Paint, PLAIN, significant, wrapText } from './text.js';
 import { zoneName } from './zone-table.js';
 
@@ -43,7 +43,7 @@ function ruleSection(rule: RuleVerdict, paint: Paint): string[] {
     { head: 'mm', cells: zones.map(({ imageHeightMm }) => fixed(imageHeightMm, 2)) },
     figure('value', ({ value }) => value),
     figure('limit', ({ limit }) => limit),
-    { head: 'margin', cells: zones.map(({ margin }) => percent(margin)) },
+    { head: 'margin', cells: zones.map(({ margin }) => percentText(margin)) },
     text('', ({ met }) => (met ? 'met' : 'NOT MET')),
   ];
   if (zones.some(({ tangential }) => tangential !== undefined))
@@ -102,8 +102,8 @@ function limitSection({ limits }: JudgeReport, paint: Paint): string[] {
     ],
   };
   const columns = [
-    { head: 'least margin', cells: shown.map(({ margin }) => percent(margin)) },
-    { head: 'gain', cells: shown.map(({ gain }) => percent(gain)) },
+    { head: 'least margin', cells: shown.map(({ margin }) => percentText(margin)) },
+    { head: 'gain', cells: shown.map(({ gain }) => percentText(gain)) },
   ];
   return [
     '',
@@ -120,8 +120,8 @@ export function verdictWords(report: JudgeReport): string[] {
   const where = `${RULE_NAMES[worst.rule]} at ${zoneName(zone)}`;
   const words = [
     met
-      ? `The least margin is ${percent(worst.margin)}: ${where}.`
-      : `Furthest from its limit is ${where}: ${percent(worst.margin)}.`,
+      ? `The least margin is ${percentText(worst.margin)}: ${where}.`
+      : `Furthest from its limit is ${where}: ${percentText(worst.margin)}.`,
     fieldWords(largestField, cornerField),
   ];
   const unsure = report.rules.some(
@@ -155,8 +155,8 @@ function fieldWords(largest: number, corner: number): string {
 
 function adviceWords(advice: Advice): string {
   const outcome = advice.met
-    ? `this alone meets the task, with a least margin of ${percent(advice.margin)}.`
-    : `this alone brings the least margin to ${percent(advice.margin)}.`;
+    ? `this alone meets the task, with a least margin of ${percentText(advice.margin)}.`
+    : `this alone brings the least margin to ${percentText(advice.margin)}.`;
   switch (advice.change) {
     case 'focus':
       return `set the sensor shift to ${significant(advice.sensorShiftUm, 3)} um; ${outcome}`;
@@ -185,10 +185,4 @@ function taskAdvice(rule: RuleVerdict['rule']): string {
     default:
       return `${start} the pixels or the stop are too coarse for it; come nearer, use a longer focal length or finer pixels, or open the stop.`;
   }
-}
-
-function percent(margin: number): string {
-  if (!Number.isFinite(margin)) return '-';
-  const text = fixed(100 * margin, Math.abs(margin) < 0.1 ? 1 : 0);
-  return `${margin > 0 && Number(text) !== 0 ? '+' : ''}${text} %`;
 }

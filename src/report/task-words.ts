@@ -1,6 +1,7 @@
-/** Names of rules and of what limits them, for tables and sentences. */
+/** Names of rules, of margins and of what limits them, for tables and sentences. */
 import type { RigPart } from '../tasks/lens-parts.js';
 import type { RuleVerdict } from '../tasks/verdict.js';
+import { fixed } from './text.js';
 
 export const RULE_NAMES: Readonly<Record<RuleVerdict['rule'], string>> = {
   contrast: 'contrast',
@@ -27,4 +28,11 @@ const PART_NAMES: Readonly<Record<RigPart, string>> = {
 /** `coma (W131)`. */
 export function partName(part: RigPart): string {
   return part.startsWith('W') ? `${PART_NAMES[part]} (${part})` : PART_NAMES[part];
+}
+
+/** A margin as it is read: `+32 %`, `-1.4 %`. */
+export function percentText(margin: number): string {
+  if (!Number.isFinite(margin)) return '-';
+  const text = fixed(100 * margin, Math.abs(margin) < 0.1 ? 1 : 0);
+  return `${margin > 0 && Number(text) !== 0 ? '+' : ''}${text} %`;
 }
