@@ -1,5 +1,4 @@
 /** Warp and blur against a general-purpose image library: OpenCV 4.3.0 in the package opencv-wasm 4.3.0-10. */
-import { cv, type Mat } from 'opencv-wasm';
 import { describe, expect, it } from 'vitest';
 import { sensorFrame } from '../../src/imaging/sensor-frame.js';
 import { CounterRandom } from '../../src/numeric/random.js';
@@ -9,6 +8,7 @@ import type { Rig, Waves } from '../../src/optics/rig.js';
 import { wavefrontAt } from '../../src/optics/wavefront.js';
 import { sampleRig } from '../optics/samples.js';
 import { useFormer } from '../support/form.js';
+import { cv, type Mat } from '../support/image-library.js';
 
 const { form, crew } = useFormer();
 
