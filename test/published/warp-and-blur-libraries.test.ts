@@ -36,18 +36,18 @@ describe('blur by one PSF', () => {
     // a field so large that the frame, far off its axis, sees one PSF
     const rig = sampleRig({
       waves,
-      lens: { fNumber: 2.8, fullFieldMm: 4000, relativeIllumination: 'none' },
+      lens: { fNumber: 2.8, fullFieldMm: 400_000, relativeIllumination: 'none' },
       camera: { pixels: [width, height] },
-      mount: { axisPx: [-928_000, -696_000], sensorShiftUm: shiftWaves * 8 * 2.8 ** 2 * 0.55 },
+      mount: { axisPx: [-92_800_000, -69_600_000], sensorShiftUm: shiftWaves * 8 * 2.8 ** 2 * 0.55 },
     });
     const draw = new CounterRandom(11, 0);
     draw.start(0);
     const scene = planeOf(width, height, () => draw.uniform());
-    const { planes, accuracy } = await form(rig, [scene], { kernel: 0.02 });
-    expect(accuracy.blendBound).toBeLessThan(1e-5);
+    const { planes, accuracy } = await form(rig, [scene]);
+    expect(accuracy.blendBound).toBeLessThan(1e-6);
     const { kernelPx } = accuracy;
     const mm = 0.00345;
-    const seen = wavefrontAt(rig, 928_048 * mm, 696_035 * mm, 550);
+    const seen = wavefrontAt(rig, 92_800_048 * mm, 69_600_035 * mm, 550);
     expect(Math.abs(seen.w31)).toBeCloseTo(waves.W131 ?? 0, 2);
     const sampling = { fNumber: 2.8, pitchUm: 3.45, boxUm: 3.45, shortestNm: 550, kernelPx };
     const kernel = new Float64Array(kernelPx ** 2);
@@ -57,8 +57,8 @@ describe('blur by one PSF', () => {
     const turned = mat(kernelPx, kernelPx, Float32Array.from(kernel).reverse());
     const out = new cv.Mat();
     cv.filter2D(source, out, cv.CV_32F, turned, new cv.Point(-1, -1), 0, cv.BORDER_REPLICATE);
-    // float32 transforms on both sides, and PSFs that still change by 1e-5 over the frame: 4e-6 measured
-    expect(largestDifference(planes[0], out.data32F)).toBeLessThan(2e-5);
+    // float32 transforms and float32 sums: 4e-7 measured
+    expect(largestDifference(planes[0], out.data32F)).toBeLessThan(2e-6);
     for (const each of [source, turned, out]) each.delete();
   });
 });
