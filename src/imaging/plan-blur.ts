@@ -1,7 +1,7 @@
 /** The choice of kernel, tile and order of interpolation for one band, and the proof that it holds. */
 import { fineWindow, gridSize } from '../optics/psf.js';
 import { isSymmetric } from '../optics/rig.js';
-import { refuseTooSteep, samplesPerPixel } from '../optics/sampling.js';
+import { refuseTooSteep } from '../optics/sampling.js';
 import { wavefrontAt } from '../optics/wavefront.js';
 import { type BlurGrid, makeBlurGrid, tileEdge } from './blur-grid.js';
 import { probeCount, type TileSpan } from './certificate.js';
@@ -63,8 +63,8 @@ export async function prepareKernels(
     tolerances,
     watch,
   );
-  const largestGrid = largestPupilGrid(setup, kernelPx);
-  const task = { setup, kernelPx, largestGrid };
+  const { largestGrid, psfWork } = pupilGrids(setup, kernelPx);
+  const task = { setup, kernelPx, largestGrid, psfWork };
   let { tilePx, order } = await chooseTile(crew, task, tolerances.blend, watch, earlier?.grid);
   const isMirrored = isSymmetric(setup.rig);
   const { width, height } = frameOf(setup);
@@ -126,26 +126,38 @@ interface PsfTask {
   setup: BandSetup;
   kernelPx: number;
   largestGrid: number;
+  /** Work of a PSF, on average over the field, in butterflies of the blur's transforms. */
+  psfWork: number;
 }
 
-/** The largest pupil grid that the PSFs of a band take, looked up on a lattice of places. */
-function largestPupilGrid({ rig, bandIndex, oversample }: BandSetup, kernelPx: number): number {
+/** A PSF's transforms skip what is dark, but its pupil and pixels take their time, too: measured, three times the butterflies
+ * of a whole transform of the grid. */
+const PSF_OVERHEAD = 3;
+
+/** The pupil grids that the PSFs of a band take, looked up on a lattice of places. */
+function pupilGrids(
+  { rig, bandIndex, oversample }: BandSetup,
+  kernelPx: number,
+): { largestGrid: number; psfWork: number } {
   const band = rig.camera.bands[bandIndex];
   const frame = sensorFrame(rig, band, oversample);
   const sampling = kernelSampling(rig, oversample, kernelPx);
   const window = fineWindow(sampling);
   const shares = Array.from({ length: LATTICE }, (_, i) => i / (LATTICE - 1));
-  let largest = 0;
+  let largestGrid = 0;
+  let work = 0;
   for (const v of shares) {
     for (const u of shares) {
       const [xMm, yMm] = idealPoint(frame, u * frame.width - 0.5, v * frame.height - 0.5);
       for (const { nm, weight } of band.lines) {
         const wavefront = wavefrontAt(rig, xMm, yMm, nm, band);
-        largest = Math.max(largest, gridSize(window, { nm, weight, wavefront }, sampling.fNumber));
+        const n = gridSize(window, { nm, weight, wavefront }, sampling.fNumber);
+        largestGrid = Math.max(largestGrid, n);
+        work += n ** 2 * Math.log2(n);
       }
     }
   }
-  return largest;
+  return { largestGrid, psfWork: (PSF_OVERHEAD * work) / LATTICE ** 2 };
 }
 
 async function chooseKernel(
@@ -204,16 +216,13 @@ async function chooseTile(
 const FIRST_GUESS_PX = 64;
 
 /** The tile, none larger than allowed, that costs the least work per sample. */
-function cheapestTile(
-  { setup, kernelPx }: PsfTask,
-  order: number,
-  allowedPx: number,
-): { tilePx: number; cost: number } {
+function cheapestTile(task: PsfTask, order: number, allowedPx: number): { tilePx: number; cost: number } {
+  const { kernelPx } = task;
   let best = { tilePx: 1, cost: Number.POSITIVE_INFINITY };
   for (let fftSize = blurFftSize(1, kernelPx); fftSize <= LARGEST_FFT; fftSize *= 2) {
     const tilePx = Math.min(Math.floor(allowedPx), fftSize - kernelPx + 1);
     if (tilePx < 1 || blurFftSize(tilePx, kernelPx) !== fftSize) continue;
-    const cost = costPerSample(setup, kernelPx, tilePx, order, fftSize);
+    const cost = costPerSample(task, tilePx, order, fftSize);
     if (cost < best.cost) best = { tilePx, cost };
   }
   return best;
@@ -235,7 +244,8 @@ async function largestTile(
   let tilePx = Math.min(guessPx, longest);
   for (let round = 0; round < rounds; round++) {
     const spans = sampleSpans(setup, tilePx);
-    const job = { kind: 'spans', ...task, order, spans } as const;
+    const { kernelPx, largestGrid } = task;
+    const job = { kind: 'spans', setup, kernelPx, largestGrid, order, spans } as const;
     const error = largest(await crew.run(job, { signal: watch.signal }));
     const factor = error === 0 ? 8 : ((AIM * tolerance) / error) ** (1 / (order + 1));
     tilePx = Math.min(longest, Math.max(1, tilePx * Math.min(8, factor)));
@@ -270,8 +280,7 @@ function sampleSpans(setup: BandSetup, tilePx: number): TileSpan[] {
 /** Work per sample of the picture, in butterflies: transforms of tiles, of ones and of kernels, and the PSFs themselves. Two tiles share
  * each complex transform; mirrored quadrants share kernels. The counts are those of `src/kernels/blur.ts`. */
 function costPerSample(
-  setup: BandSetup,
-  kernelPx: number,
+  { setup, kernelPx, psfWork }: PsfTask,
   tilePx: number,
   order: number,
   fftSize: number,
@@ -282,12 +291,7 @@ function costPerSample(
   const tile = (along * tilePx + along ** 2 * fftSize + fftSize + tilePx + kernelPx) / 2;
   const ones = tile / (sharing === 4 ? 8 : 1);
   const spectra = (order * along * (kernelPx + fftSize / 2)) / sharing;
-  const { pitchUm, shortestNm, fNumber } = kernelSampling(setup.rig, setup.oversample, kernelPx);
-  const fineSide = kernelPx * samplesPerPixel(pitchUm, shortestNm, fNumber);
-  const psfSide = 2 ** Math.ceil(Math.log2(Math.max(64, fineSide)));
-  const psfs = (order ** 2 + probeCount(order) / 4) / sharing; // most tiles are not checked
-  const lines = setup.rig.camera.bands[setup.bandIndex].lines.length;
-  const psf = psfs * lines * psfSide ** 2 * Math.log2(psfSide);
+  const psf = ((order ** 2 + probeCount(order) / 4) / sharing) * psfWork; // most tiles are not checked
   return (line * (tile + ones + spectra) + psf) / tilePx ** 2;
 }
 

@@ -1,10 +1,11 @@
 /** PSFs of a rig as small pictures, for people to look at. */
 import { bandShiftUm } from '../optics/distortion.js';
 import { bandLines } from '../optics/otf.js';
-import { KernelMaker, type WavefrontLine } from '../optics/psf.js';
+import type { WavefrontLine } from '../optics/psf.js';
 import type { Band, Rig } from '../optics/rig.js';
 import { largestSlope } from '../optics/sampling.js';
 import { shortestWavelengthNm } from './kernel-source.js';
+import { loneKernelMaker } from './lone-kernel-maker.js';
 
 /** Where a PSF is looked at: an ideal image point, from the optical axis, + right and + down. */
 export interface ImagePoint {
@@ -41,13 +42,14 @@ export function psfSamples(rig: Rig, points: readonly ImagePoint[]): PsfSamples 
   const sidePx = Math.min(LARGEST_PX, Math.max(LEAST_PX, 2 * Math.ceil(reachUm / camera.pixelPitchUm)));
   const perPixel = Math.max(1, Math.round(SAMPLES / sidePx));
   const samples = sidePx * perPixel + 1 - ((sidePx * perPixel) % 2);
-  const maker = new KernelMaker({
+  const sampling = {
     fNumber: mount.fNumber,
     pitchUm: camera.pixelPitchUm / perPixel,
     boxUm: camera.pixelPitchUm / perPixel,
     shortestNm: shortestWavelengthNm(rig),
     kernelPx: samples,
-  });
+  };
+  const maker = loneKernelMaker(sampling, lines.flat(2));
   const psfs = lines.map((bands) =>
     bands.map((band) => {
       const out = new Float32Array(samples ** 2);
