@@ -13,6 +13,7 @@ interface SweepTexts extends CommonTexts {
   rig: string;
   task?: string;
   lpPerMm?: string;
+  wavefrontRms?: boolean;
   fields?: string;
   fNumber?: string;
   sensorShift?: string;
@@ -35,7 +36,12 @@ function sweepOptions(): Option[] {
       '--lp-per-mm <f>',
       'or sweep the MTF of lens and camera at this frequency, lowest over directions, bands and zones',
     ),
-    grouped(GROUP.task, '--fields <list>', 'zones of the MTF, as in zones (those of a task are its own)'),
+    grouped(
+      GROUP.task,
+      '--wavefront-rms',
+      "or sweep the RMS of the wavefront at the lens's own wavelength, largest over the zones",
+    ),
+    grouped(GROUP.task, '--fields <list>', 'zones of MTF and RMS, as in zones (those of a task are its own)'),
     grouped(GROUP.task, '--seed <number>', 'draws the symbols of decode and the noise (default: 1)'),
     grouped(GROUP.sweep, '--f-number <list>', `f-numbers: ${LIST}, evenly in stops`),
     grouped(
@@ -86,7 +92,7 @@ export function sweepCommand(endWith: (status: number) => void): Command {
 Example:
   foreglass sweep --rig tags.rig.yaml --task read-tags.task.yaml --f-number 2.8..8/7 --sensor-shift=-60..60/7
 
-Exit status: 0 the task is met at the best place (or an MTF was swept), 1 it is not.`,
+Exit status: 0 the task is met at the best place (or no task was swept), 1 it is not.`,
     )
     .action(async (texts: SweepTexts) => {
       const { parseFieldPoint } = await import('../optics/field-points.js');
@@ -95,6 +101,7 @@ Exit status: 0 the task is met at the best place (or an MTF was swept), 1 it is 
       const taskFile = values.path('--task', texts.task);
       const options = {
         lpPerMm: values.number('--lp-per-mm', texts.lpPerMm, { min: 0, aboveMin: true }),
+        wavefrontRms: texts.wavefrontRms,
         fields: values
           .items('--fields', texts.fields)
           ?.map((item) => values.attempt('--fields', () => parseFieldPoint(item)))

@@ -3,7 +3,7 @@
 import { rigWith } from '../dataset/rig-values.js';
 import { InputError } from '../errors.js';
 import { parseRig } from '../files/load-rig.js';
-import type { Rule, Task } from '../files/load-task.js';
+import type { Task } from '../files/load-task.js';
 import { rigData } from '../files/result-data.js';
 import { checkRigKey } from '../files/rig-keys.js';
 import type { RigFile } from '../files/schemas/rig.js';
@@ -16,6 +16,7 @@ import { type DepthRange, depthOf } from '../tasks/depth.js';
 import { layOut } from '../tasks/evaluate.js';
 import { withStop } from '../tasks/lens-parts.js';
 import { MetCheck } from '../tasks/met-check.js';
+import type { SweepFigure } from '../tasks/scorers.js';
 import { type SweepAxis, type SweepPlan, type SweepSample, sweepTask } from '../tasks/sweep.js';
 import type { Trials } from '../tasks/verdict.js';
 import { taskWarnings } from '../tasks/warnings.js';
@@ -33,7 +34,9 @@ export interface SweepOptions {
   task?: Task;
   /** Or sweep an MTF: of lens and camera at this frequency, worst direction, worst band, lowest over the zones. */
   lpPerMm?: number;
-  /** Zones of the MTF; those of a task are its own. Default: axis, top, right, top_right, or all nine places where the rig is not symmetric. */
+  /** Or sweep the RMS of the wavefront at the lens's own wavelength, piston and tilt taken out, largest over the zones. */
+  wavefrontRms?: boolean;
+  /** Zones of MTF and RMS; those of a task are its own. Default: axis, top, right, top_right, or all nine places where the rig is not symmetric. */
   fields?: readonly FieldSpec[];
   fNumbers?: readonly number[];
   sensorShiftsUm?: readonly number[];
@@ -59,7 +62,7 @@ export interface SweepReport {
   rig: string;
   model: 'third-order';
   /** What the samples' `figure` is. */
-  figure: { kind: 'margin'; task: string } | { kind: 'mtf'; lpPerMm: number };
+  figure: { kind: 'margin'; task: string } | { kind: 'mtf'; lpPerMm: number } | { kind: 'wavefront_rms' };
   /** The stop and the electrons of a white scene from which the light of other stops is reckoned; null: it is kept, or there is no sensor. */
   lightFrom: { fNumber: number; whiteE: number } | null;
   /** The zones looked at. */
@@ -72,7 +75,7 @@ export interface SweepReport {
   budget?: CoefficientBudget[];
   /** null: the task is not met there. */
   depth?: DepthRange | null;
-  /** Whether the best place meets the task; without axes, whether the rig does as it stands. null for an MTF. */
+  /** Whether the best place meets the task; without axes, whether the rig does as it stands. null without a task. */
   met: boolean | null;
   warnings: string[];
 }
@@ -81,7 +84,7 @@ export interface SweepReport {
 export interface SweptFigure {
   /** One value an axis, in their order. */
   values: number[];
-  /** The least margin of the task, or the lowest MTF; null where the rig cannot be computed. */
+  /** The least margin of the task, the lowest MTF or the largest RMS; null where the rig cannot be computed. */
   figure: number | null;
   /** Of a task. */
   met?: boolean;
@@ -103,16 +106,15 @@ export interface SweptFigure {
  *   cannot answer, a place that can nowhere be computed
  */
 export async function sweep(options: SweepOptions): Promise<SweepReport> {
-  const { task, lpPerMm, keepLight = false, seed = 1, signal, onProgress } = options;
+  const { task, keepLight = false, seed = 1, signal, onProgress } = options;
   refuseWithoutPurpose(options);
   checkSeed(seed);
   const file = fileOf(options.rig);
   const rig = parseRig(file);
   const axes = axesOf(options);
   refuseWideStops(rig, axes);
-  const rules: readonly Rule[] = task?.rules ?? [
-    { kind: 'contrast', size: { lpPerMm: lpPerMm! }, atLeast: 1 },
-  ];
+  const figure = figureOf(options);
+  const rules = task?.rules ?? [];
   const fields = (task === undefined ? options.fields : task.zones) ?? defaultFields(rig);
   const laidOut = layOut(rig, rules, fields);
   const crew = new DecodeCrew(checkedThreads(options.threads));
@@ -121,14 +123,14 @@ export async function sweep(options: SweepOptions): Promise<SweepReport> {
   try {
     const rigAt = rigMaker(file, axes, keepLight);
     refuseValues(axes, rigAt);
-    const plan: SweepPlan = { axes, rigAt, rules, fields };
+    const plan: SweepPlan = { axes, rigAt, figure, fields };
     const swept = axes.length > 0 ? await sweepTask(plan, trials, progress('sweep')) : undefined;
-    const shown = (sample: SweepSample) => sweptFigure(sample, rigAt, task === undefined);
+    const shown = (sample: SweepSample) => sweptFigure(sample, rigAt, figure);
     const check = new MetCheck(rules, fields, trials);
     const report: SweepReport = {
       rig: rig.lens.name,
       model: 'third-order',
-      figure: task === undefined ? { kind: 'mtf', lpPerMm: lpPerMm! } : { kind: 'margin', task: task.name },
+      figure: figure.kind === 'margin' ? { kind: 'margin', task: task?.name ?? '' } : figure,
       lightFrom: lightFrom(rig, axes, keepLight),
       zones: (swept?.points ?? laidOut.points).map(zoneOf),
       axes,
@@ -151,12 +153,21 @@ export async function sweep(options: SweepOptions): Promise<SweepReport> {
 const STOP = 'mount.f_number';
 const SHIFT = 'mount.sensor_shift_um';
 
-function refuseWithoutPurpose({ task, lpPerMm, fields, budget, depth, ...axes }: SweepOptions): void {
+function figureOf({ task, lpPerMm }: SweepOptions): SweepFigure {
+  if (task !== undefined) return { kind: 'margin', rules: task.rules };
+  return lpPerMm === undefined ? { kind: 'wavefront_rms' } : { kind: 'mtf', lpPerMm };
+}
+
+function refuseWithoutPurpose(options: SweepOptions): void {
+  const { task, lpPerMm, wavefrontRms = false, fields, budget, depth, ...axes } = options;
   const refuse = (message: string, advice: string) => {
     throw new InputError({ message, advice });
   };
-  if ((task === undefined) === (lpPerMm === undefined))
-    refuse('a sweep looks at a task or at an MTF, one of the two', 'Give --task FILE or --lp-per-mm F.');
+  if ([task !== undefined, lpPerMm !== undefined, wavefrontRms].filter(Boolean).length !== 1)
+    refuse(
+      'a sweep looks at a task, at an MTF or at the RMS of the wavefront, one of the three',
+      'Give --task FILE, --lp-per-mm F or --wavefront-rms.',
+    );
   if (lpPerMm !== undefined && !(lpPerMm > 0 && Number.isFinite(lpPerMm)))
     refuse(`${lpPerMm} is no frequency in line pairs per mm`, 'Give a number above 0.');
   if (task === undefined && (budget || depth))
@@ -245,14 +256,15 @@ function zoneOf({ field, azimuthDeg, place }: FieldPoint) {
   return { field, azimuthDeg, place };
 }
 
-/** An MTF comes as the margin against 1, a task's margin as it is. */
+/** What stands for a margin (see `Scorer`), as the figure that it is. */
 function sweptFigure(
   { values, margin, met, rule, zone, zones, decode, refused }: SweepSample,
   rigAt: (values: readonly number[]) => Rig,
-  isMtf: boolean,
+  { kind }: SweepFigure,
 ): SweptFigure {
   if (margin === null) return { values, figure: null, refused };
   const whiteE = rigAt(values).camera.sensor?.whiteE;
-  if (isMtf) return { values, figure: margin + 1, zone, zones: zones?.map((one) => one + 1), whiteE };
-  return { values, figure: margin, met, rule, zone, zones, decode, whiteE };
+  if (kind === 'margin') return { values, figure: margin, met, rule, zone, zones, decode, whiteE };
+  const sign = kind === 'mtf' ? 1 : -1;
+  return { values, figure: sign * margin, zone, zones: zones?.map((one) => sign * one), whiteE };
 }

@@ -6,7 +6,7 @@ import { zoneName } from './zone-table.js';
 type Sample = SweepFigures['samples'][number];
 
 export function sweepCsv({ axes, zones, figure, samples }: SweepFigures): string {
-  const name = figure.kind === 'margin' ? 'margin' : 'mtf';
+  const name = figure.kind;
   const columns: (readonly [string, (sample: Sample) => Cell])[] = [
     ...axes.map(({ key }, at) => [key, (sample: Sample) => sample.values[at]] as const),
     [name, (sample) => sample.figure],

@@ -12,7 +12,7 @@ const WIDTH = 80;
 export interface SweepFigures {
   rig: string;
   model: string;
-  figure: { kind: 'margin'; task: string } | { kind: 'mtf'; lpPerMm: number };
+  figure: { kind: 'margin'; task: string } | { kind: 'mtf'; lpPerMm: number } | { kind: 'wavefront_rms' };
   lightFrom: { fNumber: number; whiteE: number } | null;
   zones: readonly { field: number; azimuthDeg: number; place: string | null }[];
   axes: readonly { key: string; values: readonly number[] }[];
@@ -36,9 +36,7 @@ interface Sample {
 }
 
 export function sweepTable(report: SweepFigures, paint: Paint = PLAIN): string {
-  const { figure } = report;
-  const what = figure.kind === 'margin' ? figure.task : `MTF at ${significant(figure.lpPerMm, 4)} lp/mm`;
-  const head = `${what}, with ${report.rig}: ${report.model} model`;
+  const head = `${subjectOf(report)}, with ${report.rig}: ${report.model} model`;
   return [
     ...wrapText(head, WIDTH).map((line) => paint.strong(line)),
     ...sampleSection(report, paint),
@@ -51,15 +49,29 @@ export function sweepTable(report: SweepFigures, paint: Paint = PLAIN): string {
   ].join('\n');
 }
 
+function subjectOf({ figure }: SweepFigures): string {
+  switch (figure.kind) {
+    case 'margin':
+      return figure.task;
+    case 'mtf':
+      return `MTF at ${significant(figure.lpPerMm, 4)} lp/mm`;
+    case 'wavefront_rms':
+      return 'RMS of the wavefront';
+  }
+}
+
+const TITLES = {
+  margin: 'Least margin over all rules and zones',
+  mtf: 'MTF of lens and camera, lowest over directions and zones',
+  wavefront_rms: 'RMS of the wavefront in waves, largest over the zones',
+} as const;
+const SHORT = { margin: 'least margin', mtf: 'lowest MTF', wavefront_rms: 'largest RMS' } as const;
+
 function sampleSection(report: SweepFigures, paint: Paint): string[] {
   const { axes, figure } = report;
   if (axes.length === 0) return [];
-  const title =
-    figure.kind === 'margin'
-      ? 'Least margin over all rules and zones'
-      : 'MTF of lens and camera, lowest over directions and zones';
   const table = axes.length === 2 ? gridOf(report, paint) : listOf(report, paint);
-  return ['', paint.strong(title), ...table];
+  return ['', paint.strong(TITLES[figure.kind]), ...table];
 }
 
 /** Two axes: the first down, the second across. */
@@ -82,7 +94,7 @@ function gridOf(report: SweepFigures, paint: Paint): string[] {
 }
 
 function listOf(report: SweepFigures, paint: Paint): string[] {
-  const { samples, axes, zones } = report;
+  const { samples, axes, zones, figure } = report;
   const lead = {
     title: '',
     columns: axes.map(
@@ -93,7 +105,10 @@ function listOf(report: SweepFigures, paint: Paint): string[] {
     ),
   };
   const columns: Column[] = [
-    { head: 'least', cells: samples.map(({ figure }) => figureText(report, figure)) },
+    {
+      head: figure.kind === 'wavefront_rms' ? 'largest' : 'least',
+      cells: samples.map((sample) => figureText(report, sample.figure)),
+    },
     {
       head: 'where',
       cells: samples.map((sample) => whereOf(report, sample)),
@@ -123,7 +138,7 @@ function listOf(report: SweepFigures, paint: Paint): string[] {
 function bestSection(report: SweepFigures, paint: Paint): string[] {
   const { best, bestSampled } = report;
   if (best === null || bestSampled === null) return [];
-  const name = report.figure.kind === 'margin' ? 'least margin' : 'lowest MTF';
+  const name = SHORT[report.figure.kind];
   const told = (sample: Sample) =>
     `${placeText(report, sample)}: ${name} ${figureText(report, sample.figure)} (${whereOf(report, sample)})`;
   const words = [`Best between the samples: ${told(best)}.`];

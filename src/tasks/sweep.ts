@@ -1,14 +1,12 @@
 /** The same figure over apertures, focus positions and any other numbers of a rig, and where it is best. */
 import { InputError } from '../errors.js';
-import type { Rule } from '../files/load-task.js';
 import { nestedMaximum, type SearchRange } from '../numeric/nested-maximum.js';
 import type { FieldPoint, FieldSpec } from '../optics/field-points.js';
 import type { Rig } from '../optics/rig.js';
-import type { Bench } from './bench.js';
-import { isOpticsRule, judgeRule, type LaidOut, layOut, type OpticsRule } from './evaluate.js';
+import { isOpticsRule, type LaidOut, layOut } from './evaluate.js';
 import { marginAtLeast } from './figures.js';
 import type { PixelRule, PixelRuleOf } from './rules.js';
-import { blurWithinModule } from './scoring.js';
+import { type SweepFigure, scorersOf } from './scorers.js';
 import { type Trials, tryAt } from './verdict.js';
 
 /** A number of the rig and the values to look at. */
@@ -23,7 +21,7 @@ export interface SweepPlan {
   axes: readonly SweepAxis[];
   /** The rig with these values, one an axis, the light of its stop included. */
   rigAt(values: readonly number[]): Rig;
-  rules: readonly Rule[];
+  figure: SweepFigure;
   fields: readonly FieldSpec[];
 }
 
@@ -31,14 +29,15 @@ export interface SweepPlan {
 export interface SweepSample {
   /** One an axis. */
   values: number[];
-  /** The least margin of the task; null where the rig cannot be computed there. */
+  /** The least margin of the task, or what stands for it (see `Scorer`); null where the rig cannot be computed there. */
   margin: number | null;
+  /** Always true of an MTF or an RMS. */
   met: boolean;
-  /** The rule with the least margin and its value there, and the zone. */
+  /** The rule with the least margin, the value there, and the zone. */
   rule?: PixelRule['kind'];
   value?: number;
   zone?: number;
-  /** The least margin in each zone. */
+  /** The least margin in each zone, trials not counted. */
   zones?: number[];
   /** The rate of `decode` in the zone where it is read worst. Left out: not tried, since another rule is not met. */
   decode?: { value: number; zone: number; met: boolean };
@@ -90,7 +89,7 @@ export async function sweepTask(
   const found = search(plan, bestSampled);
   const refined = found === undefined ? bestSampled : await sampleAt(plan, found, trials);
   const best = isBetter(refined, bestSampled) ? refined : bestSampled; // what the search saw roughly must hold in full
-  const { points } = layOut(plan.rigAt(best.values), plan.rules, plan.fields);
+  const { points } = layOutAt(plan, best.values);
   return { samples, best: withoutRank(best), bestSampled: withoutRank(bestSampled), points };
 }
 
@@ -106,16 +105,20 @@ function combinations(lists: readonly (readonly number[])[]): number[][] {
   );
 }
 
-/** A task in full at one place. */
+function layOutAt({ rigAt, figure, fields }: SweepPlan, values: readonly number[]): LaidOut {
+  return layOut(rigAt(values), figure.kind === 'margin' ? figure.rules : [], fields);
+}
+
+/** The figure in full at one place. */
 async function sampleAt(plan: SweepPlan, values: readonly number[], trials: Trials): Promise<RankedSample> {
-  const laidOut = layOut(plan.rigAt(values), plan.rules, plan.fields);
-  const optics = opticsFigures(laidOut);
-  const { margin: rank } = optics.least;
-  const hasOptics = laidOut.rules.some(isOpticsRule);
-  let sample: RankedSample = { values: [...values], rank, margin: rank, met: true };
+  const laidOut = layOutAt(plan, values);
+  const { zones, least } = leastOf(plan, laidOut);
+  const isTask = plan.figure.kind === 'margin';
+  const hasOptics = !isTask || laidOut.rules.some(isOpticsRule);
+  let sample: RankedSample = { values: [...values], rank: least.margin, margin: least.margin, met: true };
   if (hasOptics) {
-    const { margin, rule, value, zone } = optics.least;
-    sample = { ...sample, met: margin >= 0, rule: rule.kind, value, zone, zones: optics.zones };
+    const { margin, rule, value, zone } = least;
+    sample = { ...sample, met: !isTask || margin >= 0, rule, value, zone, zones };
     if (!sample.met) return sample;
   }
   for (const rule of laidOut.rules.filter((one) => one.kind === 'decode')) {
@@ -131,25 +134,17 @@ async function sampleAt(plan: SweepPlan, values: readonly number[], trials: Tria
   return sample;
 }
 
-/** The least margin of the closed-form rules, and that of each zone. Where there are no such rules, edges within a module stand for
- * symbols, to rank places that are all read or all unread. */
-function opticsFigures({ bench, rules, points }: LaidOut) {
+/** The least margin without trials, and that of each zone. */
+function leastOf({ figure }: SweepPlan, { bench, rules, points }: LaidOut) {
   const zones = points.map(() => Number.POSITIVE_INFINITY);
-  let least: { margin: number; rule: OpticsRule; value: number; zone: number } | undefined;
-  for (const rule of scoredRules(rules))
+  let least: { margin: number; rule?: PixelRule['kind']; value: number; zone: number } | undefined;
+  for (const { rule, look } of scorersOf(figure, rules))
     for (const [zone, point] of points.entries()) {
-      const { margin, value } = judgeRule(bench, rule, point);
+      const { margin, value } = look(bench, point, 'full');
       zones[zone] = Math.min(zones[zone], margin);
       if (least === undefined || margin < least.margin) least = { margin, rule, value, zone };
     }
   return { zones, least: least! }; // a task has a rule and a zone
-}
-
-function scoredRules(rules: readonly PixelRule[]): OpticsRule[] {
-  const optics = rules.filter(isOpticsRule);
-  return optics.length > 0
-    ? optics
-    : rules.filter((rule) => rule.kind === 'decode').map((rule) => blurWithinModule(rule));
 }
 
 /** The lowest rate over the zones, from the last zone on; the first that is not met ends it. */
@@ -206,19 +201,17 @@ function scaleOf(key: string): { position(value: number): number; value(position
 function roughMargin(plan: SweepPlan, values: readonly number[], floor: number): number {
   let laidOut: LaidOut;
   try {
-    laidOut = layOut(plan.rigAt(values), plan.rules, plan.fields);
+    laidOut = layOutAt(plan, values);
   } catch (error) {
     if (error instanceof InputError) return Number.NEGATIVE_INFINITY;
     throw error;
   }
-  return leastOf(laidOut.bench, scoredRules(laidOut.rules), laidOut.points, floor);
-}
-
-function leastOf(bench: Bench, rules: readonly OpticsRule[], points: readonly FieldPoint[], floor: number) {
+  const { bench, rules, points } = laidOut;
+  const scorers = scorersOf(plan.figure, rules);
   let least = Number.POSITIVE_INFINITY;
-  for (let zone = points.length - 1; zone >= 0; zone--)
-    for (const rule of rules) {
-      least = Math.min(least, judgeRule(bench, rule, points[zone], 'rough').margin);
+  for (const point of points.toReversed()) // the farthest zone comes last, and is the likeliest to end it
+    for (const { look } of scorers) {
+      least = Math.min(least, look(bench, point, 'rough').margin);
       if (least <= floor) return least;
     }
   return least;
