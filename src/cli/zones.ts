@@ -11,6 +11,7 @@ import {
   rigOptions,
 } from './common-options.js';
 import { checkOutputs, readDestination } from './destinations.js';
+import { htmlOption, readHtmlFile } from './html-option.js';
 import { endOnInterrupt } from './interrupt.js';
 import { OptionValues } from './option-values.js';
 import { deliver, deliverText, paintFor, print, warn } from './output.js';
@@ -19,6 +20,7 @@ interface ZonesTexts extends RigTexts, CommonTexts {
   fields?: string;
   lpPerMm?: string;
   csv?: true | string;
+  html?: string;
 }
 
 export function zonesCommand(): Command {
@@ -54,6 +56,7 @@ export function zonesCommand(): Command {
         'the figures as CSV, on stdout in place of the table, or in the file',
       ),
     );
+  command.addOption(htmlOption('map, curves, PSFs and tables'));
   for (const option of commonOptions('the figures')) command.addOption(option);
   return command
     .addHelpText('after', '\nExample:\n  foreglass zones --rig tags.rig.yaml --fields axis,0.7,top_right')
@@ -69,14 +72,16 @@ export function zonesCommand(): Command {
       readThreads(values, texts);
       const json = readDestination(values, '--json', texts.json);
       const csv = readDestination(values, '--csv', texts.csv);
-      await checkOutputs(values, { '--rig': rigFile }, { '--json': json, '--csv': csv });
+      const page = readHtmlFile(values, texts.html);
+      await checkOutputs(values, { '--rig': rigFile }, { '--json': json, '--csv': csv, '--html': page });
       values.check();
 
       const [{ loadRig }, { zones }] = await Promise.all([
         import('../files/load-rig.js'),
         import('../jobs/zones.js'),
       ]);
-      const report = zones(loadRig(rigFile, overrides), { fields, lpPerMm });
+      const rig = loadRig(rigFile, overrides);
+      const report = zones(rig, { fields, lpPerMm });
 
       endOnInterrupt(); // not before: nothing was written yet, and a handler would have to wait for the job
       warn(report.warnings, texts.quiet);
@@ -84,6 +89,10 @@ export function zonesCommand(): Command {
       if (csv.kind !== 'none') {
         const { zoneCsv } = await import('../report/zone-csv.js');
         await deliverText(csv, zoneCsv(report));
+      }
+      if (page.kind === 'file') {
+        const { zonesHtml } = await import('../jobs/zones-html.js');
+        await deliverText(page, await zonesHtml(rig, report));
       }
       if (json.kind === 'stdout' || csv.kind === 'stdout') return;
       const { zoneTable } = await import('../report/zone-table.js');

@@ -13,6 +13,8 @@ export interface Figure {
   description: string;
   /** Begins the ids within the plot: plots on one page need different ones. Default: `plot`. */
   id?: string;
+  /** For a page that has heading, background and `darkStyle` of its own: the title is left to screen readers. */
+  inPage?: boolean;
   /** Of the plot without its heading. */
   widthPx: number;
   heightPx: number;
@@ -30,7 +32,9 @@ export async function drawPlot(figure: Figure): Promise<string> {
   const [plotting, { DOMParser }] = await Promise.all([import('@observablehq/plot'), import('linkedom')]);
   // a document of XML, so that names with & and < are written as XML wants them
   const document = new DOMParser().parseFromString(`<svg xmlns="${SVG}"/>`, 'image/svg+xml');
-  const heading = HEADING_PX.title + (figure.subtitle === undefined ? 0 : HEADING_PX.subtitle);
+  const heading = figure.inPage
+    ? 0
+    : HEADING_PX.title + (figure.subtitle === undefined ? 0 : HEADING_PX.subtitle);
   const options = figure.plot(plotting);
   const svg = plotting.plot({
     ...options,
@@ -59,7 +63,11 @@ interface SvgDocument {
 const SVG = 'http://www.w3.org/2000/svg';
 
 /** Page, heading, colours, and words for those who cannot see it. */
-function finish(svg: SvgElement, document: SvgDocument, { title, subtitle, description }: Figure): void {
+function finish(
+  svg: SvgElement,
+  document: SvgDocument,
+  { title, subtitle, description, inPage }: Figure,
+): void {
   const element = (name: string, attributes: Record<string, string>, text?: string) => {
     const made = document.createElementNS(SVG, name);
     for (const [key, value] of Object.entries(attributes)) made.setAttribute(key, value);
@@ -72,6 +80,10 @@ function finish(svg: SvgElement, document: SvgDocument, { title, subtitle, descr
   svg.setAttribute('color', INK.light);
   svg.setAttribute('font-family', FONT.family);
   svg.setAttribute('font-size', String(FONT.sizePx));
+  if (inPage) {
+    svg.prepend(element('desc', {}, description));
+    return;
+  }
   svg.prepend(
     element('title', {}, title),
     element('desc', {}, description),
