@@ -156,7 +156,8 @@ describe('bright pixels come out as the exact PSF of their own field point', () 
       lens: { ...none, fNumber, fullFieldMm, wavelengthNm: nm },
       camera: { ...mono(nm), pixels, pixelPitchUm },
     };
-    for (const side of [1, -1] as const) {
+    // both sides of the axis once; the kernels' own tests go round all quadrants
+    for (const side of pixelPitchUm === 3.45 ? ([1, -1] as const) : ([-1] as const)) {
       expect(await worstError(partOfSensor(parts, side), spread(pixels))).toBeLessThan(PROMISE);
     }
   });

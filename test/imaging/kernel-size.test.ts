@@ -53,7 +53,7 @@ describe('extentSteps', () => {
 describe('energyOutside', () => {
   it.each(RIGS)('at %f um, f/%f, %i nm is what falls outside the kernel', (pitchUm, fNumber, nm) => {
     const rig = rigOf(pitchUm, fNumber, nm);
-    for (const kernelPx of [21, 63]) {
+    for (const kernelPx of [21, 41]) {
       const found = energyOutside(energyBySquareRing, rig, rig.camera.bands[0], 1, 0, 0, kernelPx, 0.01);
       const exact = exactOutside(rig, kernelPx * pitchUm);
       // up to 0.26 / diameter of the light, which the soft rim takes out of the tails: 0.1 %
@@ -78,7 +78,7 @@ describe('energyOutside', () => {
           expect(outside).toBeLessThanOrEqual(tolerance);
         },
       ),
-      { numRuns: 8, seed: 1 },
+      { numRuns: 5, seed: 1 },
     );
   });
 });
