@@ -31,11 +31,14 @@ export function lineSpread(spread: EdgeSpread): LineSpread {
   return { values, middle, sum };
 }
 
-/** The part of the line that is left as it is: twice the edge's width on either side, at least so many pixels. */
-const LEAST_CORE_PX = 6;
+/** The part of the line that is left as it is: on either side one and a half times the edge's width, at least so many pixels. */
+const CORE_WIDTHS = 1.5;
+const LEAST_CORE_PX = 4;
 
 function coreOf(spread: EdgeSpread): number {
-  return OVERSAMPLING * Math.max(LEAST_CORE_PX, 2 * (edgeWidthPx(spread) ?? Number.POSITIVE_INFINITY));
+  return (
+    OVERSAMPLING * Math.max(LEAST_CORE_PX, CORE_WIDTHS * (edgeWidthPx(spread) ?? Number.POSITIVE_INFINITY))
+  );
 }
 
 /** Far from the edge the light that a blur leaves changes slowly with the distance, and the noise does not. So each sample outside of the core is

@@ -21,7 +21,7 @@ const FREQUENCIES = [0.05, 0.1, 0.15, 0.2, 0.25, 0.3, 0.35, 0.4];
 /** A lens with strong aberrations, and a small sensor that looks at one part of its field: the patch in its middle stands at h. The field changes
  * over such a patch as it does over one on a sensor of 5 megapixels. */
 function rigAt(h: number, azimuthDeg: number, hasNoise: boolean): Rig {
-  const pixels = [192, 176];
+  const pixels = [208, 192];
   const radiusPx = (h * 4.6) / PITCH_MM;
   const azimuth = (azimuthDeg * Math.PI) / 180;
   return parseRig({
@@ -43,14 +43,14 @@ function rigAt(h: number, azimuthDeg: number, hasNoise: boolean): Rig {
         : undefined,
     },
     mount: {
-      axis_px: [95.5 - radiusPx * Math.cos(azimuth), 87.5 - radiusPx * Math.sin(azimuth)],
+      axis_px: [103.5 - radiusPx * Math.cos(azimuth), 95.5 - radiusPx * Math.sin(azimuth)],
     },
   });
 }
 
 async function edgesAt(h: number, azimuthDeg: number, hasNoise: boolean): Promise<[Rig, MeasureReport]> {
   const rig = rigAt(h, azimuthDeg, hasNoise);
-  const { scene, truth } = await chart({ kind: 'edges', rig, grid: [1, 1], sizePx: 112 });
+  const { scene, truth } = await chart({ kind: 'edges', rig, grid: [1, 1], sizePx: 128 });
   const { picture } = await renderer.render({ rig, scene, oversample: 4, tolerance: 0.002 });
   return [rig, await measure({ image: picture, truth, rig, cyclesPerPixel: FREQUENCIES })];
 }
@@ -84,9 +84,9 @@ describe('slanted edges through a strongly aberrated lens', () => {
       for (const edge of edges) {
         const zone = zoneMtf(rig, edge);
         for (const [i, { value, predicted }] of edge.sfr.entries()) {
-          // 0.015 is asked for. Measured: 0.006 against the prediction, of which 0.005 are the light outside of the kernel that the blur
-          // gives back by normalising. The prediction is the mean along the edge in the direction of its normal; zones looks at the middle
-          // of the edge and exactly along or across the radius, which is up to 0.005 more: the edge is slanted.
+          // 0.015 is asked for. Measured: 0.006 against the prediction, half of it the light outside of the kernel that the blur gives back by
+          // normalising (0.003 with a kernel tolerance of 0.001). The prediction is the mean along the edge in the direction of its normal;
+          // zones looks at the middle of the edge and exactly along or across the radius, which is up to 0.003 more: the edge is slanted.
           expect(Math.abs(value - predicted!)).toBeLessThan(0.009);
           expect(Math.abs(value - zone[i])).toBeLessThan(0.015);
         }
@@ -95,7 +95,7 @@ describe('slanted edges through a strongly aberrated lens', () => {
       const [, noisy] = await edgesAt(h, azimuth, true);
       expect(noisy.edges).toHaveLength(4);
       for (const edge of noisy.edges) {
-        // shot noise of both sides; some 2500 flat pixels tell it to 1.4 %, so these are four standard errors
+        // shot noise of both sides; some 3000 flat pixels tell it to 1.3 %, so these are four standard errors
         const shotNoise = Math.sqrt((edge.bright + edge.dark) / 2 / 12_500);
         expect(Math.abs(edge.noise / shotNoise - 1)).toBeLessThan(0.06);
         const zone = zoneMtf(rig, edge);
@@ -131,7 +131,7 @@ describe('discs through a distorting lens with lateral colour', () => {
     const known = await measure({ image: picture, truth, rig });
     expect(known.skipped).toEqual([]);
     expect(known.dots).toHaveLength(3 * 12);
-    // 0.03 px are asked for; measured 0.009: the light outside of the kernel, half a per cent, has a centroid of its own
+    // 0.03 px are asked for; measured 0.009, and 0.014 where the kernels leave twice as much light outside
     for (const { found, expected } of known.dots)
       expect(Math.hypot(found[0] - expected![0], found[1] - expected![1])).toBeLessThan(0.015);
     const corner = Math.max(...known.distortion.map(({ radialShiftPx }) => Math.abs(radialShiftPx)));
