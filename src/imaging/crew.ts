@@ -57,7 +57,8 @@ export class Crew {
     const results = new Float64Array(new SharedArrayBuffer(8 * Math.max(1, count)));
     const mark = this.arena.mark();
     const bytes = workBytes(this.#kernels, this.engine, job);
-    const base = this.arena.allocate(this.threads * rounded(bytes));
+    const hands = Math.max(1, Math.min(this.threads, count)); // no more than there are tasks for
+    const base = this.arena.allocate(hands * rounded(bytes));
     const messageFor = (worker: number): JobMessage => ({
       job,
       count,
@@ -72,7 +73,7 @@ export class Crew {
       onProgress && setInterval(() => onProgress(Atomics.load(control, CONTROL.done), count), PROGRESS_MS);
     try {
       const workers = await this.#workers;
-      await Promise.all(workers.map((worker, at) => answerOf(worker, messageFor(at))));
+      await Promise.all(workers.slice(0, hands).map((worker, at) => answerOf(worker, messageFor(at))));
     } finally {
       this.arena.release(mark);
       clearInterval(timer);

@@ -156,8 +156,8 @@ export class SimdKernelMaker implements KernelMaking {
   }
 }
 
-/** Windows larger than this are rare, and would take much room from every worker: they are worked out in float64. */
-const LARGEST_RINGS = 1024;
+/** Windows larger than the kernels' transforms are worked out in float64. */
+const LARGEST_RINGS = LARGEST_KERNEL_FFT;
 
 /** Bytes of work space for `SimdRings`. */
 export function ringsWorkBytes(kernels: Kernels): number {
