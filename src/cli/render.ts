@@ -21,6 +21,7 @@ interface RenderTexts extends RigTexts, CommonTexts {
   linear?: boolean;
   raw?: string;
   record?: string;
+  sheet?: string;
   sceneLinear?: boolean;
   oversample: string;
   tolerance: string;
@@ -95,6 +96,13 @@ export function renderCommand(): Command {
     );
   command.addOption(
     grouped(
+      GROUP.output,
+      '--sheet <file>',
+      'a sheet to judge by eye (.png, .svg): scene, picture and PSF side by side at the axis, half-way out, at an edge and in a corner',
+    ),
+  );
+  command.addOption(
+    grouped(
       GROUP.running,
       '--engine <name>',
       'what computes: the compiled kernels, or plain float64 to hold them against, slower by far',
@@ -118,6 +126,7 @@ export function renderCommand(): Command {
         linear: texts.linear,
         raw: values.path('--raw', texts.raw),
         recordFile: values.path('--record', texts.record),
+        sheet: values.path('--sheet', texts.sheet),
         sceneLinear: texts.sceneLinear,
         oversample: values.number('--oversample', texts.oversample, { min: 1, max: 16, integer: true }),
         tolerance: values.number('--tolerance', texts.tolerance, { min: 0, aboveMin: true, max: 1 }),
@@ -138,6 +147,7 @@ export function renderCommand(): Command {
           '--out': fileDestination(options.out),
           '--raw': fileDestination(options.raw),
           '--record': fileDestination(options.recordFile),
+          '--sheet': fileDestination(options.sheet),
           '--json': json,
         },
       );
@@ -161,16 +171,16 @@ export function renderCommand(): Command {
       await deliver(json, record);
       if (texts.quiet || json.kind === 'stdout') return;
       const { renderSummary } = await import('../report/render-summary.js');
-      await print(renderSummary(record, [options.out, options.raw, options.recordFile]));
+      await print(renderSummary(record, [options.out, options.raw, options.recordFile, options.sheet]));
     });
 }
 
-function refuseNoPicture(values: OptionValues, { out, raw, linear }: RenderTexts): void {
-  if (out === undefined && raw === undefined) {
+function refuseNoPicture(values: OptionValues, { out, raw, sheet, linear }: RenderTexts): void {
+  if (out === undefined && raw === undefined && sheet === undefined) {
     values.add({
       key: '--out',
       message: 'no picture is asked for',
-      advice: 'Name one with --out IMAGE or --raw FILE.',
+      advice: 'Name one with --out IMAGE, --raw FILE or --sheet FILE.',
     });
   }
   if (linear && out === undefined) {

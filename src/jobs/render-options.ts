@@ -11,6 +11,7 @@ import { assertWritable } from '../files/write-whole.js';
 import type { Raster } from '../imaging/raster.js';
 import type { Engine } from '../imaging/work.js';
 import type { Rig } from '../optics/rig.js';
+import { checkSheet } from './render-sheet.js';
 
 export interface RenderOptions {
   rig: Rig;
@@ -26,6 +27,8 @@ export interface RenderOptions {
   keepRaw?: boolean;
   /** File for the record (.json, .yaml). */
   recordFile?: string;
+  /** File for a sheet that shows scene, picture and PSFs side by side (.png, .svg). */
+  sheet?: string;
   /** The scene's numbers are linear light, not sRGB. */
   sceneLinear?: boolean;
   /** Blur on a grid of so many samples a pixel on each side, 1 to 16. Default: 1. */
@@ -136,5 +139,6 @@ export function checkOutputs(options: RenderOptions): { out?: PictureFormat; raw
   if (out !== undefined) assertWritable(out, '--out');
   if (raw !== undefined) assertWritable(raw, '--raw');
   if (recordFile !== undefined) assertWritable(recordFile, '--record');
+  if (options.sheet !== undefined) checkSheet(options.sheet);
   return { out: outFormat, raw: rawFormat };
 }

@@ -29,6 +29,7 @@ import {
   recordedLevels,
   warningsFor,
 } from './render-record.js';
+import { keepScene, sheetFile } from './render-sheet.js';
 
 /** Renders pictures one after another. Worker threads and memory are kept from one picture to the next, and so are the PSFs while
  * lens, sensor and mount stay the same. Close it when done: until then the process does not end. */
@@ -71,6 +72,7 @@ export class Renderer {
       onProgress: (stage, done, total) => options.onProgress?.({ stage, done, total }),
     };
     const { scene, bands, seconds } = await this.#readAndPrepare(options, settings, watch);
+    const kept = options.sheet === undefined ? undefined : keepScene(rig, scene, oversample);
     const formed = await formImage(crew, rig, scene.planes, oversample, bands, watch);
     const cameraStart = performance.now();
     const wantsRaw = options.raw !== undefined || options.keepRaw === true;
@@ -106,6 +108,8 @@ export class Renderer {
     if (options.raw !== undefined && outputs.raw !== undefined && recorded.raw !== undefined) {
       files.push({ path: options.raw, data: await encodeRaw(recorded.raw[0], width, height, outputs.raw) });
     }
+    if (options.sheet !== undefined && kept !== undefined)
+      files.push({ path: options.sheet, data: await sheetFile(options.sheet, rig, kept, picture) });
     record.seconds.encode = (performance.now() - encodeStart) / 1000;
     if (options.recordFile !== undefined) {
       files.push({ path: options.recordFile, data: dataText(options.recordFile, resultData(record)) });

@@ -85,7 +85,7 @@ describe('foreglass', () => {
       "error: --tolerance: out of range, found '0'. Allowed: numbers above 0, up to 1.",
       "error: --seed: out of range, found '-1'. Allowed: whole numbers from 0 up.",
       "error: --threads: out of range, found '1.5'. Allowed: whole numbers from 1 to 64.",
-      'error: --out: no picture is asked for. Name one with --out IMAGE or --raw FILE.',
+      'error: --out: no picture is asked for. Name one with --out IMAGE, --raw FILE or --sheet FILE.',
       'error: --linear: goes with --out only; --raw is linear by itself.',
     ]);
   });
