@@ -1,5 +1,6 @@
 // @ts-check
-/** The loop on one page: a chart, the picture of it, and the contrast that is measured on the picture over the one that the rig predicts.
+/** The loop on one page: a chart, the picture of it, and the contrast that is measured on the picture over
+ * the one that the rig predicts.
  *
  *     node scenes/loop.js
  */
@@ -31,7 +32,8 @@ const DETAIL_PX = 240;
 const GAP_PX = 12;
 
 /** Draw the chart, render it, measure the picture and lay all three out.
- * @returns {Promise<{ edges: number, worst: number }>} how many edges were measured, and the largest difference up to 0.4 cycles a pixel */
+ * @returns {Promise<{ edges: number, worst: number }>} how many edges were measured, and the largest
+ *   difference up to 0.4 cycles a pixel */
 export async function closeTheLoop() {
   await mkdir(FOLDER, { recursive: true });
   const file = (/** @type {string} */ name) => shown(join(FOLDER, name));
@@ -86,7 +88,8 @@ export async function closeTheLoop() {
  * @property {{ cycles_per_pixel: number, value: number, predicted: number }[]} sfr
  */
 
-/** @param {Edge[]} edges @param {{ patch: number, x: number, y: number }[]} places @param {string} chart @param {string} picture */
+/** @param {Edge[]} edges @param {{ patch: number, x: number, y: number }[]} places @param {string} chart
+ *   @param {string} picture */
 async function sheet(edges, places, chart, picture) {
   const rows = await Promise.all(
     SHOWN.map(async ({ patch, label }) => {
@@ -173,7 +176,8 @@ async function sheet(edges, places, chart, picture) {
 }
 
 /** A detail of a picture in linear light as a PNG that a page can hold, in sRGB.
- * @param {string} file @param {[number, number]} middle in sensor pixels @param {number} oversample of the file
+ * @param {string} file @param {[number, number]} middle in sensor pixels @param {number} oversample of the
+ *   file
  */
 async function detail(file, [x, y], oversample) {
   const { raster } = await readScene(file, { sceneLinear: true });

@@ -52,7 +52,8 @@ export function drawBars(sheet: Sheet, choices: SettledChoices): Drawn {
   return { plane, found: { bars } };
 }
 
-/** Two strips side by side, each with its groups one behind the other along the radius, coarse to fine and outward. */
+/** Two strips side by side, each with its groups one behind the other along the radius, coarse to fine and
+ * outward. */
 function layOut(frequencies: readonly number[], sizePx: number): LocalBar[] {
   const widest = groupWidth(frequencies[0]);
   const strip = (modulation: Modulation, across: number, extentOf: (f: number) => number): LocalBar[] => {

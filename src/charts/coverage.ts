@@ -1,17 +1,20 @@
 /** How much of a square a shape covers: exact, in closed form. */
 import type { HalfPlane, Ring, Shape } from './shape.js';
 
-/** Corners of the clipped square. A half-plane adds one corner at most, and no shape here has more than four. */
+/** Corners of the clipped square. A half-plane adds one corner at most, and no shape here has more than four.
+ */
 const MOST_CORNERS = 16;
 
-/** Scratch: a polygon as x, y, x, y ... relative to the middle of the square, and the one that it is clipped into. */
+/** Scratch: a polygon as x, y, x, y ... relative to the middle of the square, and the one that it is clipped
+ * into. */
 let polygon = new Float64Array(2 * MOST_CORNERS);
 let clipped = new Float64Array(2 * MOST_CORNERS);
 
 /** The share of a square's area inside of a shape, 0..1, right to about 1e-12.
  *
- * The square is clipped by each half-plane (Sutherland and Hodgman, CACM 17 (1974) 32, from memory); the area of what is left is that of
- * its triangles with the ring's middle, each cut by the circles in closed form.
+ * The square is clipped by each half-plane (Sutherland and Hodgman, CACM 17 (1974) 32, from memory); the
+ * area of what is left is that of its triangles with the ring's middle, each cut by the circles in closed
+ * form.
  *
  * @param x, y  middle of the square
  * @param side  of the square, parallel to the axes
@@ -99,8 +102,8 @@ function areaInDisc(corners: number, x: number, y: number, radius: number): numb
   return area;
 }
 
-/** Signed area within the disc around the origin of the triangle of the origin, p and q: a triangle where the side from p to q runs in the
- * disc, circular sectors where it runs outside. */
+/** Signed area within the disc around the origin of the triangle of the origin, p and q: a triangle where the
+ * side from p to q runs in the disc, circular sectors where it runs outside. */
 function triangleInDisc(px: number, py: number, qx: number, qy: number, radius: number): number {
   const dx = qx - px;
   const dy = qy - py;

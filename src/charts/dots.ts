@@ -8,7 +8,8 @@ import { type Sheet, tidy } from './sheet.js';
 export function drawDots(sheet: Sheet, choices: SettledChoices): Drawn {
   const { white, dark, oversample, sizePx = 24 } = choices;
   const radiusPx = sizePx / 2;
-  // four diameters apart: a disc's blur, and its shift by distortion between two neighbours, stay clear of the next one
+  // four diameters apart: a disc's blur, and its shift by distortion between two neighbours, stay clear of
+  // the next one
   const wantedPx = choices.grid === undefined && choices.fields === undefined ? 4 * sizePx : 2 * sizePx;
   const places = patchPlaces(sheet, choices, { radiusPx, apartPx: wantedPx, most: 41 });
   const plane = sheet.blank(oversample, white);

@@ -21,8 +21,8 @@ const DRAWERS: Readonly<Record<ChartKind, (sheet: Sheet, choices: SettledChoices
 
 /** Draw a chart on the rig's sensor, `oversample` samples a pixel on each side.
  *
- * Every sample is the mean over its own square in closed form, so the chart's own blur is exactly that square; the mean of
- * oversample x oversample samples is the mean over the pixel.
+ * Every sample is the mean over its own square in closed form, so the chart's own blur is exactly that
+ * square; the mean of oversample x oversample samples is the mean over the pixel.
  *
  * @returns one plane in linear light, (oversample x width) x (oversample x height), and the truth
  * @throws {InputError} choices that are out of range or do not fit the frame

@@ -68,8 +68,8 @@ function rowsOf({ ring, halfPlanes }: Shape, reach: number): [from: number, to: 
   return isBounded ? [from - reach, to + reach] : [Number.NEGATIVE_INFINITY, Number.POSITIVE_INFINITY];
 }
 
-/** The x between which every point of a row lies inside of all half-planes and of the outer circle, moved outward by `margin` (inward where
- * it is negative). Empty: from > to. */
+/** The x between which every point of a row lies inside of all half-planes and of the outer circle, moved
+ * outward by `margin` (inward where it is negative). Empty: from > to. */
 function columnsOf(shape: Shape, y: number, margin: number): [from: number, to: number] {
   let from = Number.NEGATIVE_INFINITY;
   let to = Number.POSITIVE_INFINITY;

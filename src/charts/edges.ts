@@ -14,7 +14,8 @@ export function drawEdges(sheet: Sheet, choices: SettledChoices): Drawn {
   const { white, dark, oversample, angleDeg } = choices;
   const sizePx =
     choices.sizePx ?? Math.min(LARGEST_DEFAULT_PX, Math.floor(Math.min(sheet.width, sheet.height) / 2));
-  // two sides' length of white between neighbours: a corner reaches sqrt(1/2) of a side, and as much room stays on either hand
+  // two sides' length of white between neighbours: a corner reaches sqrt(1/2) of a side, and as much room
+  // stays on either hand
   const needs = { radiusPx: sizePx * Math.SQRT1_2, apartPx: 2 * sizePx, most: 7 };
   const plane = sheet.blank(oversample, white);
   const edges = patchPlaces(sheet, choices, needs).flatMap((place, patch) => {

@@ -6,19 +6,21 @@ import { CHART_KINDS, type ChartKind } from './truth.js';
 export interface ChartChoices {
   /** Samples a pixel on each side, 1 to 16. Default: 4. */
   oversample?: number;
-  /** Light of the white parts over that of the dark ones, above 1. Default: 4 for `edges`, 20 for the others. */
+  /** Light of the white parts over that of the dark ones, above 1. Default: 4 for `edges`, 20 for the others.
+   */
   contrast?: number;
   /** Linear light of the white parts, above 0 and up to 1. Default: 0.8. */
   white?: number;
-  /** Patches across and down, spread evenly over the frame (`edges`, `dots`, `star`, `bars`). Default: as many as fit well. */
+  /** Patches across and down, spread evenly over the frame (`edges`, `dots`, `star`, `bars`). Default: as
+   * many as fit well. */
   grid?: readonly [columns: number, rows: number];
   /** Patches at these field points in place of the grid (`edges`, `dots`, `star`, `bars`). */
   fields?: readonly FieldSpec[];
-  /** Side of the squares (`edges`), diameter of the discs (`dots`) or stars (`star`), length of the bars (`bars`), side of the cells
-   * (`checker`), in sensor pixels. */
+  /** Side of the squares (`edges`), diameter of the discs (`dots`) or stars (`star`), length of the bars
+   * (`bars`), side of the cells (`checker`), in sensor pixels. */
   sizePx?: number;
-  /** Slant of the edges against the radius, 2 to 40 (`edges`, default 5), or of the rows of cells against the pixels, 0 to 45 (`checker`,
-   * default 0), in degrees. */
+  /** Slant of the edges against the radius, 2 to 40 (`edges`, default 5), or of the rows of cells against the
+   * pixels, 0 to 45 (`checker`, default 0), in degrees. */
   angleDeg?: number;
   /** Pairs of a dark and a white sector, 4 to 180 (`star`). Default: 36. */
   sectors?: number;

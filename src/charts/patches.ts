@@ -1,6 +1,6 @@
 /** Where the patches of a chart stand. */
 import { InputError } from '../errors.js';
-import { fieldPoint } from '../optics/field-points.js';
+import { type FieldSpec, fieldPoint } from '../optics/field-points.js';
 import { pixelPitchMm } from '../optics/rig.js';
 import type { SettledChoices } from './options.js';
 import type { Sheet } from './sheet.js';
@@ -31,7 +31,7 @@ export function patchPlaces(sheet: Sheet, { grid, fields }: SettledChoices, need
       outside.map(({ spec, x, y }) => ({
         key: '--fields',
         message: `a patch there stands over the frame`,
-        found: `'${spec}' at (${x.toFixed(1)}, ${y.toFixed(1)}), reaching ${needs.radiusPx.toFixed(1)} px around it`,
+        found: `'${nameOf(spec)}' at (${x.toFixed(1)}, ${y.toFixed(1)}), reaching ${needs.radiusPx.toFixed(1)} px around it`,
         allowed: `places whose patch lies on the sensor of ${sheet.width} x ${sheet.height} pixels`,
         advice: 'Choose places further in, or a smaller --size.',
       })),
@@ -39,7 +39,7 @@ export function patchPlaces(sheet: Sheet, { grid, fields }: SettledChoices, need
   for (const [at, a] of places.entries()) {
     const near = places.slice(0, at).find((b) => Math.hypot(a.x - b.x, a.y - b.y) < needs.apartPx);
     if (near !== undefined)
-      throw tooNear(`'${near.spec}' and '${a.spec}'`, '--fields', distance(a, near), needs);
+      throw tooNear(`'${nameOf(near.spec)}' and '${nameOf(a.spec)}'`, '--fields', distance(a, near), needs);
   }
   return places.map(({ spec: _, ...place }) => place);
 }
@@ -62,6 +62,12 @@ function onGrid(sheet: Sheet, [columns, rows]: readonly [number, number], needs:
       advice: 'Choose a smaller --size or a coarser --grid.',
     });
   return places;
+}
+
+/** A field point as the command line writes it. */
+function nameOf(spec: FieldSpec): string {
+  if (typeof spec !== 'object') return String(spec);
+  return spec.place ?? (spec.azimuthDeg === 0 ? String(spec.field) : `${spec.field}@${spec.azimuthDeg}`);
 }
 
 /** An odd number of patches each way, so that one stands in the middle. */

@@ -16,7 +16,8 @@ export interface Ring {
   outerPx: number;
 }
 
-/** All points inside of every half-plane and of the ring. In sensor pixels, pixel (0, 0) having its middle at (0, 0). */
+/** All points inside of every half-plane and of the ring. In sensor pixels, pixel (0, 0) having its middle at
+ * (0, 0). */
 export interface Shape {
   halfPlanes: readonly HalfPlane[];
   ring?: Ring;
@@ -27,7 +28,8 @@ export function disc(x: number, y: number, radiusPx: number): Shape {
   return { halfPlanes: [], ring: { x, y, innerPx: 0, outerPx: radiusPx } };
 }
 
-/** A rectangle around (x, y): `alongPx` long in the direction `angleDeg` (from +x toward +y), `acrossPx` wide. */
+/** A rectangle around (x, y): `alongPx` long in the direction `angleDeg` (from +x toward +y), `acrossPx`
+ * wide. */
 export function rectangle(x: number, y: number, alongPx: number, acrossPx: number, angleDeg: number): Shape {
   const sides = [alongPx, acrossPx, alongPx, acrossPx];
   return {

@@ -1,6 +1,8 @@
-/** How an edge is slanted so that it can be measured: the pixels must stand at many different distances from it. */
+/** How an edge is slanted so that it can be measured: the pixels must stand at many different distances from
+ * it. */
 
-/** Slopes p/q at which the lines of pixels along an edge are far apart: 1 / sqrt(p^2 + q^2) of a pixel, which leaves quarter-pixel bins empty. */
+/** Slopes p/q at which the lines of pixels along an edge are far apart: 1 / sqrt(p^2 + q^2) of a pixel, which
+ * leaves quarter-pixel bins empty. */
 const REPEATING: readonly (readonly [p: number, q: number])[] = [
   [0, 1],
   [1, 1],
@@ -15,8 +17,8 @@ export function angleToPixels(directionDeg: number): number {
   return Math.min(turned, 90 - turned);
 }
 
-/** How often the pixels along an edge run through all distances from it: how far their lines drift along the edge, over the gap that lies between
- * two lines, at the worst slope nearby. 1 and more: the gap is filled.
+/** How often the pixels along an edge run through all distances from it: how far their lines drift along the
+ * edge, over the gap that lies between two lines, at the worst slope nearby. 1 and more: the gap is filled.
  * @param angleDeg  of the edge against the pixels, 0 to 45
  * @param lengthPx  of the edge
  * @param gapPx     gaps up to this one do no harm
@@ -31,8 +33,9 @@ export function phaseCycles(angleDeg: number, lengthPx: number, gapPx: number): 
   );
 }
 
-/** The slant nearest to `slantDeg` (either way round, larger where that does not do) that turns `directionDeg` to an angle at which an edge
- * of this length can be measured: its pixels drift through every phase twice. */
+/** The slant nearest to `slantDeg` (either way round, larger where that does not do) that turns
+ * `directionDeg` to an angle at which an edge of this length can be measured: its pixels drift through every
+ * phase twice. */
 export function measurableSlant(directionDeg: number, slantDeg: number, lengthPx: number): number {
   for (let more = 0; more < 45; more += 0.25) {
     for (const slant of [slantDeg + more, -slantDeg - more]) {

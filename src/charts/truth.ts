@@ -1,8 +1,9 @@
 /** What a chart holds and where: the file beside the scene that a measurement is judged by.
  *
- * Places are ideal: where the light would land without distortion, in sensor pixels, x to the right, y down, the middle of pixel (0, 0) at
- * (0, 0). Angles are in degrees from +x toward +y. `field` is h, the distance from the optical axis over the lens's full field;
- * `azimuthDeg` the direction of the field point from the axis. In the file the keys are in snake_case (`azimuth_deg`).
+ * Places are ideal: where the light would land without distortion, in sensor pixels, x to the right, y down,
+ * the middle of pixel (0, 0) at (0, 0). Angles are in degrees from +x toward +y. `field` is h, the distance
+ * from the optical axis over the lens's full field; `azimuthDeg` the direction of the field point from the
+ * axis. In the file the keys are in snake_case (`azimuth_deg`).
  */
 
 export const CHART_KINDS = ['edges', 'dots', 'star', 'bars', 'checker'] as const;
@@ -30,7 +31,8 @@ export interface EdgeTruth extends ChartPlace {
   direction: Modulation;
   /** Across the edge, from dark to bright: the direction of the modulation that it measures. */
   normalDeg: number;
-  /** Of the normal against the radius (tangential) or the perpendicular of it (sagittal), through the middle of the edge; -45 to 45. */
+  /** Of the normal against the radius (tangential) or the perpendicular of it (sagittal), through the middle
+   * of the edge; -45 to 45. */
   offRadiusDeg: number;
   /** Of the edge against the nearest row or column of pixels, 0 to 45. */
   angleDeg: number;

@@ -100,6 +100,7 @@ export function chartCommand(): Command {
   return command
     .addHelpText('after', '\nExample:\n  foreglass chart edges --rig tags.rig.yaml --out edges.png')
     .action(async (kind: string, texts: ChartTexts) => {
+      const { parseFieldPoint } = await import('../optics/field-points.js');
       const values = new OptionValues();
       const { rig: rigFile, overrides } = readRigValues(values, texts);
       const json = readDestination(values, '--json', texts.json);
@@ -113,7 +114,10 @@ export function chartCommand(): Command {
         contrast: values.number('--contrast', texts.contrast, { min: 1, aboveMin: true }),
         white: values.number('--white', texts.white, { min: 0, aboveMin: true, max: 1 }),
         grid: readGrid(values, texts.grid),
-        fields: values.items('--fields', texts.fields),
+        fields: values
+          .items('--fields', texts.fields)
+          ?.map((item) => values.attempt('--fields', () => parseFieldPoint(item)))
+          .filter((field) => field !== undefined),
         sizePx: values.number('--size', texts.size, { min: 4 }),
         angleDeg: values.number('--angle', texts.angle, { min: 0, max: 45 }),
         sectors: values.number('--sectors', texts.sectors, { min: 4, max: 180, integer: true }),

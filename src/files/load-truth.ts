@@ -29,7 +29,8 @@ export function loadTruth(path: string): LoadedTruth {
   return camelKeys(checkSchema(chartTruthFile, source)) as LoadedTruth;
 }
 
-/** JSON as it is, which is quick at the size of a truth file; what is no JSON is read as YAML, which knows the line of a fault. */
+/** JSON as it is, which is quick at the size of a truth file; what is no JSON is read as YAML, which knows
+ * the line of a fault. */
 function truthSource(file: string): Source {
   const text = readInputText(file);
   try {

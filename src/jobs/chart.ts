@@ -40,7 +40,8 @@ export interface ChartOptions extends ChartChoices {
 }
 
 export interface ChartResult {
-  /** One plane in linear light, oversample times the camera's pixels on each side: a scene for `render` with the same oversampling. */
+  /** One plane in linear light, oversample times the camera's pixels on each side: a scene for `render` with
+   * the same oversampling. */
   scene: Picture;
   truth: ChartTruth;
   /** What was written. */
@@ -48,7 +49,8 @@ export interface ChartResult {
 }
 
 /** Draw a chart for a rig, and write it with its truth file.
- * @throws {InputError} choices out of range, patches that do not fit, files that cannot be written; nothing is half-written
+ * @throws {InputError} choices out of range, patches that do not fit, files that cannot be written; nothing
+ *   is half-written
  */
 export async function chart(options: ChartOptions): Promise<ChartResult> {
   const { kind, rig, out, signal, oversample = 4 } = options;

@@ -17,8 +17,8 @@ export interface MeasuredPicture {
 
 /** Read a picture and take it to linear light.
  *
- * `linear` says so; else the record of the rendering does, by the name of the picture; else the tags of a PNG file; else it is sRGB or
- * what its profile says.
+ * `linear` says so; else the record of the rendering does, by the name of the picture; else the tags of a
+ * PNG file; else it is sRGB or what its profile says.
  * @throws {InputError} what cannot be read; a picture that does not fit its record
  */
 export async function readMeasured(
@@ -79,8 +79,8 @@ async function encodingOf(
 
 const FULL_SCALE = 65535;
 
-/** Sensor numbers to light: the scene's white is 1. What is at an end of the sensor's scale becomes 0 or 1 to the last bit, to be seen as
- * clipped. */
+/** Sensor numbers to light: the scene's white is 1. What is at an end of the sensor's scale becomes 0 or 1 to
+ * the last bit, to be seen as clipped. */
 function fromRaw(
   { planes }: Picture,
   { levels, mosaic }: PictureRecord,

@@ -31,17 +31,20 @@ export type { PixelRect } from '../measure/plane.js';
 export interface MeasureOptions {
   /** A picture file, or a picture in linear light. */
   image: string | Picture;
-  /** The truth of the chart that it shows: a file or what `chart` returned. Its edges and discs are measured. */
+  /** The truth of the chart that it shows: a file or what `chart` returned. Its edges and discs are measured.
+   */
   truth?: string | ChartTruth;
   /** Regions that one slanted edge crosses each. */
   regions?: readonly PixelRect[];
   /** Regions of even light, for noise and SNR. */
   flats?: readonly PixelRect[];
-  /** Gives line pairs a mm and fields, says where distortion puts the parts of a chart, and what is to be expected. */
+  /** Gives line pairs a mm and fields, says where distortion puts the parts of a chart, and what is to be
+   * expected. */
   rig?: Rig;
   /** The record of the rendering: rig and encoding of the picture. */
   recordFile?: string;
-  /** The numbers of the picture are linear light. Left out: the record or the file's own tags say, else sRGB. */
+  /** The numbers of the picture are linear light. Left out: the record or the file's own tags say, else sRGB.
+   */
   linear?: boolean;
   /** Frequencies at which the SFR is given, above 0 and up to 1. Default: 0.05 to 0.5 in steps of 0.05. */
   cyclesPerPixel?: readonly number[];
@@ -54,10 +57,10 @@ const DEFAULT_FREQUENCIES = Array.from({ length: 10 }, (_, i) => (i + 1) / 20);
 
 /** Measure a picture.
  *
- * The response of an edge is that of lens, camera and everything behind it; a chart's own blur, the square of one of its samples, is taken out where
- * the truth is given.
- * @throws {InputError} nothing to measure; a region outside of the picture or without an edge that can be measured; a chart of which not one part
- *   can be; a picture that does not fit its truth, rig or record
+ * The response of an edge is that of lens, camera and everything behind it; a chart's own blur, the square
+ * of one of its samples, is taken out where the truth is given.
+ * @throws {InputError} nothing to measure; a region outside of the picture or without an edge that can be
+ *   measured; a chart of which not one part can be; a picture that does not fit its truth, rig or record
  */
 export async function measure(options: MeasureOptions): Promise<MeasureReport> {
   const truth = typeof options.truth === 'string' ? loadTruth(options.truth) : options.truth;

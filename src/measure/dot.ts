@@ -26,16 +26,20 @@ export const DOT_LIMITS = {
 
 /** The outer part of the room is taken for ground. */
 const GROUND_SHARE = 0.75;
-/** Blur reaches no farther from the disc than this; each pixel more would add noise and no light of the disc. */
+/** Blur reaches no farther from the disc than this; each pixel more would add noise and no light of the disc.
+ */
 const BLUR_PX = 10;
-/** Width of the circle's soft rim: pixels come in and go out by degrees as the circle moves, so that it comes to rest. */
+/** Width of the circle's soft rim: pixels come in and go out by degrees as the circle moves, so that it comes
+ * to rest. */
 const RIM_PX = 2;
 const MOST_STEPS = 30;
 const LEAST_STEP_PX = 1e-3;
 
-/** The centroid of the darkness, 1 - light / ground, over a circle around the disc; the ground is a plane through the ring around it, so that
- * light that falls off across the disc does not move the result. The circle follows the centroid.
- * @throws {InputError} no disc there, cut by the frame, clipped, too faint, too noisy: with the limit and the value
+/** The centroid of the darkness, 1 - light / ground, over a circle around the disc; the ground is a plane
+ * through the ring around it, so that light that falls off across the disc does not move the result. The
+ * circle follows the centroid.
+ * @throws {InputError} no disc there, cut by the frame, clipped, too faint, too noisy: with the limit and
+ *   the value
  */
 export function measureDot(plane: Plane, guess: DotGuess): [x: number, y: number] {
   const { radiusPx, roomPx } = guess;
@@ -64,7 +68,8 @@ export function measureDot(plane: Plane, guess: DotGuess): [x: number, y: number
   }
 }
 
-/** Light of the ground, base + slopeX (x - x0) + slopeY (y - y0) around (x0, y0), and how far its pixels stray from that. */
+/** Light of the ground, base + slopeX (x - x0) + slopeY (y - y0) around (x0, y0), and how far its pixels
+ * stray from that. */
 interface Ground {
   base: number;
   slopeX: number;

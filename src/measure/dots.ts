@@ -30,7 +30,8 @@ export interface DotsFound {
   skipped: Skipped[];
 }
 
-/** Measure the discs of a chart. Where to look, the rig says; without it the discs found so far, from the axis outward. */
+/** Measure the discs of a chart. Where to look, the rig says; without it the discs found so far, from the
+ * axis outward. */
 export function chartDots(bands: readonly BandPlane[], truth: ChartTruth, rig?: Rig): DotsFound {
   const frame = opticalFrame(undefined, truth)!;
   const roomPx = roomOf(truth.dots ?? []);
@@ -92,7 +93,8 @@ function bandDots(
   };
 }
 
-/** Distances from the axis, the found one along the radius of the ideal place. On the axis itself both are 0. */
+/** Distances from the axis, the found one along the radius of the ideal place. On the axis itself both are 0.
+ */
 function radialPair({ ideal, found }: DotFigures, { axisPx, pitchMm }: OpticalFrame): RadialPair {
   const [dx, dy] = [ideal[0] - axisPx[0], ideal[1] - axisPx[1]];
   const radius = Math.hypot(dx, dy);

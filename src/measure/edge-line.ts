@@ -20,11 +20,11 @@ const DEGREE = 2;
 
 /** Fit the curve.
  *
- * In each row the derivative, by central differences, is weighted with a Hamming window around the edge as known so far; its centroid is
- * the row's point of the edge. A row whose rise and fall cancel has none.
+ * In each row the derivative, by central differences, is weighted with a Hamming window around the edge as
+ * known so far; its centroid is the row's point of the edge. A row whose rise and fall cancel has none.
  *
- * Source: ISO 12233:2017, e-SFR, in outline (from memory); P. D. Burns, "Slanted-edge MTF for digital camera and scanner analysis", Proc.
- * IS&T PICS (2000) 135 (from memory).
+ * Source: ISO 12233:2017, e-SFR, in outline (from memory); P. D. Burns, "Slanted-edge MTF for digital camera
+ *   and scanner analysis", Proc. IS&T PICS (2000) 135 (from memory).
  * @param reachPx half the window's width
  * @param before  the curve of an earlier pass; left out: the strip's own guess
  */

@@ -9,7 +9,8 @@ import type { Strip } from './strip.js';
 export const OVERSAMPLING = 4;
 
 export interface EdgeSpread {
-  /** Light at the distances (k - middle) / OVERSAMPLING from the edge along its normal, in pixels, rising with k. */
+  /** Light at the distances (k - middle) / OVERSAMPLING from the edge along its normal, in pixels, rising
+   * with k. */
   values: Float64Array;
   /** Index of distance 0. */
   middle: number;
@@ -20,10 +21,12 @@ export interface EdgeSpread {
   bright: number;
 }
 
-/** The edge spread function of a strip: the cubic spline with four knots a pixel that lies nearest to all of its pixels.
+/** The edge spread function of a strip: the cubic spline with four knots a pixel that lies nearest to all of
+ * its pixels.
  *
- * Means of quarter-pixel bins, the usual way, depend on where in their bins the pixels happen to stand: at edges whose slope is a simple fraction, such
- * as 1/6 (9.46 degrees), that makes errors of 0.02 of the response of a sharp edge, which the spline does not have.
+ * Means of quarter-pixel bins, the usual way, depend on where in their bins the pixels happen to stand: at
+ * edges whose slope is a simple fraction, such as 1/6 (9.46 degrees), that makes errors of 0.02 of the
+ * response of a sharp edge, which the spline does not have.
  * @param halfWidthPx distances up to this one
  * @param halfRows    rows of the curve on either side of its middle
  */

@@ -32,8 +32,9 @@ const MOST_TURN_DEG = 15;
 
 /** The edges of a chart, in the order of the truth.
  *
- * Where the rig is known, its distortion says where to look. Where it is not, the edges are taken from the axis outward, and those found so far
- * say, by a third-order distortion through them, where to look for the next.
+ * Where the rig is known, its distortion says where to look. Where it is not, the edges are taken from the
+ * axis outward, and those found so far say, by a third-order distortion through them, where to look for the
+ * next.
  */
 export function chartEdges(
   plane: Plane,
@@ -88,7 +89,8 @@ function guessOf({ from, to, x, y, normalDeg, roomPx }: EdgeTruth, map: PlaceMap
   };
 }
 
-/** Where a search goes astray it may meet the other side of the square, which is dark and bright the other way round. */
+/** Where a search goes astray it may meet the other side of the square, which is dark and bright the other
+ * way round. */
 function refuseOther({ normalDeg }: EdgeTruth, measured: MeasuredEdge): void {
   const turn = ((measured.normalDeg - normalDeg + 540) % 360) - 180;
   if (Math.abs(turn) <= MOST_TURN_DEG) return;

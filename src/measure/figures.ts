@@ -1,5 +1,6 @@
-/** What a measurement gives out. Places are in pixels of the picture, pixel (0, 0) having its middle at (0, 0); angles in degrees from +x toward
- * +y. Frequencies count along the normal of an edge; along the rows of pixels such a frequency is f cos(angle_deg). */
+/** What a measurement gives out. Places are in pixels of the picture, pixel (0, 0) having its middle at (0,
+ * 0); angles in degrees from +x toward +y. Frequencies count along the normal of an edge; along the rows of
+ * pixels such a frequency is f cos(angle_deg). */
 import type { Modulation } from '../charts/truth.js';
 import type { FlatFigures } from './flat-field.js';
 import type { PixelRect } from './plane.js';
@@ -9,7 +10,8 @@ export interface SfrValue {
   /** Left out where the pixel's pitch is not known. */
   lpPerMm?: number;
   value: number;
-  /** MTF of the rig's lens and camera in the same direction, averaged along the edge; left out without a rig. */
+  /** MTF of the rig's lens and camera in the same direction, averaged along the edge; left out without a rig.
+   */
   predicted?: number;
 }
 
@@ -31,7 +33,8 @@ export interface EdgeFigures {
   angleDeg: number;
   lengthPx: number;
   sfr: SfrValue[];
-  /** The lowest frequency at which the response falls to a half; null where it does not up to 1 cycle a pixel. */
+  /** The lowest frequency at which the response falls to a half; null where it does not up to 1 cycle a
+   * pixel. */
   sfr50CyclesPerPixel: number | null;
   sfr50LpPerMm?: number | null;
   /** From 10 to 90 % of the step. */

@@ -12,9 +12,10 @@ const CHORD_SHARES = Array.from({ length: 18 }, (_, i) => 1 - 0.05 * i);
 /** Least share by which the slopes in a region agree on one direction, 0 (none) to 1 (all). */
 const LEAST_COHERENCE = 0.3;
 
-/** Where the edge of a region lies: through the centroid of its squared slopes, across their common direction (the structure tensor's first
- * axis), as long and as wide as a strip around it fits into the region.
- * Source: J. Bigun and G. H. Granlund, "Optimal orientation detection of linear symmetry", Proc. ICCV (1987) (from memory).
+/** Where the edge of a region lies: through the centroid of its squared slopes, across their common direction
+ * (the structure tensor's first axis), as long and as wide as a strip around it fits into the region.
+ * Source: J. Bigun and G. H. Granlund, "Optimal orientation detection of linear symmetry", Proc. ICCV (1987)
+ *   (from memory).
  * @throws {InputError} where the slopes have no common direction
  */
 export function findEdge(plane: Plane, region: PixelRect): EdgeGuess {
@@ -41,7 +42,8 @@ interface Tensor {
   y: number;
 }
 
-/** Sums of products of the slopes over a region, its outermost pixels left out. The slopes are Sobel's, smoothed against noise. */
+/** Sums of products of the slopes over a region, its outermost pixels left out. The slopes are Sobel's,
+ * smoothed against noise. */
 function structureTensor({ width, samples }: Plane, region: PixelRect): Tensor {
   const tensor = { xx: 0, xy: 0, yy: 0, x: 0, y: 0 };
   for (let y = region.y + 1; y < region.y + region.height - 1; y++) {

@@ -18,7 +18,8 @@ export interface FlatFigures {
 
 const LEAST_PIXELS = 100;
 
-/** Figures of a flat field in one picture. A plane is taken out first: the light may fall off across the region.
+/** Figures of a flat field in one picture. A plane is taken out first: the light may fall off across the
+ * region.
  * @throws {InputError} too few pixels, no light
  */
 export function flatField({ width, samples }: Plane, region: PixelRect): FlatFigures {

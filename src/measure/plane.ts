@@ -1,6 +1,7 @@
 /** What is measured: a plane of pixels in linear light, and places on it. */
 
-/** One band of a picture: row-major, linear light, 1 being full scale. Pixel (0, 0) has its middle at (0, 0). */
+/** One band of a picture: row-major, linear light, 1 being full scale. Pixel (0, 0) has its middle at (0, 0).
+ */
 export interface Plane {
   width: number;
   height: number;

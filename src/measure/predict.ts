@@ -31,9 +31,11 @@ export function rigMap(rig: Rig, band: Band): PlaceMap {
 
 /** Where the centroid of a disc lands: the place of its middle, moved along the radius by
  *
- * - the PSF's own centroid, which coma and the colours of a band put at the mean of eps = -2 N lambda dW/dm over the pupil, -2 N lambda (w31 + w11);
- * - the bending of the map over the disc, 3 c R^2 r for r' = a r + c r^3: its parts farther out shrink or grow more than those farther in (the mean of
- *   the map over the disc, weighted with its determinant; derived).
+ * - the PSF's own centroid, which coma and the colours of a band put at the mean of eps = -2 N lambda dW/dm
+ *   over the pupil, -2 N lambda (w31 + w11);
+ * - the bending of the map over the disc, 3 c R^2 r for r' = a r + c r^3: its parts farther out shrink or
+ *   grow more than those farther in (the mean of the map over the disc, weighted with its determinant;
+ *   derived).
  */
 export function dotPlace(
   rig: Rig,
@@ -61,7 +63,8 @@ export interface EdgePlace {
   normalDeg: number;
 }
 
-/** Points of an edge at which the PSF is looked at, as shares of its length, with their weights (Simpson's rule): the PSF may change on the way. */
+/** Points of an edge at which the PSF is looked at, as shares of its length, with their weights (Simpson's
+ * rule): the PSF may change on the way. */
 const ALONG: readonly (readonly [share: number, weight: number])[] = [
   [0, 1 / 12],
   [0.25, 4 / 12],
@@ -70,7 +73,8 @@ const ALONG: readonly (readonly [share: number, weight: number])[] = [
   [1, 1 / 12],
 ];
 
-/** The MTF of lens and camera in the direction of an edge's normal, averaged along the edge, at frequencies in cycles a pixel. */
+/** The MTF of lens and camera in the direction of an edge's normal, averaged along the edge, at frequencies
+ * in cycles a pixel. */
 export function predictedSfr(
   rig: Rig,
   band: Band,
@@ -94,7 +98,8 @@ export function predictedSfr(
   };
 }
 
-/** The response of a chart's own samples, squares of 1 / oversample of a pixel, in the direction of an edge's normal. */
+/** The response of a chart's own samples, squares of 1 / oversample of a pixel, in the direction of an edge's
+ * normal. */
 export function chartMtf(oversample: number, normalDeg: number, cyclesPerPixel: number): number {
   const angle = (normalDeg * Math.PI) / 180;
   const cycles = cyclesPerPixel / oversample;

@@ -13,8 +13,8 @@ export interface ProjectedPixels {
   light: Float64Array;
 }
 
-/** Project every pixel of a strip along the edge: those up to `halfWidthPx` away whose nearest point of the curve lies within `halfRows` of its
- * middle. */
+/** Project every pixel of a strip along the edge: those up to `halfWidthPx` away whose nearest point of the
+ * curve lies within `halfRows` of its middle. */
 export function projectPixels(
   strip: Strip,
   curve: EdgeCurve,
@@ -45,8 +45,8 @@ export function projectPixels(
   return pixels;
 }
 
-/** Signed distance from the curve, + toward +u, and the row of the nearest point, by Newton's method for the foot of the normal: the zero of
- * (u - p(s)) p'(s) + v - s. */
+/** Signed distance from the curve, + toward +u, and the row of the nearest point, by Newton's method for the
+ * foot of the normal: the zero of (u - p(s)) p'(s) + v - s. */
 function nearestPoint({ c, v0, halfRows }: EdgeCurve, u: number, v: number, out: Float64Array): void {
   const straight = c.length > 1 ? c[1] / halfRows : 0;
   const bend = c.length > 2 ? (2 * c[2]) / (halfRows * halfRows) : 0;

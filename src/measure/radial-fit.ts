@@ -8,7 +8,8 @@ export interface RadialPair {
   foundMm: number;
 }
 
-/** The map r' = a r + c r^3 nearest to the pairs, by least squares: of order 3 from two different radii on, else of order 1. */
+/** The map r' = a r + c r^3 nearest to the pairs, by least squares: of order 3 from two different radii on,
+ * else of order 1. */
 export function fitRadialMap(pairs: readonly RadialPair[]): DistortionMap {
   const largest = Math.max(0, ...pairs.map(({ idealMm }) => idealMm));
   if (largest === 0) return new DistortionMap(1, 0);
@@ -29,7 +30,8 @@ export function fitRadialMap(pairs: readonly RadialPair[]): DistortionMap {
   return new DistortionMap(1 + a, c / largest ** 2);
 }
 
-/** A map with nothing but a cubic part, for places not yet looked at: it cannot run away at the radii in between. */
+/** A map with nothing but a cubic part, for places not yet looked at: it cannot run away at the radii in
+ * between. */
 export function cubicMap(pairs: readonly RadialPair[]): DistortionMap {
   let [s6, b3] = [0, 0];
   for (const { idealMm, foundMm } of pairs) {

@@ -10,9 +10,10 @@ export interface LineSpread {
   sum: number;
 }
 
-/** Half the width of the Hamming window over that of the edge spread function. A window that ends with the function, as is usual, weighs down the
- * skirts of a wide blur and makes it look sharper: a Gaussian of 2 pixels by 0.007 of the response with 32 pixels on either side, twice
- * the width by 0.002. The noise that it would have held down is held down by `quietTails`. */
+/** Half the width of the Hamming window over that of the edge spread function. A window that ends with the
+ * function, as is usual, weighs down the skirts of a wide blur and makes it look sharper: a Gaussian of 2
+ * pixels by 0.007 of the response with 30 pixels on either side, twice the width by 0.002. The noise that it
+ * would have held down is held down by `quietTails`. */
 const WINDOW_WIDTHS = 2;
 
 /** Derivative by central differences, its tails quietened, times a Hamming window centred on its peak.
@@ -31,7 +32,8 @@ export function lineSpread(spread: EdgeSpread): LineSpread {
   return { values, middle, sum };
 }
 
-/** The part of the line that is left as it is: on either side one and a half times the edge's width, at least so many pixels. */
+/** The part of the line that is left as it is: on either side one and a half times the edge's width, at least
+ * so many pixels. */
 const CORE_WIDTHS = 1.5;
 const LEAST_CORE_PX = 4;
 
@@ -41,8 +43,9 @@ function coreOf(spread: EdgeSpread): number {
   );
 }
 
-/** Far from the edge the light that a blur leaves changes slowly with the distance, and the noise does not. So each sample outside of the core is
- * spread evenly over its surroundings, half of the way to the core on either side, as far as the line goes. No light is lost. */
+/** Far from the edge the light that a blur leaves changes slowly with the distance, and the noise does not.
+ * So each sample outside of the core is spread evenly over its surroundings, half of the way to the core on
+ * either side, as far as the line goes. No light is lost. */
 function quietTails(line: Float64Array, peak: number, core: number): Float64Array {
   const out = new Float64Array(line.length);
   for (let k = 0; k < line.length; k++) {
@@ -53,7 +56,8 @@ function quietTails(line: Float64Array, peak: number, core: number): Float64Arra
   return out;
 }
 
-/** The middle of the pixel's width that holds the most of the line: less at the mercy of noise than the highest sample. */
+/** The middle of the pixel's width that holds the most of the line: less at the mercy of noise than the
+ * highest sample. */
 function peakOf(line: Float64Array): number {
   const half = OVERSAMPLING >> 1;
   let best = line.length >> 1;
@@ -66,8 +70,9 @@ function peakOf(line: Float64Array): number {
   return best;
 }
 
-/** The response at a frequency in cycles a pixel along the edge's normal: the modulus of the line spread function's transform over its value
- * at 0, freed from the central difference, sinc(f/2), sinc(x) = sin(pi x)/(pi x). */
+/** The response at a frequency in cycles a pixel along the edge's normal: the modulus of the line spread
+ * function's transform over its value at 0, freed from the central difference, sinc(f/2), sinc(x) = sin(pi
+ * x)/(pi x). */
 export function sfrAt({ values, middle, sum }: LineSpread, cyclesPerPixel: number): number {
   const turn = (2 * Math.PI * cyclesPerPixel) / OVERSAMPLING;
   let re = 0;
@@ -82,7 +87,8 @@ export function sfrAt({ values, middle, sum }: LineSpread, cyclesPerPixel: numbe
 /** Frequencies past this one say nothing: the central difference comes near its first zero, at 2. */
 const LARGEST_FREQUENCY = 1;
 
-/** The lowest frequency, up to 1 cycle a pixel, at which a response falls to a half; null where it does not. */
+/** The lowest frequency, up to 1 cycle a pixel, at which a response falls to a half; null where it does not.
+ */
 export function halfFrequency(response: (cyclesPerPixel: number) => number): number | null {
   const step = 0.005;
   let before = 1;
@@ -94,8 +100,8 @@ export function halfFrequency(response: (cyclesPerPixel: number) => number): num
   return null;
 }
 
-/** Distance between the places where the edge passes 10 % and 90 % of its step, each the first one on the way out from the middle, in
- * pixels. Null where it does not pass them. */
+/** Distance between the places where the edge passes 10 % and 90 % of its step, each the first one on the way
+ * out from the middle, in pixels. Null where it does not pass them. */
 export function edgeWidthPx({ values, middle, dark, bright }: EdgeSpread): number | null {
   const crossing = (share: number, way: 1 | -1): number | null => {
     const target = dark + share * (bright - dark);

@@ -1,8 +1,9 @@
-/** Light that falls off over the strip of an edge: taken out, so that it is read neither as blur nor as noise. */
+/** Light that falls off over the strip of an edge: taken out, so that it is read neither as blur nor as
+ * noise. */
 import type { ProjectedPixels } from './projection.js';
 
-/** Quarter-pixel bins over the outer halves of both sides, where the light depends on the distance hardly at all: for each, the pixels' number,
- * mean light and mean place along the edge. */
+/** Quarter-pixel bins over the outer halves of both sides, where the light depends on the distance hardly at
+ * all: for each, the pixels' number, mean light and mean place along the edge. */
 class FlatBins {
   readonly #perPixel = 4;
   readonly #halfWidthPx: number;
@@ -36,7 +37,8 @@ class FlatBins {
   }
 }
 
-/** Divide by the light's fall-off along the edge: 1 + share x rows from its middle, the share that brings the pixels of each bin nearest together. */
+/** Divide by the light's fall-off along the edge: 1 + share x rows from its middle, the share that brings the
+ * pixels of each bin nearest together. */
 export function flattenAlong(pixels: ProjectedPixels, halfWidthPx: number): void {
   const { count, distance, along, light } = pixels;
   const bins = new FlatBins(pixels, halfWidthPx);
@@ -70,8 +72,9 @@ export function flatNoise(pixels: ProjectedPixels, halfWidthPx: number): number 
 
 /** Divide an edge spread function by the light's fall-off across the edge.
  *
- * Fall-off is a share of the light, so it tilts the bright side more than the dark one, by bright / dark, while the skirts of a blur tilt both
- * alike. So the difference of the two sides' tilts over their difference of light is the fall-off alone.
+ * Fall-off is a share of the light, so it tilts the bright side more than the dark one, by bright / dark,
+ * while the skirts of a blur tilt both alike. So the difference of the two sides' tilts over their
+ * difference of light is the fall-off alone.
  * @param values at even distances, that of the edge in the middle; not changed
  */
 export function flattenAcross(values: Float64Array): Float64Array {

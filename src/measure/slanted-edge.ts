@@ -39,7 +39,8 @@ export const EDGE_LIMITS = {
   halfWidthPx: 8,
   /** Straighter edges do not pass enough rows or columns to be sampled between the pixels. */
   angleDeg: 1.5,
-  /** Times that the pixels along the edge run through all distances from it, gaps up to `gapPx` left aside: see `phaseCycles`. */
+  /** Times that the pixels along the edge run through all distances from it, gaps up to `gapPx` left aside:
+   * see `phaseCycles`. */
   phaseCycles: 1,
   /** Gaps that the spline bridges: light that has come through a lens has no detail finer than a pixel. */
   gapPx: 0.5,
@@ -57,14 +58,17 @@ export const EDGE_LIMITS = {
 
 /** Measure an edge.
  *
- * The edge is fitted by the centroids of its rows in three passes, the window around it getting narrower, all pixels are projected along it into
- * quarter-pixel bins, and the response is the transform of the derivative under a Hamming window, corrected for derivative and bins. The
- * frequency counts along the edge's normal; along the rows of pixels it is f cos(angle).
+ * The edge is fitted by the centroids of its rows in three passes, the window around it getting narrower,
+ * all pixels are projected along it into quarter-pixel bins, and the response is the transform of the
+ * derivative under a Hamming window, corrected for derivative and bins. The frequency counts along the
+ * edge's normal; along the rows of pixels it is f cos(angle).
  *
  * Source: ISO 12233:2017, e-SFR, in outline (from memory).
- * @param where  where to look; the edge may be up to half of `halfWidthPx` away. Narrowed to what fits between the borders of `bounds`
+ * @param where  where to look; the edge may be up to half of `halfWidthPx` away. Narrowed to what fits
+ *   between the borders of `bounds`
  * @param bounds only pixels in it are used
- * @throws {InputError} no edge, too short, too straight, clipped, too noisy, not one smooth line: with the limit and the value
+ * @throws {InputError} no edge, too short, too straight, clipped, too noisy, not one smooth line: with the
+ *   limit and the value
  */
 export function measureEdge(
   plane: Plane,
@@ -126,8 +130,9 @@ function endsOf(strip: Strip, { c, v0, halfRows, polarity }: EdgeCurve): Ends {
   };
 }
 
-/** Rows on either side of the middle in which the edge passes a whole number of columns, so that no distance between pixel and edge occurs more
- * often than another; all rows where it passes none, or so many that it makes no difference. */
+/** Rows on either side of the middle in which the edge passes a whole number of columns, so that no distance
+ * between pixel and edge occurs more often than another; all rows where it passes none, or so many that it
+ * makes no difference. */
 function wholeCycles({ c, halfRows }: EdgeCurve): number {
   const columns = 2 * Math.abs(c[1]);
   return columns >= 1 && columns < 12 ? (halfRows * Math.floor(columns)) / columns : halfRows;

@@ -26,8 +26,8 @@ export function narrowedTo(bounds: PixelRect, guess: EdgeGuess): EdgeGuess {
   return { ...guess, halfWidthPx: Math.min(guess.halfWidthPx, ...rooms) };
 }
 
-/** Pixels in coordinates u, v in which the edge runs within 45 degrees of the v axis: u = x and v = y, or turned about, u = y and v = x. Sample
- * (u, v) is values[(v - vFrom) * width + (u - uFrom)]. */
+/** Pixels in coordinates u, v in which the edge runs within 45 degrees of the v axis: u = x and v = y, or
+ * turned about, u = y and v = x. Sample (u, v) is values[(v - vFrom) * width + (u - uFrom)]. */
 export interface Strip {
   isTurned: boolean;
   uFrom: number;

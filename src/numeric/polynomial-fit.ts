@@ -1,7 +1,8 @@
 /** Polynomials through many points, by least squares. */
 import { solveLinear } from './solve-linear.js';
 
-/** The coefficients c of the polynomial sum of c[k] t^k that lies nearest to the points (t, value), by the normal equations.
+/** The coefficients c of the polynomial sum of c[k] t^k that lies nearest to the points (t, value), by the
+ * normal equations.
  *
  * Keep t within about -1..1 and the degree small: the equations lose digits as the degree grows.
  * @param degree 0 or more; there must be more than `degree` different t

@@ -1,17 +1,18 @@
 /** A cubic spline with equal steps through many scattered points, by least squares. */
 
-/** Normal equations of the spline's coefficients: a symmetric matrix with three diagonals on either side of the main one, kept as rows of
- * [main, next, next but one, third]. */
+/** Normal equations of the spline's coefficients: a symmetric matrix with three diagonals on either side of
+ * the main one, kept as rows of [main, next, next but one, third]. */
 const BAND = 4;
 
-/** Weight of the third differences against the mean weight of the points. It costs a wave of 8 steps 2e-4 of its height, and keeps the noise of few
- * points from swinging up in the gaps between them. */
+/** Weight of the third differences against the mean weight of the points. It costs a wave of 8 steps 2e-4 of
+ * its height, and keeps the noise of few points from swinging up in the gaps between them. */
 const STIFFNESS = 1e-3;
 
 /** Fits sum of c[j] B(x - j) to points (x, value), B the cubic B-spline of unit steps.
  *
- * A least-squares spline keeps a wave of f cycles a step to about (2 pi f)^4 / 720: a wave of 9 steps to 3e-4. So there is no bin whose width
- * blurs, and it makes no difference where in the steps the points stand, as long as there are some.
+ * A least-squares spline keeps a wave of f cycles a step to about (2 pi f)^4 / 720: a wave of 9 steps to
+ * 3e-4. So there is no bin whose width blurs, and it makes no difference where in the steps the points
+ * stand, as long as there are some.
  * Source: C. de Boor, A Practical Guide to Splines (1978), ch. 14, least squares (from memory).
  */
 export class SplineFit {

@@ -1,5 +1,5 @@
-/** A measurement as CSV: a line for each edge and frequency, or, of a picture without edges, for each disc or else each flat field. What belongs to an
- * edge as a whole stands on each of its lines. */
+/** A measurement as CSV: a line for each edge and frequency, or, of a picture without edges, for each disc or
+ * else each flat field. What belongs to an edge as a whole stands on each of its lines. */
 import type { DotFigures, EdgeFigures, FlatReport, MeasureReport } from '../measure/figures.js';
 import { type Cell, csvText } from './csv.js';
 

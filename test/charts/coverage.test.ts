@@ -7,8 +7,9 @@ const place = fc.double({ min: -3, max: 3, noNaN: true });
 const angle = fc.double({ min: 0, max: 360, noNaN: true });
 const side = fc.double({ min: 0.05, max: 2, noNaN: true });
 
-/** Area of the unit square at the origin below the line nx x + ny y = c, by the second antiderivative of a step: with a = |nx|, b = |ny|,
- * A = sum over the corners of +- max(0, c +- a/2 +- b/2)^2 / (2 a b). Derived; exact but for its cancellation where a b is small. */
+/** Area of the unit square at the origin below the line nx x + ny y = c, by the second antiderivative of a
+ * step: with a = |nx|, b = |ny|, A = sum over the corners of +- max(0, c +- a/2 +- b/2)^2 / (2 a b).
+ * Derived; exact but for its cancellation where a b is small. */
 function halfPlaneArea(nx: number, ny: number, c: number): number {
   const [a, b] = [Math.abs(nx), Math.abs(ny)];
   const ramp = (x: number) => Math.max(0, x) ** 2;

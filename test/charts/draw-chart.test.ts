@@ -170,7 +170,8 @@ describe('edges', () => {
       );
       expect(Math.abs(edge.offRadiusDeg)).toBeCloseTo((off * 180) / Math.PI, 4);
     }
-    // far from the axis the sides of a square keep to its own slant of 5 degrees, a little turned over its width
+    // far from the axis the sides of a square keep to its own slant of 5 degrees, a little turned over its
+    // width
     const far = truth.edges!.filter(({ field }) => field > 0.6);
     for (const { offRadiusDeg } of far) expect(Math.abs(Math.abs(offRadiusDeg) - 5)).toBeLessThan(9);
   });

@@ -92,6 +92,16 @@ describe('foreglass chart', () => {
       /^error: --white: out of range.*\nerror: --size: not a number/,
     ],
     [
+      'field points',
+      ['edges', '--out', 'x.png', '--fields', 'topp,0.7@x'],
+      /^error: --fields: .*'topp'.*\nerror: --fields: .*'0.7@x'/,
+    ],
+    [
+      'a patch over the frame',
+      ['edges', '--out', 'x.png', '--size', '30', '--fields', '0.9@30'],
+      /^error: --fields: a patch there stands over the frame, found '0.9@30'/,
+    ],
+    [
       'a choice of another kind',
       ['dots', '--out', 'x.png', '--angle', '5'],
       /^error: --angle: means nothing to the chart 'dots'/,

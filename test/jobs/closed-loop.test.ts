@@ -18,8 +18,8 @@ afterAll(() => renderer.close());
 const PITCH_MM = 0.00345;
 const FREQUENCIES = [0.05, 0.1, 0.15, 0.2, 0.25, 0.3, 0.35, 0.4];
 
-/** A lens with strong aberrations, and a small sensor that looks at one part of its field: the patch in its middle stands at h. The field changes
- * over such a patch as it does over one on a sensor of 5 megapixels. */
+/** A lens with strong aberrations, and a small sensor that looks at one part of its field: the patch in its
+ * middle stands at h. The field changes over such a patch as it does over one on a sensor of 5 megapixels. */
 function rigAt(h: number, azimuthDeg: number, hasNoise: boolean): Rig {
   const pixels = [208, 192];
   const radiusPx = (h * 4.6) / PITCH_MM;
@@ -37,7 +37,8 @@ function rigAt(h: number, azimuthDeg: number, hasNoise: boolean): Rig {
       pixels,
       pixel_pitch_um: 1000 * PITCH_MM,
       bands_nm: { mono: [550] },
-      // 12 500 electrons at 1, so 10 000 at the chart's white, 0.8: shot noise alone, SNR 100 there on the axis; 16 bits add nothing
+      // 12 500 electrons at 1, so 10 000 at the chart's white, 0.8: shot noise alone, SNR 100 there on the
+      // axis; 16 bits add nothing
       sensor: hasNoise
         ? { white_e: 12_500, full_well_e: 20_000, dark_noise_e: 0, prnu_percent: 0, dsnu_e: 0, bit_depth: 16 }
         : undefined,
@@ -84,9 +85,11 @@ describe('slanted edges through a strongly aberrated lens', () => {
       for (const edge of edges) {
         const zone = zoneMtf(rig, edge);
         for (const [i, { value, predicted }] of edge.sfr.entries()) {
-          // 0.015 is asked for. Measured: 0.006 against the prediction, half of it the light outside of the kernel that the blur gives back by
-          // normalising (0.003 with a kernel tolerance of 0.001). The prediction is the mean along the edge in the direction of its normal;
-          // zones looks at the middle of the edge and exactly along or across the radius, which is up to 0.003 more: the edge is slanted.
+          // 0.015 is asked for. Measured: 0.006 against the prediction, half of it the light outside of the
+          // kernel that the blur gives back by normalising (0.003 with a kernel tolerance of 0.001). The
+          // prediction is the mean along the edge in the direction of its normal; zones looks at the middle
+          // of the edge and exactly along or across the radius, which is up to 0.003 more: the edge is
+          // slanted.
           expect(Math.abs(value - predicted!)).toBeLessThan(0.009);
           expect(Math.abs(value - zone[i])).toBeLessThan(0.015);
         }

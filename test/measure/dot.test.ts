@@ -27,7 +27,8 @@ describe('measureDot', () => {
         fc.constantFrom([0, 0], [6, -4], [-3, 5]),
         (x, y, radiusPx, [dx, dy]) => {
           const place = measureDot(picture([{ x, y, radiusPx }]), near({ x: x + dx, y: y + dy, radiusPx }));
-          // the rim is not blurred, and a pixel's mean does not say where in the pixel the rim is: measured 0.005 px at radii from 4 px on
+          // the rim is not blurred, and a pixel's mean does not say where in the pixel the rim is: measured
+          // 0.005 px at radii from 4 px on
           expect(off(place, x, y)).toBeLessThan(0.01);
         },
       ),
@@ -41,7 +42,8 @@ describe('measureDot', () => {
     const samples = plane.samples.map(
       (value, i) => value * (1 - 0.003 * (i % 100) + 0.002 * Math.floor(i / 100)),
     );
-    // without the ground's slope the fall-off of 0.4 % a pixel would move the middle by 0.004 * 10^2 / 4 = 0.1 px
+    // without the ground's slope the fall-off of 0.4 % a pixel would move the middle by 0.004 * 10^2 / 4 =
+    // 0.1 px
     expect(off(measureDot({ ...plane, samples }, near(dot)), 50.3, 44.6)).toBeLessThan(0.01);
   });
 
@@ -51,8 +53,8 @@ describe('measureDot', () => {
       off(measureDot(withNoise(picture([dot]), 0.01, seed + 1), near(dot)), 50.3, 44.6),
     );
     const rms = Math.sqrt(errors.reduce((sum, e) => sum + e * e, 0) / errors.length);
-    // darkness has a noise of 0.01 / 0.8; over a circle of 20 px its moment is 0.0125 sqrt(pi 20^4 / 4) = 4.4 a direction, over an
-    // area of 298: 0.015 px, 0.021 px in both
+    // darkness has a noise of 0.01 / 0.8; over a circle of 20 px its moment is 0.0125 sqrt(pi 20^4 / 4) = 4.4
+    // a direction, over an area of 298: 0.015 px, 0.021 px in both
     expect(rms).toBeGreaterThan(0.01);
     expect(rms).toBeLessThan(0.03);
   });

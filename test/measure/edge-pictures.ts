@@ -27,8 +27,9 @@ export function edgePicture(options: EdgePicture): Plane {
   return { width, height, samples };
 }
 
-/** Mean over a unit square of a unit step that is blurred by a Gaussian, the square's middle lying d behind the step, along a normal
- * (a, b): the second antiderivative of the step's profile at its four corners. Derived. */
+/** Mean over a unit square of a unit step that is blurred by a Gaussian, the square's middle lying d behind
+ * the step, along a normal (a, b): the second antiderivative of the step's profile at its four corners.
+ * Derived. */
 export function stepMean(d: number, a: number, b: number, sigmaPx: number): number {
   const far = a / 2 + b / 2 + 9 * sigmaPx;
   if (d >= far) return 1;

@@ -32,7 +32,8 @@ describe('findEdge', () => {
             (guess.x - at[0]) * Math.cos((normalDeg * Math.PI) / 180) +
             (guess.y - at[1]) * Math.sin((normalDeg * Math.PI) / 180);
           expect(Math.abs(off)).toBeLessThan(1.5);
-          // a strip as long as 20 px and as wide as 8 px on either side fits into a region of this size, and lies in it
+          // a strip as long as 20 px and as wide as 8 px on either side fits into a region of this size, and
+          // lies in it
           expect(guess.lengthPx).toBeGreaterThan(20);
           expect(guess.halfWidthPx).toBeGreaterThan(8);
           for (const end of [-1, 1]) {

@@ -27,7 +27,8 @@ function pixelsOf({ width, samples }: Plane): { values: number[]; terms: number[
 describe('flatField', () => {
   it('gives mean and noise of an even field', () => {
     const { mean, noise, snr, snrDb } = flatField(withNoise(even(0.5), 0.005, 1), REGION);
-    // 1200 pixels: the mean to 0.005 / sqrt(1200), the noise to 1 / sqrt(2 x 1200) of itself; four standard errors each
+    // 1200 pixels: the mean to 0.005 / sqrt(1200), the noise to 1 / sqrt(2 x 1200) of itself; four standard
+    // errors each
     expect(Math.abs(mean - 0.5)).toBeLessThan(4 * 1.5e-4);
     expect(Math.abs(noise / 0.005 - 1)).toBeLessThan(4 * 0.0205);
     expect(snr).toBeCloseTo(mean / noise, 10);

@@ -37,8 +37,8 @@ describe('measureEdge', () => {
         (slant, quadrant, way) => {
           const normalDeg = quadrant + way * slant;
           const edge = measured({ normalDeg });
-          // measured 0.0010 at most, and 0.005 at 26.5 degrees: the edge has no blur but the pixel's, and at a slope of 1/2 its pixels
-          // stand at distances 0.45 px apart
+          // measured 0.0010 at most, and 0.005 at 26.5 degrees: the edge has no blur but the pixel's, and at
+          // a slope of 1/2 its pixels stand at distances 0.45 px apart
           const isHalf = Math.abs(slant - 26.57) < 0.5;
           expect(worstError(edge, normalDeg)).toBeLessThan(isHalf ? 0.008 : 0.002);
           expect(Math.abs(((edge.normalDeg - normalDeg + 540) % 360) - 180)).toBeLessThan(0.01);

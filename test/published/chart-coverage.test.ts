@@ -6,8 +6,9 @@ import { disc, rectangle, sector } from '../../src/charts/shape.js';
 
 const { BooleanOperations, Box, Circle, Polygon, point } = Flatten;
 
-// Source: @flatten-js/core 1.6, a general-purpose library of plane geometry: areas of intersections of polygons whose sides may be arcs. Its
-// own tolerance for points that coincide is 1e-6, so shapes that only graze a corner of the square are left out of its reach by 1e-3.
+// Source: @flatten-js/core 1.6, a general-purpose library of plane geometry: areas of intersections of
+// polygons whose sides may be arcs. Its own tolerance for points that coincide is 1e-6, so shapes that only
+// graze a corner of the square are left out of its reach by 1e-3.
 describe('coverage against a general-purpose geometry library', () => {
   const square = (x: number, y: number, side: number) =>
     new Polygon(new Box(x - side / 2, y - side / 2, x + side / 2, y + side / 2));
@@ -28,7 +29,8 @@ describe('coverage against a general-purpose geometry library', () => {
     );
   };
 
-  /** Numbers without a leaning to the limits, where shapes would coincide; a fixed seed, since the library is not to be put to the test. */
+  /** Numbers without a leaning to the limits, where shapes would coincide; a fixed seed, since the library is
+   * not to be put to the test. */
   const number = (min: number, max: number) => fc.noBias(fc.double({ min, max, noNaN: true }));
   const RUNS = { seed: 1, numRuns: 150 };
 

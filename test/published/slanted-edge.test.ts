@@ -1,9 +1,10 @@
 /** The slanted edge against figures from outside.
  *
- * Sources: the step's pixel means are the second antiderivative of the normal distribution; the response of a step that is blurred by a round
- * Gaussian of sigma px, seen by square pixels and tilted by a, along the rows is exp(-2 pi^2 sigma^2 fn^2) sinc(fn cos a) sinc(fn sin a)
- * with fn = f / cos a (derived; the figures were computed apart from this code, those of the pixels confirmed by 24 x 24
- * Gauss quadrature to 5e-12). The method: ISO 12233:2014/2017, e-SFR, and Burns 2000, in outline (from memory).
+ * Sources: the step's pixel means are the second antiderivative of the normal distribution; the response of
+ * a step that is blurred by a round Gaussian of sigma px, seen by square pixels and tilted by a, along the
+ * rows is exp(-2 pi^2 sigma^2 fn^2) sinc(fn cos a) sinc(fn sin a) with fn = f / cos a (derived; the figures
+ * were computed apart from this code, those of the pixels confirmed by 24 x 24 Gauss quadrature to 5e-12).
+ * The method: ISO 12233:2014/2017, e-SFR, and Burns 2000, in outline (from memory).
  */
 import jstat from 'jstat';
 import { describe, expect, it } from 'vitest';
@@ -47,8 +48,8 @@ describe('the slanted edge against published figures', () => {
       dark: 0,
       bright: 1,
     });
+    // 1e-6 is asked for; float32 holds 6e-8
     for (const [row, values] of PIXELS.entries())
-      // 1e-6 is asked for; float32 holds 6e-8
       for (const [column, value] of values.entries())
         expect(Math.abs(samples[7 * row + column] - value)).toBeLessThan(1e-7);
   });
@@ -63,7 +64,8 @@ describe('the slanted edge against published figures', () => {
       halfWidthPx: 30,
     });
     const cos = Math.cos((angleDeg * Math.PI) / 180);
-    // a quarter-pixel bin makes up to 0.0103 here, and 0.015 are allowed for it; the spline has no bin: measured 0.0004
+    // a quarter-pixel bin makes up to 0.0103 here, and 0.015 are allowed for it; the spline has no bin:
+    // measured 0.0004
     for (const [i, f] of ALONG_ROWS.entries())
       expect(Math.abs(sfr(f / cos) - expected[i])).toBeLessThan(0.002);
   });

@@ -8,11 +8,13 @@ const SIGNATURE = '\x89PNG\r\n\x1a\n';
 /** gAMA of linear light: 1, in units of 1e-5. */
 const LINEAR_GAMMA = 100_000;
 
-/** Chunks that say how samples are shown stand before the first of the image; more than this many stand there in no sane file. */
+/** Chunks that say how samples are shown stand before the first of the image; more than this many stand there
+ * in no sane file. */
 const MOST_CHUNKS = 64;
 
-/** The transfer curve that the tags of a PNG file name: an sRGB chunk or a profile before gAMA, as the standard has it. Undefined for another
- * format, without tags, for a gamma of another kind, or where there is no file to be read: that is told by who reads the picture.
+/** The transfer curve that the tags of a PNG file name: an sRGB chunk or a profile before gAMA, as the
+ * standard has it. Undefined for another format, without tags, for a gamma of another kind, or where there
+ * is no file to be read: that is told by who reads the picture.
  * Source: Portable Network Graphics (PNG) Specification, W3C, gAMA, sRGB and iCCP (from memory). */
 export async function pngEncoding(path: string): Promise<PngEncoding | undefined> {
   const file = await open(path).catch(() => undefined);
