@@ -1,5 +1,5 @@
 /** Outlines of labels on their way through the lens. */
-import { intersection } from 'polyclip-ts';
+import polygonClipping from 'polygon-clipping';
 
 export type Point = readonly [x: number, y: number];
 
@@ -81,6 +81,11 @@ export function boxAbout(points: Iterable<Point>): [number, number, number, numb
   return left <= right ? [left, top, right - left, bottom - top] : undefined;
 }
 
+/** Places for the clipper: on a grid far finer than what is written, so that no two points are all but the same. */
+function snap(px: number): number {
+  return Math.round(px * 2 ** 14) / 2 ** 14;
+}
+
 /** What of an outline lies in the frame 0..width x 0..height: none, one or several rings. */
 export function clippedRing(ring: Ring, width: number, height: number): Ring[] {
   const box = boxAbout(ring);
@@ -95,7 +100,8 @@ export function clippedRing(ring: Ring, width: number, height: number): Ring[] {
     [width, height],
     [0, height],
   ];
-  const parts = intersection([ring.map(([x, y]): [number, number] => [x, y])], [frame]);
+  const snapped = ring.map(([x, y]): [number, number] => [snap(x), snap(y)]);
+  const parts = polygonClipping.intersection([snapped], [frame]);
   // the clipper closes its rings; the outlines of COCO files have no holes, and neither has an outline cut by a frame
   return parts.map(([outer]) => outer.slice(0, -1));
 }

@@ -36,7 +36,7 @@ const HOMES: Readonly<Record<string, string>> = {
   'fft.js': 'numeric',
   ioredis: 'jobs',
   linkedom: 'report',
-  'polyclip-ts': 'dataset',
+  'polygon-clipping': 'dataset',
   sharp: 'files',
   yaml: 'files',
   zod: 'files',
