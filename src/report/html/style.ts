@@ -92,6 +92,7 @@ select { font: inherit; color: var(--ink); background: var(--page); border: 1px 
 .scale span.bar { flex: 1; max-width: 320px; height: 12px; border-radius: 2px; print-color-adjust: exact; -webkit-print-color-adjust: exact; }
 .zone-card { background: var(--panel); border-radius: 6px; padding: 12px 14px; }
 .zone-card svg { display: block; width: 100%; max-width: 240px; height: auto; background: #000; border-radius: 4px; margin: 6px 0; print-color-adjust: exact; }
+.zone-card .lead { color: var(--ink); }
 .zone-card table { width: 100%; }
 .psfs { display: grid; gap: 3px; margin: 12px 0; max-width: 900px; }
 .psfs svg { display: block; width: 100%; height: auto; background: #000; border-radius: 2px; }

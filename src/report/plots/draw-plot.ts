@@ -45,7 +45,8 @@ export async function drawPlot(figure: Figure): Promise<string> {
     marginTop: (options.marginTop ?? 20) + heading,
   });
   finish(svg as unknown as SvgElement, document as unknown as SvgDocument, figure);
-  return numberIds(`${svg.outerHTML}\n`, figure.id ?? 'plot');
+  const text = numberIds(`${svg.outerHTML}\n`, figure.id ?? 'plot');
+  return figure.inPage ? withoutInnerLabels(text) : text;
 }
 
 /** What of the document this file uses; Node's types know no document. */
@@ -94,6 +95,14 @@ function finish(
     element('text', { x: '12', y: String(y), 'text-anchor': 'start', ...more }, text);
   svg.append(line(title, 20, { 'font-size': '15', 'font-weight': '600' }));
   if (subtitle !== undefined) svg.append(line(subtitle, 40, { fill: FAINT.light }));
+}
+
+/** To who cannot see it the plot is one picture with a description; the library's words for its layers ("line") are of no use there, and
+ * groups may not bear labels. */
+function withoutInnerLabels(svg: string): string {
+  return svg.replace(/<(g|path|text|rect|line|circle)\b[^>]*>/g, (tag) =>
+    tag.replace(/ aria-label="[^"]*"/, ''),
+  );
 }
 
 /** The library counts its ids on from plot to plot; here each plot begins anew. */
