@@ -5,6 +5,7 @@ import { join } from 'node:path';
 import { DEMO_SCENES, writeScenes } from './draw/pictures.js';
 import { foreglass, HALL, OUT, PROGRAM, say, shown } from './draw/run.js';
 import { showcase } from './draw/showcase.js';
+import { closeTheLoop, SHEET as LOOP } from './loop.js';
 import { BARS, compareSurfaces, SHEET } from './surfaces.js';
 
 /** What is rendered, and where in the pictures to look. */
@@ -29,6 +30,7 @@ await writeFile(
 );
 foreglass(['zones', '--rig', shown(TAGS.rig)], 'aloud');
 const { isSame } = await compareSurfaces();
+const { worst } = await closeTheLoop();
 
 say(`Done in ${((performance.now() - begin) / 1000).toFixed(0)} s. Open these, at full size:
 
@@ -46,6 +48,8 @@ say(`Done in ${((performance.now() - begin) / 1000).toFixed(0)} s. Open these, a
       a lens from its surfaces and from the coefficients that were derived from them: ${isSame ? 'the same picture, byte for byte' : 'the pictures DIFFER, which is a fault'}
   ${shown(BARS)}
       which surface of that lens contributes what: long bars to both sides that all but cancel
+  ${shown(LOOP)}
+      a chart, its picture, and the contrast measured in the picture as points on the predicted curves (${worst.toFixed(3)} apart at most)
 
 The ideal scenes are in ${shown(join(OUT, 'scenes'))}; what the rigs are made of is in ${join(shown(HALL), '*.rig.yaml')}.
 Stop the lens down and see the corners sharpen:
