@@ -28,7 +28,7 @@ export type Advice = {
  * lens, in this order, as they cost ever more; then what comes nearest to it. */
 export async function adviceFor(rig: Rig, scoring: Scoring, gains: readonly PartGain[]): Promise<Advice[]> {
   const now = await scoring.margin(rig);
-  const beyond = beyondAnyLens(rig, scoring);
+  const beyond = await beyondAnyLens(rig, scoring);
   const candidates: Advice[] = [];
   const add = (advice: Advice) => {
     if (advice.margin > now + LEAST_GAIN) candidates.push(advice);
@@ -66,15 +66,18 @@ async function outcome(rig: Rig, scoring: Scoring): Promise<{ margin: number; me
 }
 
 /** The rule that fails by most with a lens and a mount without error, if any does. */
-function beyondAnyLens(rig: Rig, { rules, points }: Scoring): Advice | undefined {
-  const bench = benchFor(perfectRig(rig));
+async function beyondAnyLens(rig: Rig, scoring: Scoring): Promise<Advice | undefined> {
+  const perfect = perfectRig(rig);
+  const decode = await scoring.triedMargin(perfect);
   let worst: Advice | undefined;
-  for (const rule of rules)
-    for (const point of points) {
-      const { margin } = judgeRule(bench, rule, point, 'rough');
-      if (margin < Math.min(0, worst?.margin ?? 0))
-        worst = { change: 'task', rule: rule.kind, margin, met: false };
-    }
+  const look = (rule: PixelRule['kind'], margin: number) => {
+    if (margin < Math.min(0, worst?.margin ?? 0)) worst = { change: 'task', rule, margin, met: false };
+  };
+  look('decode', decode);
+  if (!scoring.hasOptics) return worst;
+  const bench = benchFor(perfect);
+  for (const rule of scoring.rules)
+    for (const point of scoring.points) look(rule.kind, judgeRule(bench, rule, point, 'rough').margin);
   return worst;
 }
 

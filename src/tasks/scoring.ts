@@ -10,12 +10,15 @@ import { type RuleVerdict, type Trials, tryAt } from './verdict.js';
 
 /** Scores variants of one rig on one task: the least margin of the closed-form rules in the task's zones, and of those `decode` rules that
  * the rig as it stands does not meet, each in its worst zone. A `decode` rule that is met stays out: its margin ends at a rate of 1, where
- * it says nothing any more. A task of nothing but `decode` is scored by the edge blur, which is to stay within a module. */
+ * it says nothing any more. In a task of nothing but `decode` an edge blur that stays within a module stands for the symbols: in searches, and
+ * where they are met. */
 export class Scoring {
   readonly rules: readonly OpticsRule[];
   readonly points: readonly FieldPoint[];
   readonly #tried: readonly { rule: PixelRuleOf<'decode'>; worst: FieldPoint }[];
   readonly #trials: Trials;
+  /** Whether `rules` are the task's own, or stand for its symbols. */
+  readonly hasOptics: boolean;
   /** Every rule at every place; the one that was the worst last time comes first. */
   readonly #pairs: { rule: OpticsRule; point: FieldPoint }[];
 
@@ -23,7 +26,8 @@ export class Scoring {
   constructor({ rules, points }: LaidOut, verdicts: readonly RuleVerdict[], trials: Trials) {
     const optics = rules.filter(isOpticsRule);
     const decode = rules.filter((rule) => rule.kind === 'decode');
-    this.rules = optics.length > 0 ? optics : decode.map(blurWithinModule);
+    this.hasOptics = optics.length > 0;
+    this.rules = this.hasOptics ? optics : decode.map(blurWithinModule);
     this.points = points;
     this.#tried = decode.flatMap((rule) => {
       const { met, margin, zones } = verdicts[rules.indexOf(rule)];
@@ -55,9 +59,16 @@ export class Scoring {
     return least;
   }
 
-  /** The least margin, trials included. */
+  /** The least margin, trials included. What only stands for symbols does not count where these are tried. */
   async margin(rig: Rig): Promise<number> {
-    let margin = this.opticsMargin(rig);
+    const isStandIn = !this.hasOptics && this.#tried.length > 0;
+    const margin = isStandIn ? Number.POSITIVE_INFINITY : this.opticsMargin(rig);
+    return Math.min(margin, await this.triedMargin(rig));
+  }
+
+  /** The least margin of the symbols that the rig as it stands does not read: Infinity where there are none. */
+  async triedMargin(rig: Rig): Promise<number> {
+    let margin = Number.POSITIVE_INFINITY;
     for (const { rule, worst } of this.#tried) {
       const { value } = await tryAt(rig, rule, worst, this.#trials);
       margin = Math.min(margin, marginAtLeast(value, rule.successAtLeast));
