@@ -65,6 +65,7 @@ export function movedMask(
   let area = 0;
   const box = { left: right, top: bottom, right: left, bottom: top };
   const add = (inside: boolean, count: number) => {
+    if (count === 0) return;
     if (inside !== isInside) {
       counts.push(run);
       run = 0;

@@ -2,6 +2,7 @@
 import { z } from 'zod';
 
 const finite = z.number({ error: 'a number' });
+const length = z.number({ error: 'a number from 0 up' }).min(0);
 const id = z.int({ error: 'a whole number' });
 const side = z.int({ error: 'a whole number above 0' }).min(1);
 
@@ -31,9 +32,7 @@ const annotation = z.looseObject({
   id,
   image_id: id,
   category_id: id,
-  bbox: z
-    .tuple([finite, finite, finite.min(0), finite.min(0)], { error: 'four numbers [x, y, width, height]' })
-    .optional(),
+  bbox: z.tuple([finite, finite, length, length], { error: 'four numbers [x, y, width, height]' }).optional(),
   segmentation: z
     .union([z.array(polygon), runLengths], { error: 'a list of polygons, or run lengths { size, counts }' })
     .optional(),
