@@ -37,7 +37,7 @@ export interface BandKernels {
 
 /** The error changes smoothly over the field: a grid of more tiles than this (of a quadrant, where they mirror each other) is checked on
  * an even spread of them, border included. */
-const MOST_CHECKED_TILES = 36;
+const MOST_CHECKED_TILES = 24;
 /** Part of the tolerance that a planned grid aims at; the check of the finished grid has the last word. */
 const AIM = 0.94;
 const LARGEST_FFT = 2048;
