@@ -43,7 +43,7 @@ export interface SweepOptions {
   /** Values of other numbers of the rig, by path. */
   vary?: readonly { key: string; values: readonly number[] }[];
   /** Leave the electrons of a white scene as the rig states them at every stop: light or exposure make up for it. Default: they go with
-   * (N0 / N)^2 from those at the rig's own stop N0. */
+   * (N0 / N)^2 from those at the rig's own stop N0, at wider stops up to a full well. */
   keepLight?: boolean;
   /** How much of each coefficient the task allows, at the best place of the sweep; without axes, on the rig as it stands. */
   budget?: boolean;
@@ -211,7 +211,7 @@ function refuseWideStops({ lens }: Rig, axes: readonly SweepAxis[]): void {
 }
 
 function fileOf(rig: Rig | RigFile): RigFile {
-  const isOfOptics = 'axisPx' in rig.mount;
+  const isOfOptics = 'axisPx' in Object(rig.mount); // an object of the caller may leave the mount out
   return (isOfOptics ? rigData(rig as Rig) : rig) as RigFile;
 }
 

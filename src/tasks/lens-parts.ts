@@ -40,13 +40,15 @@ export function withShift(rig: Rig, sensorShiftUm: number): Rig {
 }
 
 /** The rig at another stop, with the light that it lets through: the electrons of a white scene go with (N0 / N)^2 from those that the rig
- * states for its own stop N0. */
+ * states for its own stop N0. A wider stop fills the well and no more, since one would expose for a shorter time. */
 export function withStop(rig: Rig, fNumber: number): Rig {
   const { camera, mount } = rig;
   const stopped = { ...rig, mount: { ...mount, fNumber } };
-  if (camera.sensor === undefined) return stopped;
-  const whiteE = camera.sensor.whiteE * (mount.fNumber / fNumber) ** 2;
-  return { ...stopped, camera: { ...camera, sensor: { ...camera.sensor, whiteE } } };
+  const { sensor } = camera;
+  if (sensor === undefined) return stopped;
+  const most = Math.max(sensor.whiteE, sensor.fullWellE - sensor.darkE);
+  const whiteE = Math.min(most, sensor.whiteE * (mount.fNumber / fNumber) ** 2);
+  return { ...stopped, camera: { ...camera, sensor: { ...sensor, whiteE } } };
 }
 
 /** The same rig with a lens and a mount without any error: diffraction and the pixel are left. */
