@@ -3,20 +3,20 @@ import type { Raster } from '../imaging/raster.js';
 import { type ResampleWeights, resamplePlane, resampleWeights } from '../numeric/resample.js';
 import { type PixelRect, type ScenePose, sceneToSensor } from './view.js';
 
-/** Lay a scene on the sensor and cut out a frame of it. Past its border the scene goes on with its edge.
+/** Lay a scene on the sensor's plane and cut out a sheet of it. Past its border the scene goes on with its edge.
  * @param scene       in linear light; not changed
  * @param oversample  samples a pixel on each side
- * @returns oversample x the frame's pixels, in planes of its own
+ * @returns oversample x the sheet's pixels, in planes of its own
  */
-export function placeScene(scene: Raster, pose: ScenePose, frame: PixelRect, oversample: number): Raster {
+export function placeScene(scene: Raster, pose: ScenePose, sheet: PixelRect, oversample: number): Raster {
   const turned = turnedScene(scene, pose.quarterTurns);
   const scale = pose.scale * oversample;
-  const width = frame.width * oversample;
-  const height = frame.height * oversample;
+  const width = sheet.width * oversample;
+  const height = sheet.height * oversample;
   // sample P k + (k - 1) / 2 is the middle of pixel P
-  const inFrame = (px: number, first: number) => (px - first) * oversample + (oversample - 1) / 2;
-  const columns = resampleWeights(turned.width, width, scale, inFrame(pose.middleX, frame.x));
-  const rows = resampleWeights(turned.height, height, scale, inFrame(pose.middleY, frame.y));
+  const inSheet = (px: number, first: number) => (px - first) * oversample + (oversample - 1) / 2;
+  const columns = resampleWeights(turned.width, width, scale, inSheet(pose.middleX, sheet.x));
+  const rows = resampleWeights(turned.height, height, scale, inSheet(pose.middleY, sheet.y));
   const across = neededPart(columns, turned.width);
   const down = neededPart(rows, turned.height);
   return {

@@ -33,8 +33,10 @@ export interface View {
   pose: ScenePose;
   /** What of the sensor the picture shows. */
   window: PixelRect;
-  /** What must be formed for it: light is thrown into the window from beyond. */
+  /** What of the sensor is formed for it: blur throws light into the window from beyond, though not from beyond the sensor. */
   frame: PixelRect;
+  /** What of the scene is needed for the frame, as pixels of the sensor's plane: distortion throws light in from beyond, too. */
+  sheet: PixelRect;
   lens: LensMap;
 }
 
@@ -47,7 +49,8 @@ export function viewOf(
 ): View {
   const window = windowOf(recipe.output, draw, rig);
   const pose = poseOf(recipe.placement, draw, rig, scene, window);
-  return { pose, window, frame: frameOf(rig, pose, window), lens: new LensMap(rig) };
+  const frame = frameOf(rig, window);
+  return { pose, window, frame, sheet: sheetOf(rig, pose, frame), lens: new LensMap(rig) };
 }
 
 function windowOf({ size, window }: Recipe['output'], { windowShares }: Draw, rig: Rig): PixelRect {
@@ -196,23 +199,34 @@ function comaThrow(rig: Rig): number {
   return atEdge.reduce((sum, mm) => sum + mm, 0) / (atEdge.length * lens.fullFieldMm);
 }
 
-/** The part of the sensor's plane that must be formed for a window: the window, and what of the scene is thrown into it from beyond by
- * distortion and blur. Beyond the scene there is nothing but its edge, which the rendering continues by itself. */
-function frameOf(rig: Rig, pose: ScenePose, window: PixelRect): PixelRect {
-  const { left, top, right, bottom } = sourceBox(rig, window);
-  const scene = sceneBox(pose);
+/** The window and as much of the sensor about it as blur throws light from. */
+function frameOf(rig: Rig, window: PixelRect): PixelRect {
+  const [width, height] = rig.camera.pixels;
+  const reach = blurReachPx(rig, window);
   const grain = rig.camera.mosaic === 'none' ? 1 : 2;
-  const down = (value: number) => grain * Math.floor(value / grain);
-  const up = (value: number) => grain * Math.ceil(value / grain);
-  const from = (need: number, edge: number, own: number) => Math.min(own, down(Math.max(need, edge)));
-  const to = (need: number, edge: number, own: number) => Math.max(own, up(Math.min(need, edge)));
-  const x = from(left, scene.left, window.x);
-  const y = from(top, scene.top, window.y);
+  const side = (from: number, length: number, sensor: number): [number, number] => {
+    const first = Math.max(0, grain * Math.floor((from - reach) / grain));
+    return [first, Math.min(sensor, from + length + reach) - first];
+  };
+  const [x, frameWidth] = side(window.x, window.width, width);
+  const [y, frameHeight] = side(window.y, window.height, height);
+  return { x, y, width: frameWidth, height: frameHeight };
+}
+
+/** The frame and what of the scene distortion throws into it from beyond. Beyond the scene there is nothing but its edge, which the
+ * rendering continues by itself. */
+function sheetOf(rig: Rig, pose: ScenePose, frame: PixelRect): PixelRect {
+  const { left, top, right, bottom } = sourceBox(rig, frame);
+  const scene = sceneBox(pose);
+  const from = (need: number, edge: number, own: number) => Math.min(own, Math.floor(Math.max(need, edge)));
+  const to = (need: number, edge: number, own: number) => Math.max(own, Math.ceil(Math.min(need, edge)));
+  const x = from(left, scene.left, frame.x);
+  const y = from(top, scene.top, frame.y);
   return {
     x,
     y,
-    width: to(right, scene.right, window.x + window.width) - x,
-    height: to(bottom, scene.bottom, window.y + window.height) - y,
+    width: to(right, scene.right, frame.x + frame.width) - x,
+    height: to(bottom, scene.bottom, frame.y + frame.height) - y,
   };
 }
 
@@ -236,7 +250,7 @@ function sceneBox(pose: ScenePose): Sides {
   };
 }
 
-/** Steps along a side of the window. The way of a side under a cubic map is smooth: a parabola through steps of a sixteenth is off by
+/** Steps along a side. The way of a side under a cubic map is smooth: a parabola through steps of a sixteenth is off by
  * less than a hundredth of its bend. */
 const STEPS = 16;
 
@@ -266,14 +280,16 @@ function sourceBox(rig: Rig, { x, y, width, height }: PixelRect): Sides {
     include(x - 0.5, py);
     include(x + width - 0.5, py);
   }
-  const reach = blurReachPx(rig, { x, y, width, height });
   return {
-    left: box.left - reach,
-    top: box.top - reach,
-    right: box.right + reach,
-    bottom: box.bottom + reach,
+    left: box.left - CUBIC_REACH,
+    top: box.top - CUBIC_REACH,
+    right: box.right + CUBIC_REACH,
+    bottom: box.bottom + CUBIC_REACH,
   };
 }
+
+/** The warp looks at two samples on either side. */
+const CUBIC_REACH = 2;
 
 /** Farther than this the light of one point is too thin to be missed. */
 const LONGEST_REACH_PX = 64;

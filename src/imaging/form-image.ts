@@ -7,6 +7,7 @@ import type { Crew, JobWatch } from './crew.js';
 import { type BandKernels, type BlurTolerances, prepareKernels, refuseUnsampled } from './plan-blur.js';
 import { cornerMm, sensorFrame } from './sensor-frame.js';
 import { columnCount, isFolded } from './simd-blur.js';
+import type { SceneSheet } from './warp.js';
 import type { BandSetup, TileColumn } from './work.js';
 
 export interface FormedImage {
@@ -74,6 +75,7 @@ export async function prepareBands(
 /** Form the picture.
  * @param scene one plane a band in the crew's arena, oversample times the camera's pixels on each side; overwritten
  * @param bands kernels as `prepareBands` made them
+ * @param sheet size of the scene's planes, where they reach past the picture
  * @returns planes that live in the crew's arena, in place of the scene's where that is possible */
 export async function formImage(
   crew: Crew,
@@ -82,13 +84,16 @@ export async function formImage(
   oversample: number,
   bands: readonly BandKernels[],
   watch: ImageWatch = {},
+  sheet?: SceneSheet,
 ): Promise<FormedImage> {
   const { arena } = crew;
   const [width, height] = rig.camera.pixels;
   const samples = width * height * oversample ** 2;
   const isFine = oversample > 1;
+  const isAsLarge = sheet === undefined || sheet.width * sheet.height === samples;
   // the scene is done with when it is warped, and its planes can take the picture, unless bands share one
-  const isReusable = !isFine && new Set(scene.map((plane) => plane.byteOffset)).size === scene.length;
+  const isReusable =
+    !isFine && isAsLarge && new Set(scene.map((plane) => plane.byteOffset)).size === scene.length;
   const planes = rig.camera.bands.map((_, band) =>
     isReusable ? scene[band] : arena.floats(arena.allocateFloats(width * height), width * height),
   );
@@ -105,7 +110,7 @@ export async function formImage(
   for (const alike of bandsMovedAlike(rig, oversample)) {
     const moved = alike.map((band) => ({ sceneAt: scene[band].byteOffset, outAt: warpedAt[band] }));
     await timed('warp', (jobWatch) =>
-      warpPlanes(crew, { rig, bandIndex: alike[0], oversample }, moved, jobWatch),
+      warpPlanes(crew, { rig, bandIndex: alike[0], oversample }, moved, sheet, jobWatch),
     );
   }
   for (const [bandIndex, kernels] of bands.entries()) {
@@ -136,11 +141,12 @@ async function warpPlanes(
   crew: Crew,
   setup: BandSetup,
   planes: { sceneAt: number; outAt: number }[],
+  sheet: SceneSheet | undefined,
   watch: JobWatch,
 ): Promise<void> {
   const { height } = sensorFrame(setup.rig, setup.rig.camera.bands[setup.bandIndex], setup.oversample);
   const count = Math.ceil(height / ROWS_PER_TASK);
-  await crew.run({ kind: 'warp', setup, planes, rowsPerTask: ROWS_PER_TASK, count }, watch);
+  await crew.run({ kind: 'warp', setup, planes, sheet, rowsPerTask: ROWS_PER_TASK, count }, watch);
 }
 
 /** The figures of the band that is the worst in each. */

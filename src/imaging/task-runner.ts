@@ -124,6 +124,7 @@ function warper({ arena, engine, kernels, scratch }: Bench, job: Extract<Job, { 
   const frame = sensorFrame(rig, rig.camera.bands[bandIndex], oversample);
   const tables = radialTables(rig.lens, frame);
   const { width, height } = frame;
+  const sheet = job.sheet ?? { width, height, left: 0, top: 0 };
   const warp = engine === 'simd' ? simdWarp() : referenceWarp();
   return (task) => {
     const start = task * job.rowsPerTask;
@@ -134,11 +135,11 @@ function warper({ arena, engine, kernels, scratch }: Bench, job: Extract<Job, { 
 
   function referenceWarp(): (start: number, end: number) => void {
     const planes = job.planes.map(({ sceneAt, outAt }) => ({
-      scene: arena.floats(sceneAt, width * height),
+      scene: arena.floats(sceneAt, sheet.width * sheet.height),
       out: arena.floats(outAt, width * height),
     }));
     return (start, end) => {
-      for (const { scene, out } of planes) warpRows(frame, tables, scene, out, start, end);
+      for (const { scene, out } of planes) warpRows(frame, tables, scene, out, start, end, sheet);
     };
   }
 
@@ -148,8 +149,12 @@ function warper({ arena, engine, kernels, scratch }: Bench, job: Extract<Job, { 
     writeWarpRequest(arena.memory, request, {
       width,
       height,
+      sceneWidth: sheet.width,
+      sceneHeight: sheet.height,
       axisX,
       axisY,
+      sceneAxisX: axisX + sheet.left,
+      sceneAxisY: axisY + sheet.top,
       stepsPerSquare: tables.stepsPerSquare,
       scale: scratch.doubles(tables.scale),
       illumination: scratch.doubles(tables.illumination),

@@ -45,14 +45,24 @@ export function radialTables(lens: Lens, frame: SensorFrame): RadialTables {
   };
 }
 
+/** The planes of a scene against those of the picture. */
+export interface SceneSheet {
+  width: number;
+  height: number;
+  /** Samples of the scene before the picture's first one. */
+  left: number;
+  top: number;
+}
+
 /** Warp the rows `rowStart` up to `rowEnd` of a plane.
  *
  * Each sample takes the scene at the ideal place of the light that lands on it, by cubic convolution over 4 x 4 samples; past its
- * frame the scene goes on with its edge. Then relative illumination.
+ * border the scene goes on with its edge. Then relative illumination.
  * Source: R. G. Keys, "Cubic convolution interpolation for digital image processing", IEEE Trans. ASSP 29 (1981) 1153, a = -1/2
  * (cited from memory).
- * @param scene  width x height, row-major
- * @param out    the same shape, must not be `scene`
+ * @param scene  a plane of the sheet, row-major
+ * @param out    width x height of the frame, row-major; must not be `scene`
+ * @param sheet  default: the scene is as large as the picture
  */
 export function warpRows(
   frame: SensorFrame,
@@ -61,8 +71,10 @@ export function warpRows(
   out: Float32Array,
   rowStart: number,
   rowEnd: number,
+  sheet: SceneSheet = { width: frame.width, height: frame.height, left: 0, top: 0 },
 ): void {
-  const { width, height, axisX, axisY } = frame;
+  const { width, axisX, axisY } = frame;
+  const { left, top } = sheet;
   const { stepsPerSquare, scale, illumination, isIdentity } = tables;
   for (let row = rowStart; row < rowEnd; row++) {
     const y = row - axisY;
@@ -74,16 +86,18 @@ export function warpRows(
       const light = illumination[step] + part * (illumination[step + 1] - illumination[step]);
       const at = row * width + column;
       if (isIdentity) {
-        out[at] = light * scene[at];
+        out[at] = light * scene[(row + top) * sheet.width + column + left];
         continue;
       }
       const shrink = scale[step] + part * (scale[step + 1] - scale[step]);
-      out[at] = light * cubicSample(scene, width, height, axisX + x * shrink, axisY + y * shrink);
+      out[at] =
+        light *
+        cubicSample(scene, sheet.width, sheet.height, left + axisX + x * shrink, top + axisY + y * shrink);
     }
   }
 }
 
-/** The picture at (x, y) by cubic convolution; outside the frame its edge goes on. */
+/** A plane at (x, y) by cubic convolution; past its border its edge goes on. */
 function cubicSample(plane: Float32Array, width: number, height: number, x: number, y: number): number {
   const left = Math.floor(x);
   const top = Math.floor(y);

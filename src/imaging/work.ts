@@ -3,6 +3,7 @@ import type { Exposure } from '../camera/exposure.js';
 import type { Rig } from '../optics/rig.js';
 import type { BlurGrid } from './blur-grid.js';
 import type { TileSpan } from './certificate.js';
+import type { SceneSheet } from './warp.js';
 
 /** A column of tiles, and the columns whose results overlap with its own and must be there first. */
 export interface TileColumn {
@@ -60,6 +61,8 @@ export type Job =
       kind: 'warp';
       setup: BandSetup;
       planes: { sceneAt: number; outAt: number }[];
+      /** Left out: the scene is as large as the picture. */
+      sheet?: SceneSheet;
       rowsPerTask: number;
       count: number;
     }

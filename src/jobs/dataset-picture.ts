@@ -13,6 +13,7 @@ import { writeWhole } from '../files/write-whole.js';
 import { refuseUnformable } from '../imaging/form-image.js';
 import type { Raster } from '../imaging/raster.js';
 import type { Rig } from '../optics/rig.js';
+import type { RenderOptions } from './render-options.js';
 import type { RenderResult } from './render-record.js';
 import { Renderer } from './renderer.js';
 
@@ -56,7 +57,8 @@ export class PictureMaker {
     const { raster, warnings } = await this.#scenes.read(scene.path, recipe.scenes.isLinear, bandNames);
     const result = await this.#renderer.renderInPlace({
       rig: rigOfFrame(rig, view.frame),
-      scene: placeScene(raster, view.pose, view.frame, accuracy.oversample),
+      scene: placeScene(raster, view.pose, view.sheet, accuracy.oversample),
+      sceneMargin: marginOf(view, accuracy.oversample),
       oversample: accuracy.oversample,
       tolerance: accuracy.tolerance,
       kernelTolerance: accuracy.kernelTolerance,
@@ -123,6 +125,16 @@ export class PictureMaker {
       })),
     );
   }
+}
+
+/** Samples of the scene beyond the frame. */
+function marginOf({ sheet, frame }: View, oversample: number): RenderOptions['sceneMargin'] {
+  return {
+    left: oversample * (frame.x - sheet.x),
+    top: oversample * (frame.y - sheet.y),
+    right: oversample * (sheet.x + sheet.width - frame.x - frame.width),
+    bottom: oversample * (sheet.y + sheet.height - frame.y - frame.height),
+  };
 }
 
 async function encoded(

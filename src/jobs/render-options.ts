@@ -9,6 +9,7 @@ import {
 } from '../files/pictures/index.js';
 import { assertWritable } from '../files/write-whole.js';
 import type { Raster } from '../imaging/raster.js';
+import type { SceneSheet } from '../imaging/warp.js';
 import type { Engine } from '../imaging/work.js';
 import type { Rig } from '../optics/rig.js';
 import { checkSheet } from './render-sheet.js';
@@ -33,6 +34,9 @@ export interface RenderOptions {
   sceneLinear?: boolean;
   /** Blur on a grid of so many samples a pixel on each side, 1 to 16. Default: 1. */
   oversample?: number;
+  /** Samples by which the scene reaches past the sensor on each side, to be thrown in by distortion: it is then resized to cover those,
+   * too. Default: none; past its border a scene goes on with its edge. */
+  sceneMargin?: { left: number; top: number; right: number; bottom: number };
   /** Largest error by blending PSFs, as a share of full scale, above 0. Default: 0.004. */
   tolerance?: number;
   /** Largest share of a PSF's light outside its kernel, above 0. Default: 0.005. */
@@ -53,6 +57,7 @@ export interface RenderOptions {
 export interface Settings {
   rig: Rig;
   oversample: number;
+  sheet: SceneSheet;
   tolerances: { blend: number; kernel: number };
   seeds: { seed: number; cameraSeed: number };
   signal?: AbortSignal;
@@ -107,10 +112,15 @@ export function settle(options: RenderOptions): Settings {
     isWhole(cameraSeed, 0, Number.MAX_SAFE_INTEGER),
     'a whole number from 0 up',
   );
+  const { left = 0, top = 0, right = 0, bottom = 0 } = options.sceneMargin ?? {};
+  for (const [side, samples] of Object.entries({ left, top, right, bottom }))
+    check(`sceneMargin.${side}`, samples, isWhole(samples, 0, 65535), 'a whole number from 0 up');
   if (faults.length > 0) throw new InputError(faults);
+  const [width, height] = options.rig.camera.pixels.map((side) => side * oversample);
   return {
     rig: options.rig,
     oversample,
+    sheet: { width: left + width + right, height: top + height + bottom, left, top },
     tolerances: { blend: tolerance, kernel: kernelTolerance },
     seeds: { seed, cameraSeed },
     signal: options.signal,

@@ -62,7 +62,7 @@ export class Renderer {
   /** As `render`, but the picture lies in the renderer's memory, where the next one overwrites it. */
   async renderInPlace(options: RenderOptions): Promise<RenderResult> {
     const settings = settle(options);
-    const { rig, oversample, seeds, signal } = settings;
+    const { rig, oversample, sheet, seeds, signal } = settings;
     const outputs = checkOutputs(options);
     refuseUnformable(rig, oversample);
     if (signal?.aborted) throw new InterruptedError();
@@ -73,7 +73,7 @@ export class Renderer {
     };
     const { scene, bands, seconds } = await this.#readAndPrepare(options, settings, watch);
     const kept = options.sheet === undefined ? undefined : keepScene(rig, scene, oversample);
-    const formed = await formImage(crew, rig, scene.planes, oversample, bands, watch);
+    const formed = await formImage(crew, rig, scene.planes, oversample, bands, watch, sheet);
     const cameraStart = performance.now();
     const wantsRaw = options.raw !== undefined || options.keepRaw === true;
     const recorded = await recordImage(crew, rig.camera, formed.planes, seeds, wantsRaw, {
@@ -184,15 +184,14 @@ function opticsKey({
   return JSON.stringify([lens, pixels, pixelPitchUm, fillFactor, bands, mount, oversample, tolerances]);
 }
 
-/** The scene in the arena: of the sensor's size times the oversampling, one plane a band.
+/** The scene in the arena: of the sensor's size times the oversampling and its margins, one plane a band.
  * @param isArenaFree resolves when nothing else reserves memory there any more; decoding does not wait for it */
 async function readInto(
   arena: Arena,
   isArenaFree: Promise<unknown>,
   { scene, sceneLinear }: RenderOptions,
-  { rig, oversample }: Settings,
+  { rig, sheet: { width, height } }: Settings,
 ): Promise<Raster & { warnings: string[] }> {
-  const [width, height] = rig.camera.pixels.map((side) => side * oversample);
   const allocate: AllocatePlanes = (planeWidth, planeHeight, count) =>
     planeWidth === width && planeHeight === height
       ? Array.from({ length: count }, () =>

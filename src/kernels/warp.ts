@@ -9,11 +9,16 @@ import { add, lowHalves, mul, splat, sub } from './vector';
 /** What a warp works on; fields in this order. */
 @unmanaged
 export class WarpRequest {
+  /** Size of the picture, and of the scene, which may reach past it on every side. */
   width: i32;
   height: i32;
-  /** Where the optical axis meets the picture, in samples. */
+  sceneWidth: i32;
+  sceneHeight: i32;
+  /** Where the optical axis meets the picture, and where it meets the scene, in samples of each. */
   axisX: f64;
   axisY: f64;
+  sceneAxisX: f64;
+  sceneAxisY: f64;
   /** Table steps per squared sample of distance from the axis. */
   stepsPerSquare: f64;
   /** float64 tables over the squared landed radius: ideal over landed radius, relative illumination. */
@@ -83,10 +88,10 @@ export function warpRows(request: WarpRequest, rowStart: i32, rowEnd: i32): void
           start + (<usize>four << 2),
           request.width - four,
           parabola(f32x4.splat(<f32>light0), lightSlope, lightBend, narrow(t, tHigh)),
-          place(request.axisX, f64x2.mul(scaleLow, f64x2.add(xs, f64x2(0, 1)))),
-          place(request.axisX, f64x2.mul(scaleHigh, f64x2.add(xs, f64x2(2, 3)))),
-          place(request.axisY, f64x2.mul(scaleLow, f64x2.splat(y))),
-          place(request.axisY, f64x2.mul(scaleHigh, f64x2.splat(y))),
+          place(request.sceneAxisX, f64x2.mul(scaleLow, f64x2.add(xs, f64x2(0, 1)))),
+          place(request.sceneAxisX, f64x2.mul(scaleHigh, f64x2.add(xs, f64x2(2, 3)))),
+          place(request.sceneAxisY, f64x2.mul(scaleLow, f64x2.splat(y))),
+          place(request.sceneAxisY, f64x2.mul(scaleHigh, f64x2.splat(y))),
         );
       }
       scale0 = scale1;
@@ -147,7 +152,7 @@ function warpFour(
     ),
     v128.and(f64x2.eq(topLow, f64x2.splat(<f64>(top + 1))), f64x2.eq(topHigh, f64x2.splat(<f64>(top + 1)))),
   );
-  if (left < 0 || left + 7 > request.width || !i64x2.all_true(areNeighbours)) {
+  if (left < 0 || left + 7 > request.sceneWidth || !i64x2.all_true(areNeighbours)) {
     for (let plane: u32 = 0; plane < request.planes; plane++) {
       const samples = fourApart(request, sceneOf(request, plane), xLow, xHigh, yLow, yHigh);
       storeSome(outOf(request, plane) + to, count, mul(lights, samples));
@@ -179,10 +184,10 @@ function warpFour(
   }
 }
 
-/** Byte offset of a row; past the frame its edge goes on. */
+/** Byte offset of a row of the scene; past its border its edge goes on. */
 @inline
 function rowBytes(request: WarpRequest, row: i32): usize {
-  return <usize>clamp(row, request.height) * <usize>request.width << 2;
+  return <usize>clamp(row, request.sceneHeight) * <usize>request.sceneWidth << 2;
 }
 
 /** Each lane: four neighbours from its own place on, weighted. */
@@ -248,16 +253,20 @@ function storeSome(at: usize, count: i32, values: v128): void {
 /** Light the rows of a picture that no distortion moves. */
 export function lightRows(request: WarpRequest, rowStart: i32, rowEnd: i32): void {
   const width = request.width;
+  // whole samples by which the scene begins before the picture
+  const left = <i32>Math.round(request.sceneAxisX - request.axisX);
+  const top = <i32>Math.round(request.sceneAxisY - request.axisY);
   for (let row = rowStart; row < rowEnd; row++) {
     const y = <f64>row - request.axisY;
     let at = <usize>row * <usize>width << 2;
-    for (let column = 0; column < width; column++, at += 4) {
+    let from = <usize>((row + top) * request.sceneWidth + left) << 2;
+    for (let column = 0; column < width; column++, at += 4, from += 4) {
       const x = <f64>column - request.axisX;
       const place = (x * x + y * y) * request.stepsPerSquare;
       const step = <i32>place;
       const light = between(request.illumination, step, place - <f64>step);
       for (let plane: u32 = 0; plane < request.planes; plane++) {
-        store<f32>(outOf(request, plane) + at, <f32>light * load<f32>(sceneOf(request, plane) + at));
+        store<f32>(outOf(request, plane) + at, <f32>light * load<f32>(sceneOf(request, plane) + from));
       }
     }
   }
@@ -271,7 +280,7 @@ function between(table: usize, step: i32, part: f64): f64 {
   return low + part * (load<f64>(at, 8) - low);
 }
 
-/** The scene at (x, y); past its frame its edge goes on. */
+/** The scene at (x, y); past its border its edge goes on. */
 @inline
 function cubicSample(request: WarpRequest, scene: usize, x: f64, y: f64): f32 {
   const left = Math.floor(x);
@@ -301,7 +310,7 @@ function keysWeights(f: f32): v128 {
 /** Samples column ... column + 3 of a row. */
 @inline
 function four(request: WarpRequest, scene: usize, row: i32, column: i32): v128 {
-  const width = request.width;
+  const width = request.sceneWidth;
   const start = scene + rowBytes(request, row);
   if (column >= 0 && column + 4 <= width) return v128.load(start + (<usize>column << 2));
   return fourAtEdge(start, width, column);

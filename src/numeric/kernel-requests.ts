@@ -35,8 +35,12 @@ export function writePsfRequest(memory: WebAssembly.Memory, at: number, request:
 export interface WarpRequest {
   width: number;
   height: number;
+  sceneWidth: number;
+  sceneHeight: number;
   axisX: number;
   axisY: number;
+  sceneAxisX: number;
+  sceneAxisY: number;
   stepsPerSquare: number;
   scale: number;
   illumination: number;
@@ -45,15 +49,16 @@ export interface WarpRequest {
 }
 
 export const MOST_WARP_PLANES = 3;
-export const WARP_REQUEST_BYTES = 72;
+export const WARP_REQUEST_BYTES = 92;
 
 /** Write a warp's block at `at`. */
 export function writeWarpRequest(memory: WebAssembly.Memory, at: number, request: WarpRequest): void {
-  const { width, height, axisX, axisY, stepsPerSquare, scale, illumination, planes } = request;
-  new Int32Array(memory.buffer, at, 2).set([width, height]);
-  new Float64Array(memory.buffer, at + 8, 3).set([axisX, axisY, stepsPerSquare]);
+  const { width, height, sceneWidth, sceneHeight, scale, illumination, planes } = request;
+  const { axisX, axisY, sceneAxisX, sceneAxisY, stepsPerSquare } = request;
+  new Int32Array(memory.buffer, at, 4).set([width, height, sceneWidth, sceneHeight]);
+  new Float64Array(memory.buffer, at + 16, 5).set([axisX, axisY, sceneAxisX, sceneAxisY, stepsPerSquare]);
   const addresses = planes.flatMap(({ sceneAt, outAt }) => [sceneAt, outAt]);
-  new Uint32Array(memory.buffer, at + 32, 3 + addresses.length).set([
+  new Uint32Array(memory.buffer, at + 56, 3 + addresses.length).set([
     scale,
     illumination,
     planes.length,

@@ -115,7 +115,7 @@ describe('a lens without distortion', () => {
   });
 });
 
-describe.each([-10, 12])('a lens with %i %% of distortion', (distortionPercent) => {
+describe.each([-10, 12])('a lens with %i percent of distortion', (distortionPercent) => {
   const bent = view({ rig: rig({ distortionPercent }), draw: { scale: 1.2 }, output: { size: [300, 230] } });
   const at: Point = [90, 75];
   const outlined = moveLabel({ ...LABEL, polygons: [circle(...at, 25)] }, bent)!;

@@ -18,8 +18,7 @@ test.each([
   ['as large', 320, 240],
 ])('a scene that is %s than the sensor lies as in a rendering', (_name, width, height) => {
   const scene = speckle(width, height);
-  const { pose, frame } = view({ scene });
-  // the frame of a wide scene reaches past the sensor, to what the lens throws in from there
+  const { pose } = view({ scene });
   const whole = { x: 0, y: 0, width: 320, height: 240 };
   for (const oversample of [1, 3]) {
     const placed = placeScene(scene, pose, whole, oversample);
@@ -29,7 +28,6 @@ test.each([
     for (const [at, plane] of placed.planes.entries())
       expect(bytesOf(plane).equals(bytesOf(fitted.planes[at]))).toBe(true);
   }
-  expect(frame.width).toBeGreaterThanOrEqual(320);
 });
 
 test('a part of a frame is that part of the whole', () => {
