@@ -35,22 +35,6 @@ describe('detect', () => {
     },
   );
 
-  it('needs the photons that Rose found', () => {
-    // Source: A. Rose, JOSA 38 (1948) 196: k = C sqrt(photons in the detail), so a contrast of 0.05 with k = 5 takes 10000 photons (from memory)
-    const diameterPx = 100;
-    const whiteE = 10000 / ((Math.PI * diameterPx ** 2) / 4);
-    const quiet = {
-      white_e: whiteE,
-      full_well_e: 50,
-      dark_noise_e: 0,
-      prnu_percent: 0,
-      dsnu_e: 0,
-      bit_depth: 16,
-    };
-    const { value } = detect({ camera: { sensor: quiet }, lens: { f_number: 2 } }, 0, diameterPx);
-    expect(Math.abs(value / 5 - 1)).toBeLessThan(0.02);
-  });
-
   it.each([
     ['sharp', {}, 0],
     ['blurred', { W131: 1.5, W222: 1.2 }, 1],
