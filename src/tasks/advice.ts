@@ -25,9 +25,14 @@ export type Advice = {
 );
 
 /** What to change, the first thing first: what no lens can mend; then what meets the task by moving the sensor, by the stop, by a better
- * lens, in this order, as they cost ever more; then what comes nearest to it. */
-export async function adviceFor(rig: Rig, scoring: Scoring, gains: readonly PartGain[]): Promise<Advice[]> {
-  const now = await scoring.margin(rig);
+ * lens, in this order, as they cost ever more; then what comes nearest to it.
+ * @param now the least margin as things stand, by the same scoring */
+export async function adviceFor(
+  rig: Rig,
+  scoring: Scoring,
+  gains: readonly PartGain[],
+  now: number,
+): Promise<Advice[]> {
   const beyond = await beyondAnyLens(rig, scoring);
   const candidates: Advice[] = [];
   const add = (advice: Advice) => {

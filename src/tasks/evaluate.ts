@@ -39,13 +39,13 @@ export function judgeRule(
 ): RuleFigure {
   switch (rule.kind) {
     case 'contrast':
-      return atLeast(contrastAt(bench, place, rule), rule.atLeast);
+      return atLeast(contrastAt(bench, place, rule, accuracy), rule.atLeast);
     case 'placement':
       return atMost(placementAt(bench, place, rule), rule.limit.atMost);
     case 'edge_blur':
       return atMost(edgeBlurAt(bench, place, rule, accuracy), rule.limit.atMost);
     case 'detect':
-      return atLeast(detectAt(bench, place, rule), rule.ratioAtLeast);
+      return atLeast(detectAt(bench, place, rule, accuracy), rule.ratioAtLeast);
   }
 }
 

@@ -12,9 +12,9 @@ export interface PartGain {
   margin: number;
 }
 
-/** The gain of each part that is not zero, the largest first. */
-export async function partGains(rig: Rig, scoring: Scoring): Promise<PartGain[]> {
-  const now = await scoring.margin(rig);
+/** The gain of each part that is not zero, the largest first.
+ * @param now the least margin as things stand, by the same scoring */
+export async function partGains(rig: Rig, scoring: Scoring, now: number): Promise<PartGain[]> {
   const gains: PartGain[] = [];
   for (const coefficient of partsOf(rig)) {
     const margin = await scoring.margin(withoutPart(rig, coefficient));

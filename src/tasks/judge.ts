@@ -44,7 +44,8 @@ export async function judgeTask(rig: Rig, task: Task, trials: Trials): Promise<J
   const rules = await verdicts(laidOut, trials);
   const met = rules.every((rule) => rule.met);
   const scoring = new Scoring(laidOut, rules, trials);
-  const limits = await partGains(rig, scoring);
+  const now = await scoring.margin(rig);
+  const limits = await partGains(rig, scoring, now);
   return {
     task: task.name,
     rig: rig.lens.name,
@@ -58,7 +59,7 @@ export async function judgeTask(rig: Rig, task: Task, trials: Trials): Promise<J
     cornerField: cornerField(rig),
     rules,
     limits,
-    advice: met ? [] : await adviceFor(rig, scoring, limits),
+    advice: met ? [] : await adviceFor(rig, scoring, limits, now),
     warnings: taskWarnings(laidOut),
   };
 }

@@ -33,8 +33,8 @@ export function scorersOf(figure: SweepFigure, rules: readonly PixelRule[]): Sco
       const rule = { kind: 'contrast', lpPerMm: figure.lpPerMm, atLeast: 1 } as const;
       return [
         {
-          look: (bench, place) => {
-            const { value } = contrastAt(bench, place, rule);
+          look: (bench, place, accuracy) => {
+            const { value } = contrastAt(bench, place, rule, accuracy);
             return { value, margin: value };
           },
         },

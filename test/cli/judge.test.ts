@@ -1,5 +1,5 @@
 import { readFileSync, writeFileSync } from 'node:fs';
-import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest';
 import { loadRig } from '../../src/files/load-rig.js';
 import { loadTask } from '../../src/files/load-task.js';
 import { jsonText } from '../../src/files/write-data.js';
@@ -8,6 +8,9 @@ import { CAUTION } from '../../src/report/caution.js';
 import { judgeTable } from '../../src/report/judge-table.js';
 import { CHILD_TIMEOUT_MS, runInside, runProgram } from './run-program.js';
 import { type Folder, folderWithRig } from './small-rig.js';
+
+/** Symbols are drawn, blurred and read; the machine may be busy with other tests. */
+vi.setConfig({ testTimeout: 60_000 });
 
 const TASK = `name: small task
 zones: [axis, top_right]

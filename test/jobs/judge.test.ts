@@ -1,4 +1,4 @@
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { InputError } from '../../src/errors.js';
 import { parseTask, type Task } from '../../src/files/load-task.js';
 import { resultData } from '../../src/files/result-data.js';
@@ -6,6 +6,9 @@ import { type JudgeOptions, judge } from '../../src/jobs/judge.js';
 import type { Rig } from '../../src/optics/rig.js';
 import { zonesOf } from '../../src/optics/zones.js';
 import { COLOUR, type RigParts, SENSOR, taskRig } from '../tasks/rigs.js';
+
+/** Symbols are drawn, blurred and read; the machine may be busy with other tests. */
+vi.setConfig({ testTimeout: 60_000 });
 
 const camera = { sensor: SENSOR };
 const task = (require: object[], zones: (string | number)[] = ['axis', 0.5, 'top_right']): Task =>
@@ -128,14 +131,14 @@ describe('the largest field', () => {
     const rig = taskRig({ camera, waves });
     const { largestField } = await judged({ waves }, require);
     let end = 0;
-    for (let h = 0; h <= 1; h += 0.01) {
+    for (let h = 0; h <= 1; h += 0.02) {
       const report = await judge({ rig, task: { ...task(require), zones: [h] }, threads: 1 });
       if (!report.met) break;
       end = h;
     }
     // the scan knows it to 0.01; a rough figure is right to 1 % of the blur
     expect(largestField).toBeGreaterThan(end - 0.012);
-    expect(largestField).toBeLessThan(end + 0.022);
+    expect(largestField).toBeLessThan(end + 0.032);
   });
 
   it('is the corner where everything is met, and 0 where nothing is', async () => {
@@ -263,5 +266,5 @@ describe('with symbols', () => {
   it('gives the same report for the same seed, whatever the number of threads', async () => {
     const one = await judged(blurred, [CONTRAST, DECODE], { seed: 7 });
     expect(await judged(blurred, [CONTRAST, DECODE], { seed: 7, threads: 2 })).toEqual(one);
-  }, 30_000);
+  });
 });

@@ -1,4 +1,4 @@
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { InputError } from '../../src/errors.js';
 import { parseRig } from '../../src/files/load-rig.js';
 import { parseTask, type Task } from '../../src/files/load-task.js';
@@ -11,6 +11,9 @@ import { benchFor } from '../../src/tasks/bench.js';
 import { contrastAt } from '../../src/tasks/contrast.js';
 import { withShift, withStop } from '../../src/tasks/lens-parts.js';
 import { placeAt, type RigParts, SENSOR, taskRig } from '../tasks/rigs.js';
+
+/** Symbols are drawn, blurred and read; the machine may be busy with other tests. */
+vi.setConfig({ testTimeout: 60_000 });
 
 const camera = { sensor: SENSOR };
 const task = (require: object[], zones: (string | number)[] = [0, 0.6, 1]): Task =>

@@ -1,7 +1,6 @@
 /** The decoder and encoder of machine-readable symbols. The only place that imports zxing-wasm. */
 import { readFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
-import { prepareZXingModule, readBarcodes, writeBarcode } from 'zxing-wasm/full';
 
 /** Kinds of symbols that a task may name. */
 export type SymbolKind = 'qr' | 'data_matrix' | 'code_128';
@@ -20,21 +19,25 @@ const FORMATS = { qr: 'QRCode', data_matrix: 'DataMatrix', code_128: 'Code128' }
 /** QR with error correction level M (about 15 % of the code words); Data Matrix square, ECC 200. */
 const WRITING = { qr: 'ecLevel=M', data_matrix: 'forceSquare', code_128: '' } as const;
 
-let loading: Promise<unknown> | undefined;
+type Library = typeof import('zxing-wasm/full');
 
-/** The library's WebAssembly out of its own package: it would fetch it over the network otherwise. */
-function load(): Promise<unknown> {
+let loading: Promise<Library> | undefined;
+
+/** The library, where it is needed, with its WebAssembly out of its own package: it would fetch it over the network otherwise. */
+function load(): Promise<Library> {
   loading ??= (async () => {
+    const library = await import('zxing-wasm/full');
     const file = readFileSync(createRequire(import.meta.url).resolve('zxing-wasm/full/zxing_full.wasm'));
     const wasmBinary = Uint8Array.from(file).buffer;
-    await prepareZXingModule({ overrides: { wasmBinary }, fireImmediately: true });
+    await library.prepareZXingModule({ overrides: { wasmBinary }, fireImmediately: true });
+    return library;
   })();
   return loading;
 }
 
 /** The modules of a symbol that says `text`. */
 export async function encodeSymbol(kind: SymbolKind, text: string): Promise<SymbolModules> {
-  await load();
+  const { writeBarcode } = await load();
   const { symbol, error } = await writeBarcode(text, {
     format: FORMATS[kind],
     options: WRITING[kind],
@@ -59,7 +62,7 @@ export async function readSymbol(
   width: number,
   height: number,
 ): Promise<string | undefined> {
-  await load();
+  const { readBarcodes } = await load();
   const data = new Uint8ClampedArray(4 * width * height);
   for (let i = 0; i < grey.length; i++) {
     data.fill(grey[i], 4 * i, 4 * i + 3);
