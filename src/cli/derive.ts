@@ -3,6 +3,7 @@ import { Command } from 'commander';
 import type { DeriveReport, DeriveResult } from '../jobs/derive.js';
 import { type CommonTexts, commonOptions, GROUP, grouped, readThreads } from './common-options.js';
 import { checkOutputs, type Destination, fileDestination, readDestination } from './destinations.js';
+import { htmlOption, readHtmlFile } from './html-option.js';
 import { endOnInterrupt } from './interrupt.js';
 import { OptionValues } from './option-values.js';
 import { paintFor, print, warn } from './output.js';
@@ -14,6 +15,7 @@ interface DeriveTexts extends CommonTexts {
   out?: string;
   plot?: string;
   csv?: true | string;
+  html?: string;
 }
 
 export function deriveCommand(): Command {
@@ -64,6 +66,7 @@ export function deriveCommand(): Command {
         'what each surface contributes as CSV, on stdout in place of the tables, or in the file',
       ),
     );
+  command.addOption(htmlOption('bars of the surfaces, what the terms explain, colour and tables'));
   for (const option of commonOptions('the figures')) command.addOption(option);
   return command
     .addHelpText('after', '\nExample:\n  foreglass derive three-element.lens.yaml --out derived.lens.yaml')
@@ -80,6 +83,7 @@ export function deriveCommand(): Command {
         '--out': fileDestination(values.path('--out', texts.out)),
         '--plot': readPlotFile(values, texts.plot),
         '--csv': readDestination(values, '--csv', texts.csv),
+        '--html': readHtmlFile(values, texts.html),
         '--json': readDestination(values, '--json', texts.json),
       };
       await checkOutputs(values, { PRESCRIPTION: file }, outputs);
@@ -111,7 +115,7 @@ function readPlotFile(values: OptionValues, given: string | undefined): Destinat
 
 /** Makes what is asked for and nothing else, writes the files together, and prints what goes to stdout. */
 async function deliverAll(
-  outputs: Record<'--out' | '--plot' | '--csv' | '--json', Destination>,
+  outputs: Record<'--out' | '--plot' | '--csv' | '--html' | '--json', Destination>,
   prescription: string,
   { report, lens }: DeriveResult,
 ): Promise<void> {
@@ -131,6 +135,10 @@ async function deliverAll(
     '--csv': async () => {
       const { surfacesCsv } = await import('../report/surfaces-csv.js');
       return surfacesCsv(report);
+    },
+    '--html': async () => {
+      const { derivePage } = await import('../report/html/derive-page.js');
+      return derivePage(report);
     },
     '--json': async (path: string) => {
       const { dataText } = await import('../files/write-data.js');

@@ -12,14 +12,16 @@ import {
 } from './common-options.js';
 import { checkOutputs, readDestination } from './destinations.js';
 import { EXIT } from './failure.js';
+import { htmlOption, readHtmlFile } from './html-option.js';
 import { interruptible } from './interrupt.js';
 import { OptionValues } from './option-values.js';
-import { deliver, paintFor, print, warn } from './output.js';
+import { deliver, deliverText, paintFor, print, warn } from './output.js';
 import { openProgressBar } from './progress.js';
 
 interface JudgeTexts extends RigTexts, CommonTexts {
   task: string;
   seed?: string;
+  html?: string;
 }
 
 /** @param endWith takes the exit status of a task that is not met */
@@ -40,6 +42,7 @@ export function judgeCommand(endWith: (status: number) => void): Command {
     .addOption(
       grouped(GROUP.task, '--seed <number>', 'draws the symbols of decode and the noise (default: 1)'),
     );
+  command.addOption(htmlOption('the verdict, margins, what limits it, and the frame'));
   for (const option of commonOptions('the verdict')) command.addOption(option);
   return command
     .addHelpText(
@@ -53,10 +56,15 @@ export function judgeCommand(endWith: (status: number) => void): Command {
       const seed = values.number('--seed', texts.seed, { min: 0, integer: true });
       const threads = readThreads(values, texts);
       const json = readDestination(values, '--json', texts.json);
-      await checkOutputs(values, { '--rig': rigFile, '--task': taskFile }, { '--json': json });
+      const page = readHtmlFile(values, texts.html);
+      await checkOutputs(
+        values,
+        { '--rig': rigFile, '--task': taskFile },
+        { '--json': json, '--html': page },
+      );
       values.check();
 
-      const report = await interruptible(async (signal) => {
+      const { rig, report } = await interruptible(async (signal) => {
         const [{ loadRig }, { loadTask }, { judge }, bar] = await Promise.all([
           import('../files/load-rig.js'),
           import('../files/load-task.js'),
@@ -66,7 +74,8 @@ export function judgeCommand(endWith: (status: number) => void): Command {
         try {
           const rig = loadRig(rigFile, overrides);
           const task = loadTask(taskFile);
-          return await judge({ rig, task, seed, threads, signal, onProgress: (step) => bar.show(step) });
+          const options = { rig, task, seed, threads, signal };
+          return { rig, report: await judge({ ...options, onProgress: (step) => bar.show(step) }) };
         } finally {
           bar.end();
         }
@@ -75,6 +84,10 @@ export function judgeCommand(endWith: (status: number) => void): Command {
       endWith(report.met ? EXIT.done : EXIT.notMet);
       warn(report.warnings, texts.quiet);
       await deliver(json, report);
+      if (page.kind === 'file') {
+        const { judgeHtml } = await import('../jobs/task-html.js');
+        await deliverText(page, await judgeHtml(rig, report));
+      }
       if (json.kind === 'stdout') return;
       const { judgeTable } = await import('../report/judge-table.js');
       await print(judgeTable(report, await paintFor(process.stdout)));

@@ -2,6 +2,7 @@
 import { Command } from 'commander';
 import { type CommonTexts, commonOptions, GROUP, grouped, readThreads } from './common-options.js';
 import { checkOutputs, readDestination } from './destinations.js';
+import { htmlOption, readHtmlFile } from './html-option.js';
 import { endOnInterrupt } from './interrupt.js';
 import { OptionValues, parseNumber } from './option-values.js';
 import { deliver, deliverText, paintFor, print, warn } from './output.js';
@@ -16,6 +17,7 @@ interface MeasureTexts extends CommonTexts {
   cyclesPerPixel?: string;
   lpPerMm?: string;
   csv?: true | string;
+  html?: string;
 }
 
 export function measureCommand(): Command {
@@ -77,6 +79,7 @@ export function measureCommand(): Command {
         'the edges as CSV, without edges the discs or flat fields, on stdout in place of the table, or in the file',
       ),
     );
+  command.addOption(htmlOption('response curves of the edges, distortion, flat fields and tables'));
   for (const option of commonOptions('the figures')) command.addOption(option);
   return command
     .addHelpText(
@@ -109,7 +112,12 @@ export function measureCommand(): Command {
       const named = Object.entries(inputs).filter(
         (input): input is [string, string] => input[1] !== undefined,
       );
-      await checkOutputs(values, Object.fromEntries(named), { '--json': json, '--csv': csv });
+      const page = readHtmlFile(values, texts.html);
+      await checkOutputs(values, Object.fromEntries(named), {
+        '--json': json,
+        '--csv': csv,
+        '--html': page,
+      });
       values.check();
 
       const [{ loadRig }, { measure }] = await Promise.all([
@@ -125,6 +133,10 @@ export function measureCommand(): Command {
       if (csv.kind !== 'none') {
         const { measureCsv } = await import('../report/measure-csv.js');
         await deliverText(csv, measureCsv(report));
+      }
+      if (page.kind === 'file') {
+        const { measurePage } = await import('../report/html/measure-page.js');
+        await deliverText(page, await measurePage(report, rig?.lens.name));
       }
       if (json.kind === 'stdout' || csv.kind === 'stdout') return;
       const { measureTable } = await import('../report/measure-table.js');

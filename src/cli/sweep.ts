@@ -3,6 +3,7 @@ import { Command, type Option } from 'commander';
 import { type CommonTexts, commonOptions, GROUP, grouped, readThreads } from './common-options.js';
 import { checkOutputs, readDestination } from './destinations.js';
 import { EXIT } from './failure.js';
+import { htmlOption, readHtmlFile } from './html-option.js';
 import { interruptible } from './interrupt.js';
 import { numberList, variedKey } from './number-list.js';
 import { OptionValues } from './option-values.js';
@@ -23,6 +24,7 @@ interface SweepTexts extends CommonTexts {
   depth?: boolean;
   seed?: string;
   csv?: true | string;
+  html?: string;
 }
 
 const LIST = 'numbers with commas between, or FROM..TO/COUNT';
@@ -84,6 +86,7 @@ export function sweepCommand(endWith: (status: number) => void): Command {
         'the object may lie (--depth).',
     );
   for (const option of sweepOptions()) command.addOption(option);
+  command.addOption(htmlOption('the best place on a map of the samples, budget and depth'));
   for (const option of commonOptions('the figures')) command.addOption(option);
   return command
     .addHelpText(
@@ -118,10 +121,11 @@ Exit status: 0 the task is met at the best place (or no task was swept), 1 it is
       const json = readDestination(values, '--json', texts.json);
       const csv = readDestination(values, '--csv', texts.csv);
       const inputs = { '--rig': rigFile, ...(taskFile === undefined ? {} : { '--task': taskFile }) };
-      await checkOutputs(values, inputs, { '--json': json, '--csv': csv });
+      const page = readHtmlFile(values, texts.html);
+      await checkOutputs(values, inputs, { '--json': json, '--csv': csv, '--html': page });
       values.check();
 
-      const report = await interruptible(async (signal) => {
+      const { rig, report } = await interruptible(async (signal) => {
         const [{ loadRigFile }, { loadTask }, { sweep }, bar] = await Promise.all([
           import('../files/load-rig.js'),
           import('../files/load-task.js'),
@@ -131,7 +135,8 @@ Exit status: 0 the task is met at the best place (or no task was swept), 1 it is
         try {
           const rig = loadRigFile(rigFile);
           const task = taskFile === undefined ? undefined : loadTask(taskFile);
-          return await sweep({ ...options, rig, task, signal, onProgress: (step) => bar.show(step) });
+          const onProgress = (step: Parameters<typeof bar.show>[0]) => bar.show(step);
+          return { rig, report: await sweep({ ...options, rig, task, signal, onProgress }) };
         } finally {
           bar.end();
         }
@@ -143,6 +148,10 @@ Exit status: 0 the task is met at the best place (or no task was swept), 1 it is
       if (csv.kind !== 'none') {
         const { sweepCsv } = await import('../report/sweep-csv.js');
         await deliverText(csv, sweepCsv(report));
+      }
+      if (page.kind === 'file') {
+        const { sweepHtml } = await import('../jobs/task-html.js');
+        await deliverText(page, await sweepHtml(rig, report));
       }
       if (json.kind === 'stdout' || csv.kind === 'stdout') return;
       const { sweepTable } = await import('../report/sweep-table.js');

@@ -56,17 +56,22 @@ export function deriveTable(report: DeriveReport, paint: Paint = PLAIN): string 
   ].join('\n');
 }
 
-function headline({ name, focalLengthMm, workingFNumber, fullFieldMm, method }: DeriveReport): string {
+/** Where the places among the properties are counted from. */
+export const PROPERTY_ORIGINS =
+  'front point and entrance pupil: from the first surface; the rest from the last';
+
+export function headline({ name, focalLengthMm, workingFNumber, fullFieldMm, method }: DeriveReport): string {
   const focal = focalLengthMm === null ? 'afocal' : `${significant(focalLengthMm, 4)} mm`;
   const source = method === 'sums' ? 'third-order sums' : 'the five terms fitted to the exact wavefront';
   return `${name}: ${focal} f/${significant(workingFNumber, 3)}, h = 1 at ${significant(fullFieldMm, 4)} mm; ${source}`;
 }
 
-function propertyLines({ focalLengthMm, paraxial }: DeriveReport): string[] {
+/** First-order properties by name, lengths in mm. */
+export function properties({ focalLengthMm, paraxial }: DeriveReport): [name: string, value: string][] {
   const p = paraxial;
   const length = (value: number | null) => (value === null ? 'infinite' : significant(value, 6));
   const place = (value: number | null) => (value === null ? 'at infinity' : significant(value, 6));
-  const pairs = [
+  return [
     ['focal length', length(focalLengthMm)],
     ['back focus', length(p.backFocusMm)],
     ['front principal point', length(p.frontPrincipalMm)],
@@ -82,12 +87,15 @@ function propertyLines({ focalLengthMm, paraxial }: DeriveReport): string[] {
     ['Petzval radius', length(p.petzvalRadiusMm)],
     ['Lagrange invariant', length(p.lagrangeMm)],
   ];
-  const cells = pairs.map(([name, value]) => `${name.padEnd(22)} ${value}`);
+}
+
+function propertyLines(report: DeriveReport): string[] {
+  const cells = properties(report).map(([name, value]) => `${name.padEnd(22)} ${value}`);
   return [
     ...cells
       .filter((_, i) => i % 2 === 0)
       .map((cell, row) => `${cell.padEnd(WIDTH / 2)}${cells[2 * row + 1]}`),
-    'front point and entrance pupil: from the first surface; the rest from the last',
+    PROPERTY_ORIGINS,
   ];
 }
 

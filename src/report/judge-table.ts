@@ -69,7 +69,7 @@ function ruleSection(rule: RuleVerdict, paint: Paint): string[] {
 }
 
 /** What a rule asks, in words. */
-function ruleTitle({ rule, unit, asked, zones }: RuleVerdict): string {
+export function ruleTitle({ rule, unit, asked, zones }: RuleVerdict): string {
   const limit = significant(zones[0].limit, 4);
   switch (rule) {
     case 'contrast':

@@ -24,7 +24,7 @@ export interface SweepFigures {
   met: boolean | null;
 }
 
-interface Sample {
+export interface Sample {
   values: readonly number[];
   figure: number | null;
   met?: boolean;
@@ -49,7 +49,7 @@ export function sweepTable(report: SweepFigures, paint: Paint = PLAIN): string {
   ].join('\n');
 }
 
-function subjectOf({ figure }: SweepFigures): string {
+export function subjectOf({ figure }: SweepFigures): string {
   switch (figure.kind) {
     case 'margin':
       return figure.task;
@@ -60,7 +60,7 @@ function subjectOf({ figure }: SweepFigures): string {
   }
 }
 
-const TITLES = {
+export const TITLES = {
   margin: 'Least margin over all rules and zones',
   mtf: 'MTF of lens and camera, lowest over directions and zones',
   wavefront_rms: 'RMS of the wavefront in waves, largest over the zones',
@@ -136,6 +136,14 @@ function listOf(report: SweepFigures, paint: Paint): string[] {
 }
 
 function bestSection(report: SweepFigures, paint: Paint): string[] {
+  const words = bestWords(report);
+  if (words.length === 0) return [];
+  const title = report.met === null ? 'Best place' : report.met ? 'Best place: MET' : 'Best place: NOT MET';
+  return ['', paint.strong(title), ...words.flatMap((sentence) => wrapText(sentence, WIDTH))];
+}
+
+/** Where it is best, in sentences; none where nothing is swept. */
+export function bestWords(report: SweepFigures): string[] {
   const { best, bestSampled } = report;
   if (best === null || bestSampled === null) return [];
   const name = SHORT[report.figure.kind];
@@ -152,8 +160,7 @@ function bestSection(report: SweepFigures, paint: Paint): string[] {
     );
   if (atBorder(report, best).length > 0)
     words.push(`It lies on the border of what was swept (${atBorder(report, best).join(', ')}): sweep on.`);
-  const title = report.met === null ? 'Best place' : report.met ? 'Best place: MET' : 'Best place: NOT MET';
-  return ['', paint.strong(title), ...words.flatMap((sentence) => wrapText(sentence, WIDTH))];
+  return words;
 }
 
 /** Axes of which the best place takes the first or the last value. */
@@ -168,7 +175,7 @@ function atBorder({ axes }: SweepFigures, { values }: Sample): string[] {
 }
 
 /** Where budget and depth are taken. */
-function there(report: SweepFigures): string {
+export function there(report: SweepFigures): string {
   return report.best === null ? '' : ` at ${placeText(report, report.best)}`;
 }
 
@@ -205,23 +212,27 @@ function depthSection(report: SweepFigures, paint: Paint): string[] {
   const { depth } = report;
   if (depth === undefined) return [];
   const title = ['', paint.strong(`Depth${there(report)}: how near and how far the object may lie`)];
-  if (depth === null) return [...title, 'The task is not met there, so it has no depth.'];
+  return [...title, ...wrapText(depthWords(depth), WIDTH)];
+}
+
+/** The depth in a sentence. */
+export function depthWords(depth: DepthRange | null): string {
+  if (depth === null) return 'The task is not met there, so it has no depth.';
   const mm = (value: number | null | undefined) =>
     value === null || value === undefined ? 'no end' : `${significant(value, 4)} mm`;
   const range =
     depth.objectDistanceMm === undefined
       ? `${mm(depth.nearerMm)} nearer to ${mm(depth.fartherMm)} farther than in focus`
       : `from ${mm(depth.nearestMm)} to ${mm(depth.farthestMm)}, in focus at ${mm(depth.objectDistanceMm)}`;
-  const sentence = `The task is met ${range}: a depth of ${mm(depth.depthMm)} at a magnification of ${significant(depth.magnification, 3)}.`;
-  return [...title, ...wrapText(sentence, WIDTH)];
+  return `The task is met ${range}: a depth of ${mm(depth.depthMm)} at a magnification of ${significant(depth.magnification, 3)}.`;
 }
 
-function figureText({ figure }: SweepFigures, value: number | null): string {
+export function figureText({ figure }: SweepFigures, value: number | null): string {
   if (value === null) return '-';
   return figure.kind === 'margin' ? percentText(value) : fixed(value, 3);
 }
 
-function whereOf({ zones }: SweepFigures, { rule, zone }: Sample): string {
+export function whereOf({ zones }: SweepFigures, { rule, zone }: Sample): string {
   const names = [
     rule === undefined ? undefined : RULE_NAMES[rule as keyof typeof RULE_NAMES],
     zone === undefined ? undefined : zoneName(zones[zone]),
@@ -245,10 +256,10 @@ const AXIS_NAMES: Readonly<Record<string, string>> = {
 };
 
 /** `sensor shift` or the path of the key; the unit of the two is told apart from the name. */
-function axisName(key: string): string {
+export function axisName(key: string): string {
   return AXIS_NAMES[key] ?? key;
 }
 
-function axisUnit(key: string): string {
+export function axisUnit(key: string): string {
   return key === 'mount.sensor_shift_um' ? 'um' : '';
 }

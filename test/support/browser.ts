@@ -62,11 +62,14 @@ export const STICKING_OUT = `(() => {
 
 const AXE = createRequire(import.meta.url).resolve('axe-core/axe.min.js');
 
-/** Serious faults that the accessibility checker finds, contrast of text among them. */
-export async function accessibilityFaults(page: Page): Promise<string[]> {
+/** Serious faults that the accessibility checker finds, contrast of text among them.
+ * @param rules the only ones to look at; left out: all */
+export async function accessibilityFaults(page: Page, rules?: readonly string[]): Promise<string[]> {
   const { readFile } = await import('node:fs/promises');
-  await page.evaluate(await readFile(AXE, 'utf8'));
-  const { violations } = (await page.evaluate('axe.run(document)')) as {
+  if (!(await page.evaluate("'axe' in window"))) await page.evaluate(await readFile(AXE, 'utf8'));
+  const runOnly = rules === undefined ? '' : `, runOnly: ${JSON.stringify(rules)}`;
+  const run = `axe.run(document, { resultTypes: ['violations']${runOnly} })`;
+  const { violations } = (await page.evaluate(run)) as {
     violations: { id: string; impact: string; help: string; nodes: { html: string }[] }[];
   };
   return violations

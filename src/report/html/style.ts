@@ -39,10 +39,10 @@ a { color: var(--accent); }
 a:focus-visible, button:focus-visible, select:focus-visible, summary:focus-visible, [tabindex]:focus-visible { outline: 3px solid var(--accent); outline-offset: 2px; }
 section { padding: 26px 0 6px; }
 section + section { border-top: 1px solid var(--line); }
-.tiles { display: grid; grid-template-columns: repeat(auto-fill, minmax(min(150px, 100%), 1fr)); gap: 10px; padding: 0; margin: 0 0 16px; list-style: none; }
-.tiles li { background: var(--panel); border-radius: 6px; padding: 10px 12px; }
+.tiles { display: grid; grid-template-columns: repeat(auto-fit, minmax(min(150px, 100%), 1fr)); gap: 10px; padding: 0; margin: 0 0 16px; list-style: none; }
+.tiles li { max-width: 300px; background: var(--panel); border-radius: 6px; padding: 10px 12px; }
 .tiles .what { font-size: 0.84rem; display: block; }
-.tiles .value { font-size: 1.25rem; font-weight: 650; display: block; font-variant-numeric: tabular-nums; }
+.tiles .value { font-size: 1.15rem; font-weight: 650; display: block; font-variant-numeric: tabular-nums; }
 .tiles .where { color: var(--ink); font-size: 0.84rem; display: block; }
 .verdict { font-size: 1.5rem; font-weight: 700; margin: 0 0 6px; }
 .met { color: var(--met); }
@@ -51,8 +51,12 @@ section + section { border-top: 1px solid var(--line); }
 .plots > figure { max-width: 420px; }
 .plots.few { grid-template-columns: repeat(auto-fill, minmax(min(340px, 100%), 1fr)); }
 .plots.few > figure { max-width: 480px; }
+.plots.wide { grid-template-columns: minmax(0, 760px); }
+.plots.wide > figure { max-width: 760px; }
+.plots.wide svg { width: auto; }
 figure { margin: 0; min-width: 0; }
 figure svg { display: block; width: 100%; height: auto; max-width: 100%; }
+figure .scroll svg { width: auto; max-width: none; }
 figcaption { font-size: 0.9rem; }
 figcaption .more { color: var(--faint); }
 .key { list-style: none; display: flex; flex-wrap: wrap; gap: 2px 16px; padding: 0; margin: 8px 0; font-size: 0.9rem; }

@@ -4,6 +4,7 @@ import type { FrameMap } from '../../optics/frame-map.js';
 import type { Rig } from '../../optics/rig.js';
 import type { ZoneCurves } from '../../optics/zone-curves.js';
 import type { BothDirections, Zone, ZonesReport } from '../../optics/zones.js';
+import { bandTone } from '../plots/band-tone.js';
 import { colourRamp } from '../plots/colour-ramp.js';
 import { distortionGridPlot } from '../plots/distortion-grid.js';
 import { ACROSS_DASH, type Curve, linePlot } from '../plots/line-plot.js';
@@ -463,12 +464,6 @@ function heightMarks(zones: readonly Zone[], farthest: number): { x: number; tex
 
 function isTilted({ mount }: Rig): boolean {
   return mount.sensorTiltDeg.some((degrees) => degrees !== 0);
-}
-
-const BAND_TONES: Readonly<Record<string, Tone>> = { red: SERIES[1], green: SERIES[2], blue: SERIES[0] };
-
-function bandTone(band: string): Tone {
-  return BAND_TONES[band] ?? SERIES[0];
 }
 
 function bandKey(bands: readonly string[]): KeyEntry[] {

@@ -19,6 +19,8 @@ export interface LinePlot {
   x: { label: string; domain?: readonly [number, number] };
   y: { label: string; domain?: readonly [number, number] };
   curves: readonly Curve[];
+  /** Single points: filled or open. */
+  dots?: readonly { x: number; y: number; tone: Tone; isOpen: boolean }[];
   /** Upright lines with a word on top. */
   marks?: readonly { x: number; text: string }[];
 }
@@ -27,19 +29,28 @@ export interface LinePlot {
 export const ACROSS_DASH = '5 4';
 
 /** A plot for a page, of a width that a phone shows without shrinking its letters much. */
-export function linePlot({ title, description, id, x, y, curves, marks = [] }: LinePlot): Promise<string> {
+export function linePlot({
+  title,
+  description,
+  id,
+  x,
+  y,
+  curves,
+  dots = [],
+  marks = [],
+}: LinePlot): Promise<string> {
   return drawPlot({
     title,
     description,
     id,
     inPage: true,
     widthPx: 300,
-    heightPx: 220,
+    heightPx: 224,
     plot: (Plot) => ({
       marginTop: 30,
       marginLeft: 46,
       marginRight: 14,
-      marginBottom: 40,
+      marginBottom: 44,
       x: { label: x.label, domain: x.domain, nice: x.domain === undefined, labelAnchor: 'center', ticks: 5 },
       y: { label: y.label, domain: y.domain, nice: y.domain === undefined, labelAnchor: 'top', ticks: 5 },
       marks: [
@@ -57,6 +68,19 @@ export function linePlot({ title, description, id, x, y, curves, marks = [] }: L
               lineAnchor: 'bottom',
               dy: -6,
               fill: INK.light,
+            },
+          ),
+        ),
+        ...[false, true].map((isOpen) =>
+          Plot.dot(
+            dots.filter((dot) => dot.isOpen === isOpen),
+            {
+              x: 'x',
+              y: 'y',
+              r: 3,
+              symbol: isOpen ? 'square' : 'circle',
+              stroke: ({ tone }: { tone: Tone }) => tone.light,
+              fill: isOpen ? 'none' : ({ tone }: { tone: Tone }) => tone.light,
             },
           ),
         ),

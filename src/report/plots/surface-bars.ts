@@ -24,8 +24,9 @@ const COLUMN_PX = 112;
 
 /** The bars as a text of SVG. Each column has a scale of its own, written below it: sums of one kind are to be compared with each other.
  * In a well-corrected lens long bars to both sides leave a short one in the last row.
+ * @param inPage see `Figure`
  */
-export function surfaceBars(report: Surfaces): Promise<string> {
+export function surfaceBars(report: Surfaces, { inPage = false } = {}): Promise<string> {
   const { surfaces, seidelMm } = report;
   const rows = [
     ...surfaces.map((sums) => ({ row: `${sums.surface}${sums.stop ? ' stop' : ''}`, sums })),
@@ -45,6 +46,8 @@ export function surfaceBars(report: Surfaces): Promise<string> {
     title: `What each surface contributes: ${report.name}`,
     subtitle: `Third-order sums at f/${significant(report.workingFNumber, 3)} and h = 1 (${significant(report.fullFieldMm, 4)} mm), um of optical path`,
     description: inWords(report, scales),
+    inPage,
+    id: inPage ? 'surfaces' : undefined,
     widthPx: 76 + SEIDEL_SUMS.length * COLUMN_PX,
     heightPx: 72 + rows.length * ROW_PX,
     plot: (Plot) => ({
