@@ -41,7 +41,11 @@ export async function compareSurfaces() {
   await writeFile(derivedRig, rig.replace(/^lens:\n( .*\n)+/m, 'lens: derived.lens.yaml\n'));
   const pictures = [
     { rig: RIG, picture: join(FOLDER, 'picture-from-surfaces.png'), label: 'FROM ITS SURFACES' },
-    { rig: derivedRig, picture: join(FOLDER, 'picture-from-coefficients.png'), label: 'FROM ITS COEFFICIENTS' },
+    {
+      rig: derivedRig,
+      picture: join(FOLDER, 'picture-from-coefficients.png'),
+      label: 'FROM ITS COEFFICIENTS',
+    },
   ];
   for (const { rig, picture } of pictures)
     foreglass(['render', shown(SCENE), '--rig', shown(rig), '--out', shown(picture), '--quiet'], 'quiet');
