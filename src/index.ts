@@ -34,6 +34,7 @@ export {
   derive,
   type Prescription,
 } from './jobs/derive.js';
+export { deriveHtml, judgeHtml, measureHtml, sweepHtml } from './jobs/html.js';
 export {
   type Advice,
   type JudgeOptions,
@@ -71,6 +72,7 @@ export {
   sweep,
 } from './jobs/sweep.js';
 export { type ZonesOptions, type ZonesReport, zones } from './jobs/zones.js';
+export { zonesHtml } from './jobs/zones-html.js';
 export type {
   Band,
   Camera,

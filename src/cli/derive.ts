@@ -137,8 +137,8 @@ async function deliverAll(
       return surfacesCsv(report);
     },
     '--html': async () => {
-      const { derivePage } = await import('../report/html/derive-page.js');
-      return derivePage(report);
+      const { deriveHtml } = await import('../jobs/html.js');
+      return deriveHtml(report);
     },
     '--json': async (path: string) => {
       const { dataText } = await import('../files/write-data.js');

@@ -85,7 +85,7 @@ export function judgeCommand(endWith: (status: number) => void): Command {
       warn(report.warnings, texts.quiet);
       await deliver(json, report);
       if (page.kind === 'file') {
-        const { judgeHtml } = await import('../jobs/task-html.js');
+        const { judgeHtml } = await import('../jobs/html.js');
         await deliverText(page, await judgeHtml(rig, report));
       }
       if (json.kind === 'stdout') return;

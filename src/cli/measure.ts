@@ -135,8 +135,8 @@ export function measureCommand(): Command {
         await deliverText(csv, measureCsv(report));
       }
       if (page.kind === 'file') {
-        const { measurePage } = await import('../report/html/measure-page.js');
-        await deliverText(page, await measurePage(report, rig?.lens.name));
+        const { measureHtml } = await import('../jobs/html.js');
+        await deliverText(page, await measureHtml(report, rig));
       }
       if (json.kind === 'stdout' || csv.kind === 'stdout') return;
       const { measureTable } = await import('../report/measure-table.js');

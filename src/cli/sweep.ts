@@ -150,7 +150,7 @@ Exit status: 0 the task is met at the best place (or no task was swept), 1 it is
         await deliverText(csv, sweepCsv(report));
       }
       if (page.kind === 'file') {
-        const { sweepHtml } = await import('../jobs/task-html.js');
+        const { sweepHtml } = await import('../jobs/html.js');
         await deliverText(page, await sweepHtml(rig, report));
       }
       if (json.kind === 'stdout' || csv.kind === 'stdout') return;

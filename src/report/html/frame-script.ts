@@ -69,7 +69,8 @@ table.querySelectorAll('tbody th').forEach((th) => th.setAttribute('role', 'rowh
 cells.forEach((td, i) => {
   td.setAttribute('role', 'gridcell');
   td.tabIndex = -1;
-  td.addEventListener('mouseenter', () => choose(i, false));
+  // not when the page moves under a mouse at rest, as it does on its way to a cell chosen by key
+  td.addEventListener('mousemove', () => i !== current && choose(i, false));
   td.addEventListener('focus', () => choose(i, false));
   td.addEventListener('click', () => choose(i, true));
 });

@@ -115,17 +115,16 @@ describe.skipIf(program === undefined)('the page of zones in a browser', () => {
     const axis = await card();
     expect(axis[0]).toBe('x 0.00 mm, y 0.00 mm (h = 0.00)');
     await page.hover('#frame-map tbody tr:last-child td:last-child');
-    const corner = await card();
     // half of 2000 x 1500 pixels of 3.45 um, to the middle of the last one
-    expect(corner[0]).toBe('x 3.45 mm, y 2.59 mm (h = 1.08)');
+    await expect.poll(async () => (await card())[0]).toBe('x 3.45 mm, y 2.59 mm (h = 1.08)');
+    const corner = await card();
     expect(corner[1]).toBe('#psf-0'); // the first cell's, turned over
     expect(corner[2]).toBe('scale(-1 -1)');
     const report = zones(RIGS.colour, { fields: ['bottom_right'] });
     expect(corner[3]).toBe(report.zones[0].mtf[0].camera.tangential.toFixed(3));
-    await page.keyboard.press('Tab');
     await page.focus('#frame-map [aria-selected]');
     await page.keyboard.press('ArrowLeft');
-    expect((await card())[4]).toBe(8); // one to the left of the ninth, after the row's head
+    await expect.poll(async () => (await card())[4]).toBe(8); // one to the left of the ninth, after the row's head
     await page.close();
   }, 60_000);
 
@@ -176,13 +175,11 @@ describe.skipIf(program === undefined)('the page of zones in a browser', () => {
     60_000,
   );
 
-  it.each(['light', 'dark'] as const)(
-    'can be read by all in the %s theme',
-    async (colorScheme) => {
-      const page = await open('colour', { colorScheme });
-      expect(await accessibilityFaults(page)).toEqual([]);
-      await page.close();
-    },
-    60_000,
-  );
+  it('can be read by all in both themes', async () => {
+    const page = await open('colour', { colorScheme: 'light' });
+    expect(await accessibilityFaults(page), 'light').toEqual([]);
+    await page.emulateMedia({ colorScheme: 'dark' });
+    expect(await accessibilityFaults(page, ['color-contrast']), 'dark').toEqual([]); // the rest is the same
+    await page.close();
+  }, 60_000);
 });
