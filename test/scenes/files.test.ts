@@ -66,8 +66,8 @@ describe('the lenses that are given by their surfaces', () => {
 
 describe('the tasks and recipes', () => {
   it('load', () => {
-    expect(loadTask(join(HALL, 'read-tags.task.yaml')).rules).toHaveLength(4);
-    expect(loadTask(join(START, 'read-tags.task.yaml')).rules).toHaveLength(4);
+    expect(loadTask(join(HALL, 'read-tags.task.yaml')).rules).toHaveLength(5);
+    expect(loadTask(join(START, 'read-tags.task.yaml')).rules).toHaveLength(5);
     expect(loadRecipe(join(START, 'training.recipe.yaml')).rigs).toEqual([join(START, 'belt.rig.yaml')]);
   });
 
