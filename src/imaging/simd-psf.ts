@@ -55,7 +55,6 @@ export class SimdKernelMaker implements KernelMaking {
   readonly #work: number;
   readonly #largestGrid: number;
   readonly #tables = new Map<number, GridTables>();
-  readonly #areas = new Map<string, number>();
   /** For grids that the kernels do not know. */
   #reference?: KernelMaker;
 
@@ -113,7 +112,7 @@ export class SimdKernelMaker implements KernelMaking {
     });
     this.#kernels.psfIntensity(this.#request);
     this.#wrapRows(n);
-    const scale = weight / (this.#area(n, radius, half) * n * n);
+    const scale = weight / (pupilArea(radius, half) * n * n);
     this.#kernels.addPixels(
       this.#intensity,
       this.#side,
@@ -144,16 +143,6 @@ export class SimdKernelMaker implements KernelMaking {
     }
     return tables;
   }
-
-  #area(n: number, radius: number, half: number): number {
-    const key = `${n} ${radius}`;
-    let area = this.#areas.get(key);
-    if (area === undefined) {
-      area = pupilArea(radius, half);
-      this.#areas.set(key, area);
-    }
-    return area;
-  }
 }
 
 /** Windows larger than the kernels' transforms are worked out in float64. */
@@ -166,6 +155,11 @@ export function ringsWorkBytes(kernels: Kernels): number {
   return rounded(pupil) + rounded(4 * size ** 2) + 5 * 3 * rounded(4 * size) + rounded(PSF_REQUEST_BYTES);
 }
 
+/** The rings of the latest PSFs of a thread, by all that they depend on: the size of a kernel and what falls outside of it are asked for
+ * one after the other. */
+const latestRings = new WeakMap<Kernels, Map<string, Float64Array>>();
+const MOST_RINGS = 128;
+
 /** Energy of PSFs by square rings, see `energyBySquareRing`, by the compiled kernels. */
 export class SimdRings {
   readonly #kernels: Kernels;
@@ -174,6 +168,7 @@ export class SimdRings {
   readonly #work: number;
   readonly #intensity: Float32Array;
   readonly #tables = new Map<number, GridTables>();
+  readonly #latest: Map<string, Float64Array>;
 
   constructor(kernels: Kernels, scratch: Scratch) {
     const n = LARGEST_RINGS;
@@ -182,37 +177,42 @@ export class SimdRings {
     this.#request = scratch.allocate(PSF_REQUEST_BYTES);
     this.#work = scratch.allocate(kernels.psfScratchBytes(n, n / 2 - 1) >>> 0);
     this.#intensity = scratch.floats(n ** 2).values;
+    this.#latest = latestRings.get(kernels) ?? new Map<string, Float64Array>();
+    latestRings.set(kernels, this.#latest);
   }
 
   readonly rings: RingMaker = (wavefront, n, stepUm, nm, fNumber) => {
     if (n > LARGEST_RINGS) return energyBySquareRing(wavefront, n, stepUm, nm, fNumber);
+    const { w40, w31, w22, w20, w11, cos, sin } = wavefront;
+    const key = `${[w40, w31, w22, w20, w11, cos, sin, n, stepUm, nm, fNumber]}`;
+    let rings = this.#latest.get(key);
+    if (rings === undefined) {
+      if (this.#latest.size >= MOST_RINGS) this.#latest.clear();
+      rings = this.#compute(wavefront, n, stepUm, nm, fNumber);
+      this.#latest.set(key, rings);
+    }
+    return rings;
+  };
+
+  #compute(...[wavefront, n, stepUm, nm, fNumber]: Parameters<RingMaker>): Float64Array {
     const radius = pupilDiameterSamples(n, stepUm, nm, fNumber) / 2;
     const half = pupilReach(n, radius);
-    const { memory } = this.#scratch;
-    const out = this.#intensity.byteOffset;
-    const tables = this.#tablesFor(n);
-    writePsfRequest(memory, this.#request, {
+    writePsfRequest(this.#scratch.memory, this.#request, {
       ...wavefront,
-      ...tables,
+      ...this.#tablesFor(n),
       n,
       half,
       radius,
       scratch: this.#work,
       side: n,
-      out,
+      out: this.#intensity.byteOffset,
     });
     this.#kernels.psfIntensity(this.#request);
-    const rings = new Float64Array(n / 2 + 1);
+    const rings = sumBySquareRing(this.#intensity, n);
     const scale = 1 / (pupilArea(radius, half) * n * n);
-    for (let row = 0; row < n; row++) {
-      const y = Math.abs(row - n / 2);
-      for (let column = 0; column < n; column++) {
-        const x = Math.abs(column - n / 2);
-        rings[Math.max(x, y)] += scale * this.#intensity[row * n + column];
-      }
-    }
+    for (let r = 0; r < rings.length; r++) rings[r] *= scale;
     return rings;
-  };
+  }
 
   #tablesFor(n: number): GridTables {
     let tables = this.#tables.get(n);
@@ -222,6 +222,23 @@ export class SimdRings {
     }
     return tables;
   }
+}
+
+/** Sums over the samples with max(|x|, |y|) = r of an n x n plane whose middle is sample (n/2, n/2). */
+function sumBySquareRing(plane: Float32Array, n: number): Float64Array {
+  const rings = new Float64Array(n / 2 + 1);
+  const middle = n / 2;
+  for (let row = 0; row < n; row++) {
+    const y = Math.abs(row - middle);
+    const centre = row * n + middle;
+    const last = Math.min(y, middle - 1); // there is no column n
+    let inner = 0;
+    for (let at = centre - y; at <= centre + last; at++) inner += plane[at];
+    rings[y] += inner;
+    for (let x = y + 1; x < middle; x++) rings[x] += plane[centre - x] + plane[centre + x];
+    if (y < middle) rings[middle] += plane[centre - middle];
+  }
+  return rings;
 }
 
 /** Tables for a window of `side` samples of an n-grid that begins `start` samples from the image point. */

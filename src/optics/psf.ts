@@ -91,14 +91,23 @@ export function rimShare(rho: number, radius: number): number {
   return Math.min(1, Math.max(0, (1 - rho) * radius + 0.5));
 }
 
-/** The pupil's area in samples: the sum of its amplitudes. */
+/** The pupil's area in samples: the sum of its amplitudes. Pupils of one stop have few sizes, so that the latest areas are kept. */
 export function pupilArea(radius: number, half: number): number {
-  let area = 0;
-  for (let j = -half; j <= half; j++) {
-    for (let i = -half; i <= half; i++) area += rimShare(Math.hypot(i, j) / radius, radius);
+  const key = `${radius} ${half}`;
+  let area = areas.get(key);
+  if (area === undefined) {
+    area = 0;
+    for (let j = -half; j <= half; j++) {
+      for (let i = -half; i <= half; i++) area += rimShare(Math.hypot(i, j) / radius, radius);
+    }
+    if (areas.size >= MOST_AREAS) areas.clear();
+    areas.set(key, area);
   }
   return area;
 }
+
+const areas = new Map<string, number>();
+const MOST_AREAS = 256;
 
 /** Computes pixel-integrated PSFs of one sampling; keeps its scratch between calls, so each worker makes its own.
  *
