@@ -93,7 +93,7 @@ const FOCUS_STEPS = 14;
 function bestShiftUm(rig: Rig, scoring: Scoring): number {
   const reachUm = focusReachUm(rig, scoring);
   const middle = rig.mount.sensorShiftUm;
-  const margin = (shiftUm: number, floor?: number) => scoring.opticsMargin(withShift(rig, shiftUm), floor);
+  const margin = (shiftUm: number, floor?: number) => scoring.searchMargin(withShift(rig, shiftUm), floor);
   let best = { x: middle, value: margin(middle) };
   const step = (2 * reachUm) / FOCUS_STEPS;
   for (let i = 0; i <= FOCUS_STEPS; i++) {
@@ -125,11 +125,11 @@ const HALF_STOPS = 10;
  * with the largest margin. The change of light is included. */
 function bestStop(rig: Rig, scoring: Scoring): number {
   const { fNumber: now } = rig.mount;
-  let best = { fNumber: now, margin: scoring.opticsMargin(rig) };
+  let best = { fNumber: now, margin: scoring.searchMargin(rig) };
   for (let half = 0; half <= HALF_STOPS; half++) {
     const fNumber = Math.max(rig.lens.fNumber, tidy(rig.lens.fNumber * 2 ** (half / 4), 2));
     const floor = Math.min(best.margin, 0);
-    const margin = scoring.opticsMargin(withStop(rig, fNumber), floor - 1e-12);
+    const margin = scoring.searchMargin(withStop(rig, fNumber), floor - 1e-12);
     const isNearer = Math.abs(Math.log(fNumber / now)) < Math.abs(Math.log(best.fNumber / now));
     const isBetter = best.margin >= 0 ? margin >= 0 && isNearer : margin > best.margin;
     if (isBetter) best = { fNumber, margin };

@@ -21,14 +21,12 @@ export interface Scorer {
   look(bench: Bench, place: Place, accuracy: Accuracy): { value: number; margin: number };
 }
 
-/** @param rules of the task, in pixels of the rig at hand */
+/** The closed-form rules of a task; or the MTF, or the RMS.
+ * @param rules of the task, in pixels of the rig at hand */
 export function scorersOf(figure: SweepFigure, rules: readonly PixelRule[]): Scorer[] {
   switch (figure.kind) {
     case 'margin':
-      return scoredRules(rules).map((rule) => ({
-        rule: rule.kind,
-        look: (bench, place, accuracy) => judgeRule(bench, rule, place, accuracy),
-      }));
+      return rules.filter(isOpticsRule).map(scorerOf);
     case 'mtf': {
       const rule = { kind: 'contrast', lpPerMm: figure.lpPerMm, atLeast: 1 } as const;
       return [
@@ -52,9 +50,14 @@ export function scorersOf(figure: SweepFigure, rules: readonly PixelRule[]): Sco
   }
 }
 
-/** The closed-form rules. Where there are none, edges within a module stand for symbols, to rank places that are all read or all unread. */
-function scoredRules(rules: readonly PixelRule[]): OpticsRule[] {
-  const optics = rules.filter(isOpticsRule);
-  if (optics.length > 0) return optics;
-  return rules.filter((rule) => rule.kind === 'decode').map((rule) => blurWithinModule(rule));
+/** Edges within a module, which stand for symbols where their rates are alike: all read, or all unread. */
+export function standInScorers(rules: readonly PixelRule[]): Scorer[] {
+  return rules.filter((rule) => rule.kind === 'decode').map((rule) => scorerOf(blurWithinModule(rule)));
+}
+
+function scorerOf(rule: OpticsRule): Scorer {
+  return {
+    rule: rule.kind,
+    look: (bench, place, accuracy) => judgeRule(bench, rule, place, accuracy),
+  };
 }

@@ -19,7 +19,7 @@ export class Scoring {
   readonly #trials: Trials;
   /** Whether `rules` are the task's own, or stand for its symbols. */
   readonly hasOptics: boolean;
-  /** Every rule at every place; the one that was the worst last time comes first. */
+  /** Every rule that searches look at, at every place; the one that was the worst last time comes first. */
   readonly #pairs: { rule: OpticsRule; point: FieldPoint }[];
 
   /** @param verdicts of the rig as it stands, in the order of the rules */
@@ -34,29 +34,24 @@ export class Scoring {
       return met ? [] : [{ rule, worst: points[zones.findIndex((zone) => zone.margin === margin)] }];
     });
     this.#trials = trials;
-    this.#pairs = this.rules.flatMap((rule) => points.map((point) => ({ rule, point })));
+    // a task that symbols fail may have no other rule that feels the focus: the edges of their modules do
+    const standIns = this.hasOptics ? this.#tried.map(({ rule }) => blurWithinModule(rule)) : [];
+    this.#pairs = [...this.rules, ...standIns].flatMap((rule) => points.map((point) => ({ rule, point })));
   }
 
-  /** The least margin of the closed-form rules. -Infinity where a variant cannot be computed.
+  /** What a search makes large: the least margin of the closed-form rules, and of the edges that stand for symbols which are not read.
+   * -Infinity where a variant cannot be computed.
    * @param floor a margin at or below which the exact value does not matter: the search then ends early */
-  opticsMargin(rig: Rig, floor = Number.NEGATIVE_INFINITY): number {
-    let least = Number.POSITIVE_INFINITY;
-    let worst = 0;
-    try {
-      const bench = benchFor(rig);
-      for (const [at, { rule, point }] of this.#pairs.entries()) {
-        const { margin } = judgeRule(bench, rule, point, 'rough');
-        if (margin >= least) continue;
-        least = margin;
-        worst = at;
-        if (least <= floor) break;
-      }
-    } catch (error) {
-      if (error instanceof InputError) return Number.NEGATIVE_INFINITY;
-      throw error;
-    }
+  searchMargin(rig: Rig, floor = Number.NEGATIVE_INFINITY): number {
+    const { margin, worst } = leastOf(rig, this.#pairs, floor);
     this.#pairs.unshift(...this.#pairs.splice(worst, 1));
-    return least;
+    return margin;
+  }
+
+  /** The least margin of `rules`. */
+  opticsMargin(rig: Rig): number {
+    const pairs = this.rules.flatMap((rule) => this.points.map((point) => ({ rule, point })));
+    return leastOf(rig, pairs, Number.NEGATIVE_INFINITY).margin;
   }
 
   /** The least margin, trials included. What only stands for symbols does not count where these are tried. */
@@ -75,6 +70,29 @@ export class Scoring {
     }
     return margin;
   }
+}
+
+function leastOf(
+  rig: Rig,
+  pairs: readonly { rule: OpticsRule; point: FieldPoint }[],
+  floor: number,
+): { margin: number; worst: number } {
+  let least = Number.POSITIVE_INFINITY;
+  let worst = 0;
+  try {
+    const bench = benchFor(rig);
+    for (const [at, { rule, point }] of pairs.entries()) {
+      const { margin } = judgeRule(bench, rule, point, 'rough');
+      if (margin >= least) continue;
+      least = margin;
+      worst = at;
+      if (least <= floor) break;
+    }
+  } catch (error) {
+    if (error instanceof InputError) return { margin: Number.NEGATIVE_INFINITY, worst: 0 };
+    throw error;
+  }
+  return { margin: least, worst };
 }
 
 /** What stands for a symbol where nothing but its decoding is asked: an edge as wide as a module. */

@@ -3,10 +3,10 @@ import { InputError } from '../errors.js';
 import { nestedMaximum, type SearchRange } from '../numeric/nested-maximum.js';
 import type { FieldPoint, FieldSpec } from '../optics/field-points.js';
 import type { Rig } from '../optics/rig.js';
-import { isOpticsRule, type LaidOut, layOut } from './evaluate.js';
+import { type LaidOut, layOut } from './evaluate.js';
 import { marginAtLeast } from './figures.js';
 import type { PixelRule, PixelRuleOf } from './rules.js';
-import { type SweepFigure, scorersOf } from './scorers.js';
+import { type Scorer, type SweepFigure, scorersOf, standInScorers } from './scorers.js';
 import { type Trials, tryAt } from './verdict.js';
 
 /** A number of the rig and the values to look at. */
@@ -109,42 +109,42 @@ function layOutAt({ rigAt, figure, fields }: SweepPlan, values: readonly number[
   return layOut(rigAt(values), figure.kind === 'margin' ? figure.rules : [], fields);
 }
 
-/** The figure in full at one place. */
+/** The figure in full at one place. Where the closed-form rules are not met, no symbols are tried. */
 async function sampleAt(plan: SweepPlan, values: readonly number[], trials: Trials): Promise<RankedSample> {
   const laidOut = layOutAt(plan, values);
-  const { zones, least } = leastOf(plan, laidOut);
   const isTask = plan.figure.kind === 'margin';
-  const hasOptics = !isTask || laidOut.rules.some(isOpticsRule);
-  let sample: RankedSample = { values: [...values], rank: least.margin, margin: least.margin, met: true };
-  if (hasOptics) {
-    const { margin, rule, value, zone } = least;
-    sample = { ...sample, met: !isTask || margin >= 0, rule, value, zone, zones };
-    if (!sample.met) return sample;
-  }
+  const optics = leastOf(laidOut, scorersOf(plan.figure, laidOut.rules));
+  const rank = optics?.margin ?? standInMargin(laidOut);
+  let sample: RankedSample = { values: [...values], rank, met: true, margin: Number.POSITIVE_INFINITY };
+  if (optics !== undefined) sample = { ...sample, ...optics, met: !isTask || optics.margin >= 0 };
+  if (!sample.met) return sample;
   for (const rule of laidOut.rules.filter((one) => one.kind === 'decode')) {
     const decode = await worstRate(laidOut, rule, trials);
     sample = { ...sample, decode };
-    if (decode.met && hasOptics) continue; // the margin of a rate ends at 1, where it says nothing any more
+    if (decode.met && optics !== undefined) continue; // the margin of a rate ends at 1, where it says nothing any more
     const { value, zone, met } = decode;
     const margin = marginAtLeast(value, rule.successAtLeast);
-    const isFirst = sample.rule === undefined;
-    if (isFirst || margin < sample.margin!) sample = { ...sample, margin, met, rule: 'decode', value, zone };
-    if (!met) return sample;
+    if (margin < sample.margin!) sample = { ...sample, margin, met, rule: 'decode', value, zone };
+    if (!met) return { ...sample, rank: Math.min(rank, standInMargin(laidOut)) };
   }
   return sample;
 }
 
-/** The least margin without trials, and that of each zone. */
-function leastOf({ figure }: SweepPlan, { bench, rules, points }: LaidOut) {
+/** The least margin of some looks over the zones, where it is, and that of each zone; undefined without looks. */
+function leastOf({ bench, points }: LaidOut, scorers: readonly Scorer[]) {
   const zones = points.map(() => Number.POSITIVE_INFINITY);
   let least: { margin: number; rule?: PixelRule['kind']; value: number; zone: number } | undefined;
-  for (const { rule, look } of scorersOf(figure, rules))
+  for (const { rule, look } of scorers)
     for (const [zone, point] of points.entries()) {
       const { margin, value } = look(bench, point, 'full');
       zones[zone] = Math.min(zones[zone], margin);
       if (least === undefined || margin < least.margin) least = { margin, rule, value, zone };
     }
-  return { zones, least: least! }; // a task has a rule and a zone
+  return least === undefined ? undefined : { ...least, zones };
+}
+
+function standInMargin(laidOut: LaidOut): number {
+  return leastOf(laidOut, standInScorers(laidOut.rules))?.margin ?? Number.POSITIVE_INFINITY;
 }
 
 /** The lowest rate over the zones, from the last zone on; the first that is not met ends it. */
@@ -186,7 +186,12 @@ function search(plan: SweepPlan, start: SweepSample): number[] | undefined {
     const spacing = (samples[samples.length - 1] - samples[0]) / (samples.length - 1);
     return { samples, tolerance: 0.02 * spacing };
   });
-  const height = (place: readonly number[], floor: number) => roughMargin(plan, full(place), floor);
+  // where all hangs on symbols, the edges of their modules show the way
+  const looks = ({ rules }: LaidOut) => [
+    ...scorersOf(plan.figure, rules),
+    ...(start.rule === 'decode' ? standInScorers(rules) : []),
+  ];
+  const height = (place: readonly number[], floor: number) => roughMargin(plan, full(place), looks, floor);
   const from = moving.map(({ at }, i) => scale[i].position(start.values[at]));
   return full(nestedMaximum(height, ranges, from).place);
 }
@@ -198,7 +203,12 @@ function scaleOf(key: string): { position(value: number): number; value(position
     : { position: (value) => value, value: (position) => position };
 }
 
-function roughMargin(plan: SweepPlan, values: readonly number[], floor: number): number {
+function roughMargin(
+  plan: SweepPlan,
+  values: readonly number[],
+  looks: (laidOut: LaidOut) => Scorer[],
+  floor: number,
+): number {
   let laidOut: LaidOut;
   try {
     laidOut = layOutAt(plan, values);
@@ -206,8 +216,8 @@ function roughMargin(plan: SweepPlan, values: readonly number[], floor: number):
     if (error instanceof InputError) return Number.NEGATIVE_INFINITY;
     throw error;
   }
-  const { bench, rules, points } = laidOut;
-  const scorers = scorersOf(plan.figure, rules);
+  const { bench, points } = laidOut;
+  const scorers = looks(laidOut);
   let least = Number.POSITIVE_INFINITY;
   for (const point of points.toReversed()) // the farthest zone comes last, and is the likeliest to end it
     for (const { look } of scorers) {

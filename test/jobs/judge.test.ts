@@ -257,6 +257,11 @@ describe('with symbols', () => {
     expect(advice[0].met).toBe(true);
   });
 
+  it('finds the focus of symbols beside rules that do not feel it', async () => {
+    const { advice } = await judged({ mount: { sensor_shift_um: 150 } }, [PLACEMENT, DECODE]);
+    expect(advice[0]).toMatchObject({ change: 'focus', met: true });
+  });
+
   it('says where no lens helps: modules finer than the pixels', async () => {
     const fine = { decode: { symbol: 'qr', module_px: 0.9, success_at_least: 0.9, trials: 10 } };
     const { advice } = await judged({ waves: { W131: 1 } }, [fine]);

@@ -247,6 +247,17 @@ describe('a sweep of a task', () => {
     expect(met).toBe(true);
   });
 
+  it('finds the focus of symbols beside rules that do not feel it', async () => {
+    const rules = [
+      { placement: { at_most_px: 5 } },
+      { decode: { symbol: 'data_matrix', module_px: 3, success_at_least: 0.9, trials: 6 } },
+    ];
+    const { best, samples } = await swept({}, { task: task(rules, [0]), sensorShiftsUm: [-260, -140, 130] });
+    expect(samples.map(({ met }) => met)).toEqual([false, false, false]);
+    expect(best!.met).toBe(true); // between the samples
+    expect(Math.abs(best!.values[0])).toBeLessThan(40);
+  });
+
   it('finds the focus of symbols alone', async () => {
     const rules = [{ decode: { symbol: 'data_matrix', module_px: 3, success_at_least: 0.9, trials: 6 } }];
     const { best, samples } = await swept({}, { task: task(rules, [0]), sensorShiftsUm: [-170, -50, 70] });
