@@ -1,7 +1,7 @@
 /** The choice of kernel, tile and order of interpolation for one band, and the proof that it holds. */
 import { fineWindow, gridSize } from '../optics/psf.js';
 import { isSymmetric } from '../optics/rig.js';
-import { refuseTooSteep } from '../optics/sampling.js';
+import { largestSlope, refuseTooSteep } from '../optics/sampling.js';
 import { wavefrontAt } from '../optics/wavefront.js';
 import { type BlurGrid, makeBlurGrid, tileEdge } from './blur-grid.js';
 import { probeCount, type TileSpan } from './certificate.js';
@@ -55,7 +55,7 @@ export async function prepareKernels(
   earlier?: BandKernels,
 ): Promise<BandKernels> {
   // where light spreads the widest in one band, it does so in the others
-  const places = earlier?.widestPlaces ?? samplePlaces(setup);
+  const places = earlier?.widestPlaces ?? steepestPlaces(setup);
   const { kernelPx, energyOutsideKernel, widestPlaces } = await chooseKernel(
     crew,
     setup,
@@ -119,6 +119,25 @@ function samplePlaces(setup: BandSetup): [number, number][] {
   const grid = places.map(([u, v]): [number, number] => [u * width - 0.5, v * height - 0.5]);
   const inside = axisX >= -0.5 && axisX <= width - 0.5 && axisY >= -0.5 && axisY <= height - 0.5;
   return inside ? [...grid, [axisX, axisY]] : grid;
+}
+
+/** How many places are looked at for the widest PSF. */
+const STEEPEST = 3;
+
+/** Of the places, those from which rays are thrown the farthest: where the light spreads the widest is one of them. */
+function steepestPlaces(setup: BandSetup): [number, number][] {
+  const { rig, bandIndex } = setup;
+  const band = rig.camera.bands[bandIndex];
+  const frame = frameOf(setup);
+  const reach = ([x, y]: [number, number]) => {
+    const [xMm, yMm] = idealPoint(frame, x, y);
+    return Math.max(...band.lines.map(({ nm }) => nm * largestSlope(wavefrontAt(rig, xMm, yMm, nm, band))));
+  };
+  return samplePlaces(setup)
+    .map((place) => ({ place, reach: reach(place) }))
+    .sort((a, b) => b.reach - a.reach)
+    .slice(0, STEEPEST)
+    .map(({ place }) => place);
 }
 
 /** What PSFs of a band are computed with. */
@@ -194,6 +213,8 @@ async function chooseTile(
   if (earlier !== undefined) {
     // the order that is best for one band is as good as the best for the others
     const { order } = earlier;
+    if (!paysToMeasure(task, earlier))
+      return { tilePx: cheapestTile(task, order, earlier.tilePx).tilePx, order };
     const allowedPx = await largestTile(crew, task, order, tolerance, watch, earlier.tilePx, 1);
     return { tilePx: cheapestTile(task, order, allowedPx).tilePx, order };
   }
@@ -211,6 +232,19 @@ async function chooseTile(
   }
   return best;
 }
+
+/** Whether the errors of single tiles are worth their measuring. PSFs of a longer wavelength change less from place to place, and allow
+ * tiles somewhat larger than those of the band before: that can save a part of the blur, and of a small picture it is too small a part. */
+function paysToMeasure(task: PsfTask, { tilePx, order }: BlurGrid): boolean {
+  const { setup, kernelPx, psfWork } = task;
+  const { width, height } = frameOf(setup);
+  const measuring = sampleSpans(setup, tilePx).length * ((order + 1) ** 2 + probeCount(order)) * psfWork;
+  const blur = costPerSample(task, tilePx, order, blurFftSize(tilePx, kernelPx)) * width * height;
+  return measuring < HOPED_FOR * blur;
+}
+
+/** Part of the blur that larger tiles may save. */
+const HOPED_FOR = 0.2;
 
 /** Side of the tile whose error is measured first. */
 const FIRST_GUESS_PX = 64;
@@ -243,7 +277,8 @@ async function largestTile(
   const longest = Math.max(width, height) + task.kernelPx; // all that the blur sees
   let tilePx = Math.min(guessPx, longest);
   for (let round = 0; round < rounds; round++) {
-    const spans = sampleSpans(setup, tilePx);
+    const all = sampleSpans(setup, tilePx);
+    const spans = round < rounds - 1 ? all.slice(0, 1) : all; // a first look at the fastest change, to be measured about right then
     const { kernelPx, largestGrid } = task;
     const job = { kind: 'spans', setup, kernelPx, largestGrid, order, spans } as const;
     const error = largest(await crew.run(job, { signal: watch.signal }));
@@ -253,9 +288,10 @@ async function largestTile(
   return tilePx;
 }
 
-/** Spans at the places where PSFs change the fastest: corners, sides, and half-way out. */
+/** Spans at the places where PSFs change the fastest: corners, sides, and half-way out, the farthest from the axis first. Where the sensor
+ * is not tilted, PSFs depend on the distance from the axis but for their direction, and a few of the spans tell. */
 function sampleSpans(setup: BandSetup, tilePx: number): TileSpan[] {
-  const { width, height } = frameOf(setup);
+  const { width, height, axisX, axisY } = frameOf(setup);
   const span = (size: number, share: number): [number, number] => {
     const side = Math.min(tilePx, size);
     const near = share * (size - side) - 0.5;
@@ -274,8 +310,15 @@ function sampleSpans(setup: BandSetup, tilePx: number): TileSpan[] {
     const [nearY, farY] = span(height, v);
     spans.set(`${nearX} ${nearY}`, { nearX, farX, nearY, farY });
   }
-  return [...spans.values()];
+  const distance = ({ nearX, farX, nearY, farY }: TileSpan) =>
+    Math.hypot((nearX + farX) / 2 - axisX, (nearY + farY) / 2 - axisY);
+  const outerFirst = [...spans.values()].sort((a, b) => distance(b) - distance(a));
+  const [aboutX, aboutY] = setup.rig.mount.sensorTiltDeg;
+  if (aboutX !== 0 || aboutY !== 0 || outerFirst.length <= FEW_SPANS) return outerFirst;
+  return [...outerFirst.slice(0, FEW_SPANS - 1), outerFirst[outerFirst.length - 1]];
 }
+
+const FEW_SPANS = 4;
 
 /** Work per sample of the picture, in butterflies: transforms of tiles, of ones and of kernels, and the PSFs themselves. Two tiles share
  * each complex transform; mirrored quadrants share kernels. The counts are those of `src/kernels/blur.ts`. */
