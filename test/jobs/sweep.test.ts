@@ -355,6 +355,21 @@ describe('the budget', () => {
       expect(scaled.depth!.farthestMm!).toBeLessThan(fixed.depth!.farthestMm ?? Number.POSITIVE_INFINITY);
     });
 
+    it('tries symbols at its ends, with or without other rules', async () => {
+      const decode = { decode: { symbol: 'data_matrix', module_px: 2, success_at_least: 0.6, trials: 3 } };
+      const wide = { edge_blur: { at_most_px: 6 } };
+      const [alone, beside, withoutSymbols] = await Promise.all(
+        [[decode], [wide, decode], [wide]].map((rules) => swept({}, { task: task(rules, [0]), depth: true })),
+      );
+      const reach = ({ depth }: typeof alone) => depth!.focusUm[1];
+      // a disc as large as two modules is not read, one of half a module is: radius = focus / (2 N)
+      expect(reach(alone)).toBeGreaterThan(2.5 * 8);
+      expect(reach(alone)).toBeLessThan(10 * 8);
+      // from inside one meets the first failure, from outside the last success: chance has its say between
+      expect(Math.abs(reach(beside) / reach(alone) - 1)).toBeLessThan(0.4);
+      expect(reach(withoutSymbols)).toBeGreaterThan(1.2 * reach(beside));
+    });
+
     it('is none where the task is not met, and is refused without a scale', async () => {
       expect((await swept({ waves: { W020: 2 } }, { task: atHalfWave, depth: true })).depth).toBeNull();
       await expect(
