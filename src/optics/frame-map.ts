@@ -1,7 +1,7 @@
 /** The frame divided into cells: what lens and camera do in the middle of each. */
 import { bandLines, bandMtf, pixelMtf } from './otf.js';
 import { isSymmetric, pixelPitchMm, type Rig } from './rig.js';
-import { strehlRatio } from './strehl.js';
+import { wavefrontAt, wavefrontRmsWaves } from './wavefront.js';
 import type { BothDirections } from './zones.js';
 
 /** One cell, by its middle. */
@@ -15,9 +15,10 @@ export interface FrameCell {
   field: number;
   /** Of the cell that shows the same, turned over: the first such in reading order, itself in a tilted or shifted frame. */
   twin: number;
+  /** At the lens's own wavelength, piston and tilt taken out. */
+  wavefrontRmsWaves: number;
   /** For each band in the order of the camera. */
   bands: {
-    strehl: number;
     /** Of lens and camera, for each frequency asked for. */
     mtf: BothDirections[];
   }[];
@@ -45,7 +46,15 @@ export function frameMap(rig: Rig, lpPerMm: readonly number[]): FrameMap {
     const row = Math.floor(at / columns);
     const xMm = pitchMm * ((column / Math.max(1, columns - 1)) * (width - 1) - mount.axisPx[0]);
     const yMm = pitchMm * ((row / Math.max(1, rows - 1)) * (height - 1) - mount.axisPx[1]);
-    return { column, row, xMm, yMm, field: Math.hypot(xMm, yMm) / lens.fullFieldMm };
+    const wavefront = wavefrontAt(rig, xMm, yMm, lens.wavelengthNm);
+    return {
+      column,
+      row,
+      xMm,
+      yMm,
+      field: Math.hypot(xMm, yMm) / lens.fullFieldMm,
+      wavefrontRmsWaves: wavefrontRmsWaves(wavefront),
+    };
   });
   const folds = isSymmetric(rig);
   const cells: FrameCell[] = [];
@@ -70,7 +79,6 @@ function figures(
   const lines = bandLines(rig, xMm, yMm, band);
   const { fNumber } = rig.mount;
   return {
-    strehl: strehlRatio(lines, fNumber),
     mtf: lpPerMm.map((frequency) => {
       const pixel = pixelMtf(rig.camera, frequency);
       return {

@@ -49,15 +49,15 @@ function choose(i, isFocus) {
   svg.setAttribute('aria-label', 'PSF at ' + cell.where);
   svg.querySelector('g').setAttribute('transform', 'scale(' + cell.flip.join(' ') + ')');
   svg.querySelector('use').setAttribute('href', '#psf-' + cell.psf);
+  byId('zone-rms').textContent = show(cell.rms, 3);
   const rows = byId('zone-figures').querySelectorAll('tbody tr');
   let row = 0;
-  cell.mtf.forEach((band, b) => {
+  cell.mtf.forEach((band) => {
     band.forEach(([along, across]) => {
       const slots = rows[row++].querySelectorAll('td.figure');
       slots[0].textContent = show(along, 3);
       slots[1].textContent = show(across, 3);
     });
-    byId('zone-strehl').children[b].textContent = (data.bands.length > 1 ? data.bands[b] + ' ' : '') + show(cell.strehl[b], 3);
   });
 }
 

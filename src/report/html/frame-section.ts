@@ -66,7 +66,7 @@ ${jsonBlock('frame-data', {
     where: whereIs(cell),
     psf: uses[i].picture,
     flip: [uses[i].flipX ? -1 : 1, uses[i].flipY ? -1 : 1],
-    strehl: cell.bands.map(({ strehl }) => rounded(strehl)),
+    rms: rounded(cell.wavefrontRmsWaves),
     mtf: cell.bands.map(({ mtf }) =>
       mtf.map(({ tangential, sagittal }) => [rounded(tangential), rounded(sagittal)]),
     ),
@@ -101,7 +101,7 @@ function zoneCard({ map, psfs, uses }: FrameFigures, at: number): Markup {
   const hasBands = map.bands.length > 1;
   return html`<div class="zone-card" role="group" aria-label="Figures of one cell"><h3 id="zone-where" aria-live="polite">${whereIs(cell)}</h3>
 ${psfPicture(uses[at], `PSF at ${whereIs(cell)}`, 'zone-psf')}
-<p class="lead">PSF of the lens, ${significant(psfs.sidePx, 3)} px (${significant(psfs.sideUm, 3)} µm) a side. Strehl ratio <span id="zone-strehl">${cell.bands.map(({ strehl }, band) => html`<span>${hasBands ? `${map.bands[band]} ` : ''}${fixed(strehl, 3)}</span> `)}</span></p>
+<p class="lead">PSF of the lens, ${significant(psfs.sidePx, 3)} px (${significant(psfs.sideUm, 3)} µm) a side. Wavefront RMS <span id="zone-rms">${fixed(cell.wavefrontRmsWaves, 3)}</span> waves.</p>
 <table id="zone-figures"><caption>Contrast of lens and camera</caption>
 <thead><tr>${hasBands && html`<th scope="col" class="text">band</th>`}<th scope="col">lp/mm</th><th scope="col">along</th><th scope="col">across</th></tr></thead>
 <tbody>${rows.map(({ band, lpPerMm, both }): Piece => html`<tr>${hasBands && html`<td class="text">${band}</td>`}<td>${significant(lpPerMm, 4)}</td><td class="figure">${fixed(both.tangential, 3)}</td><td class="figure">${fixed(both.sagittal, 3)}</td></tr>`)}</tbody></table>
@@ -114,8 +114,8 @@ export function psfSection({ map, psfs, uses }: FrameFigures): Markup {
   return html`<p>Each square is ${significant(psfs.sidePx, 3)} px (${significant(psfs.sideUm, 3)} µm) of the sensor, in the place where the point lands; each is as bright as its own peak allows, and the sRGB curve lifts the faint skirts. The lens alone: pixels are left out.${colour}</p>
 <div class="psfs" style="grid-template-columns: repeat(${map.columns}, minmax(0, 1fr))">${map.cells.map(
     (cell, i) => {
-      const strehl = cell.bands.map((band) => fixed(band.strehl, 3)).join(', ');
-      return psfPicture(uses[i], `PSF at ${whereIs(cell)}, Strehl ratio ${strehl}`);
+      const rms = fixed(cell.wavefrontRmsWaves, 3);
+      return psfPicture(uses[i], `PSF at ${whereIs(cell)}, wavefront RMS ${rms} waves`);
     },
   )}</div>
 `;

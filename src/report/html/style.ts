@@ -103,7 +103,7 @@ select { font: inherit; color: var(--ink); background: var(--page); border: 1px 
 .sprite { position: absolute; width: 0; height: 0; overflow: hidden; }
 @media print {
   body { font-size: 10pt; }
-  nav, .choices, .skip { display: none; }
+  nav, .choices, .skip, #frame-help { display: none; }
   section { padding: 10px 0 4px; }
   figure, .tiles li, tr, .zone-card { break-inside: avoid; }
   h2, h3, caption { break-after: avoid; }

@@ -214,7 +214,7 @@ async function frequencySection(context: Context): Promise<Markup> {
           })),
           ...point.indices.flatMap((i) => bothCurves(lpPerMm, own[i].mtf, bandTone(report.zones[i].band))),
         ],
-        marks: lpPerMm.at(-1)! > 1.02 * nyquist ? [{ x: nyquist, text: 'half a cycle a pixel' }] : undefined,
+        marks: lpPerMm.at(-1)! > 1.02 * nyquist ? [{ x: nyquist, text: '0.5 cycles/pixel' }] : undefined,
       });
       return figure(zoneName(point.zone), `${fixed(point.zone.imageHeightMm, 2)} mm`, svg);
     }),

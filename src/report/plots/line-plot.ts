@@ -106,5 +106,5 @@ export function linePlot({
 function anchorOf(at: number, domain: readonly [number, number] | undefined): 'start' | 'middle' | 'end' {
   if (domain === undefined) return 'middle';
   const share = (at - domain[0]) / (domain[1] - domain[0]);
-  return share < 0.1 ? 'start' : share > 0.9 ? 'end' : 'middle';
+  return share < 0.2 ? 'start' : share > 0.8 ? 'end' : 'middle';
 }
