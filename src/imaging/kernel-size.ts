@@ -10,8 +10,13 @@ import { idealPoint, sensorFrame } from './sensor-frame.js';
 const SMALLEST_KERNEL = 15;
 const LARGEST_KERNEL = 1023;
 
+/** Fine steps in one step of the rings. The fine grid holds the intensity at its Nyquist rate; added up over its samples, light is held by
+ * the Nyquist rate of the amplitude, which is half of that: the sum over all samples is exact, and a square's is off by a part of what
+ * falls on its border. */
+const RING_STEPS = 2;
+
 /** Cumulated energy of a band's PSF at a place of the picture.
- * @returns shares of the light within max(|x|, |y|) <= r fine steps, by r; the fine steps are those of `kernelSampling` */
+ * @returns shares of the light within max(|x|, |y|) <= r ring steps, by r */
 function energyWithin(
   ringsOf: RingMaker,
   rig: Rig,
@@ -22,14 +27,17 @@ function energyWithin(
   enough: (cumulated: Float64Array) => boolean,
 ): Float64Array {
   const { pitchUm, shortestNm, fNumber } = kernelSampling(rig, oversample, 1);
-  const stepUm = pitchUm / samplesPerPixel(pitchUm, shortestNm, fNumber);
+  const stepUm = (RING_STEPS * pitchUm) / samplesPerPixel(pitchUm, shortestNm, fNumber);
   const [xMm, yMm] = idealPoint(sensorFrame(rig, band, oversample), x, y);
   const lines = band.lines.map(({ nm, weight }) => ({
     nm,
     weight,
     wavefront: wavefrontAt(rig, xMm, yMm, nm, band),
   }));
-  let n = Math.max(512, ...lines.map(({ nm, wavefront }) => gridForPhase(wavefront, stepUm, nm, fNumber)));
+  let n = Math.max(
+    LEAST_WINDOW,
+    ...lines.map(({ nm, wavefront }) => gridForPhase(wavefront, stepUm, nm, fNumber)),
+  );
   for (; ; n *= 2) {
     const cumulated = new Float64Array(n / 2 + 1);
     for (const { nm, weight, wavefront } of lines) {
@@ -44,7 +52,11 @@ function energyWithin(
   }
 }
 
-/** Half the side, in fine steps, of the square that holds all but `tolerance` of the light. */
+/** The smallest window, in ring steps. */
+const LEAST_WINDOW = 256;
+
+/** How far from the image point the square reaches that holds all but `tolerance` of the light, r: not rounded, and such that its side is
+ * 2 r + 1 fine steps. */
 export function extentSteps(
   ringsOf: RingMaker,
   rig: Rig,
@@ -54,10 +66,12 @@ export function extentSteps(
   y: number,
   tolerance: number,
 ): number {
-  return radiusHolding(
-    energyWithin(ringsOf, rig, band, oversample, x, y, isWideEnough(tolerance)),
-    tolerance,
-  );
+  const cumulated = energyWithin(ringsOf, rig, band, oversample, x, y, isWideEnough(tolerance));
+  const at = radiusHolding(cumulated, tolerance);
+  const before = at === 0 ? 0 : cumulated[at - 1];
+  const part = at === 0 || cumulated[at] <= before ? 1 : (1 - tolerance - before) / (cumulated[at] - before);
+  // a ring of radius r reaches r + 1/2 steps out
+  return RING_STEPS * (at - 0.5 + Math.min(1, part)) - 0.5;
 }
 
 /** Share of the light that falls outside a kernel at a place of the picture, seen in the same window as `extentSteps` does with the same
@@ -72,7 +86,7 @@ export function energyOutside(
   kernelPx: number,
   tolerance: number,
 ): number {
-  const reach = (kernelPx * finePerSample(rig, oversample) - 1) / 2; // a ring of radius r reaches r + 1/2 steps out
+  const reach = (kernelPx * finePerSample(rig, oversample)) / (2 * RING_STEPS) - 0.5;
   const isEnough = isWideEnough(tolerance);
   const cumulated = energyWithin(
     ringsOf,

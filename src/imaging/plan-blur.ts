@@ -233,9 +233,9 @@ async function chooseTile(
   return best;
 }
 
-/** Whether the errors of single tiles are worth their measuring. PSFs of a longer wavelength change less from place to place, and allow
- * tiles somewhat larger than those of the band before: that can save a part of the blur, and of a small picture it is too small a part. */
-function paysToMeasure(task: PsfTask, { tilePx, order }: BlurGrid): boolean {
+/** Whether the errors of single tiles are worth their measuring: larger tiles save a part of the blur, and of a small picture it is too
+ * small a part. The finished grid is checked in any case. */
+function paysToMeasure(task: PsfTask, { tilePx, order }: Pick<BlurGrid, 'tilePx' | 'order'>): boolean {
   const { setup, kernelPx, psfWork } = task;
   const { width, height } = frameOf(setup);
   const measuring = sampleSpans(setup, tilePx).length * ((order + 1) ** 2 + probeCount(order)) * psfWork;
@@ -278,7 +278,9 @@ async function largestTile(
   let tilePx = Math.min(guessPx, longest);
   for (let round = 0; round < rounds; round++) {
     const all = sampleSpans(setup, tilePx);
-    const spans = round < rounds - 1 ? all.slice(0, 1) : all; // a first look at the fastest change, to be measured about right then
+    // where the change is the fastest as a rule; the others where much depends on the last word
+    const isLastWord = round === rounds - 1 && paysToMeasure(task, { tilePx: Math.floor(tilePx), order });
+    const spans = isLastWord ? all : all.slice(0, 1);
     const { kernelPx, largestGrid } = task;
     const job = { kind: 'spans', setup, kernelPx, largestGrid, order, spans } as const;
     const error = largest(await crew.run(job, { signal: watch.signal }));

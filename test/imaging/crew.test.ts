@@ -32,7 +32,8 @@ describe('Crew', () => {
     const places = [0, 300, 700, 1100, 1500, 1999].map((x): [number, number] => [x, x / 2]);
     const found = await crew.run(extents(places));
     const expected = places.map(([x, y]) => extentSteps(energyBySquareRing, RIG, BAND, 1, x, y, 0.02));
-    expect(Array.from(found).slice(0, places.length)).toEqual(expected);
+    // the workers compute in float32
+    for (const [task, extent] of expected.entries()) expect(found[task]).toBeCloseTo(extent, 3);
     expect(new Set(expected).size).toBeGreaterThan(2); // or order would not show
   });
 
