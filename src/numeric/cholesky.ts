@@ -13,7 +13,7 @@ export function choleskyFactor(matrix: readonly (readonly number[])[]): number[]
       for (let k = 0; k < column; k++) left -= factor[row][k] * factor[column][k];
       const pivot = factor[column][column];
       if (row === column) {
-        if (left < -ROUNDING) return undefined;
+        if (left < -INDEFINITE) return undefined;
         factor[row][row] = left > ROUNDING ? Math.sqrt(left) : 0;
       } else if (pivot > 0) {
         factor[row][column] = left / pivot;
@@ -26,4 +26,7 @@ export function choleskyFactor(matrix: readonly (readonly number[])[]): number[]
 }
 
 /** What rounding may leave of a pivot that is 0; the diagonal is 1. */
-const ROUNDING = 1e-12;
+const ROUNDING = 1e-10;
+
+/** Rounding, divided by the smallest pivot that counts, may leave a later pivot of 0 this far below it. */
+const INDEFINITE = 1e-6;
