@@ -29,4 +29,4 @@ export function choleskyFactor(matrix: readonly (readonly number[])[]): number[]
 const ROUNDING = 1e-10;
 
 /** Rounding, divided by the smallest pivot that counts, may leave a later pivot of 0 this far below it. */
-const INDEFINITE = 1e-6;
+const INDEFINITE = 1e-5;
