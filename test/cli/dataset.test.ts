@@ -2,7 +2,7 @@ import { existsSync, readdirSync, readFileSync, rmSync } from 'node:fs';
 import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, test, vi } from 'vitest';
 import { CounterRandom } from '../../src/numeric/random.js';
-import { contents, type Site, smallSite } from '../jobs/small-dataset.js';
+import { contents, RECIPE, type Site, smallSite } from '../jobs/small-dataset.js';
 import { CHILD_TIMEOUT_MS, runInside, runProgram } from './run-program.js';
 
 vi.setConfig({ testTimeout: CHILD_TIMEOUT_MS, hookTimeout: CHILD_TIMEOUT_MS });
@@ -95,15 +95,22 @@ describe('dataset', () => {
 });
 
 test('killed at 20 random moments, and gone on with, it leaves the folder of an undisturbed run', async () => {
+  site.write('long.recipe.yaml', RECIPE.replace('count: 8', 'count: 20'));
   // two folders side by side, each killed ten times
   const inTheMidst = await Promise.all([killed('killed-1', 1, 10), killed('killed-2', 2, 10)]);
-  expect(inTheMidst[0] + inTheMidst[1]).toBeGreaterThan(2); // kills between pictures, and not all of them before the first
+  expect(inTheMidst[0] + inTheMidst[1]).toBeGreaterThanOrEqual(8); // kills between pictures, and not all of them before the first
+  expect((await runInside(long('undisturbed'))).status).toBe(0);
   for (const name of ['killed-1', 'killed-2']) {
-    const { status, stderr } = await runProgram(words(name, '--quiet'));
+    const { status, stderr } = await runProgram(long(name));
     expect([status, stderr]).toEqual([0, '']);
-    expect(contents(site.path(name))).toEqual(contents(site.path('out')));
+    expect(contents(site.path(name))).toEqual(contents(site.path('undisturbed')));
   }
 });
+
+/** A run of more pictures than any run before its kill will make. */
+function long(out: string, threads = '2'): string[] {
+  return ['dataset', site.path('long.recipe.yaml'), '--out', site.path(out), '--threads', threads, '--quiet'];
+}
 
 /** Start a run and kill it, again and again.
  * @returns how many kills left more pictures than there were before */
@@ -114,11 +121,13 @@ async function killed(name: string, seed: number, times: number): Promise<number
   let inTheMidst = 0;
   for (let kills = 0; kills < times; ) {
     const before = picturesIn(out);
-    // moments are counted from the first sign of work, since a start takes longer on a busy machine
-    const afterMs = 2 * startMs * random.uniform() + 2 * pictureMs * random.uniform();
-    const { status } = await runProgram([...words(name, '--quiet'), '--threads', '1'], {}, (child) => {
+    // by turns while the threads start, and after a picture has come: counted from signs, since all takes longer on a busy machine
+    const isEarly = kills % 2 === 0;
+    const isSign = () => (isEarly ? existsSync(join(out, '.work/made-from.json')) : picturesIn(out) > before);
+    const afterMs = (isEarly ? startMs : 1.5 * pictureMs) * random.uniform();
+    const { status } = await runProgram(long(name, '1'), {}, (child) => {
       const timer = setInterval(() => {
-        if (!existsSync(join(out, '.work/made-from.json'))) return;
+        if (!isSign()) return;
         clearInterval(timer);
         setTimeout(() => child.kill('SIGKILL'), afterMs);
       }, 2);
