@@ -35,9 +35,10 @@ export interface BandKernels {
   widestPlaces: [number, number][];
 }
 
-/** The error changes smoothly over the field: a grid of more tiles than this (of a quadrant, where they mirror each other) is checked on
- * an even spread of them, border included. */
-const MOST_CHECKED_TILES = 24;
+/** The error changes smoothly over the field, a fifth of it apart, and is the largest far out as a rule: grids of many tiles are checked on
+ * an even spread of about this many, and along the ring of outermost whole tiles on about as many (of a quadrant, where they mirror
+ * each other). */
+const CHECKED_TILES = 24;
 /** Part of the tolerance that a planned grid aims at; the check of the finished grid has the last word. */
 const AIM = 0.94;
 const LARGEST_FFT = 2048;
@@ -348,9 +349,22 @@ export function tilesToCheck(grid: BlurGrid, isMirrored: boolean): [number, numb
     tileEdge(tile + 1, origin, grid.tilePx, size) > tileEdge(tile, origin, grid.tilePx, size);
   const xs = range(columns).filter((x) => isInFrame(x, grid.originX, grid.width));
   const ys = range(rows).filter((y) => isInFrame(y, grid.originY, grid.height));
-  const stride = Math.max(1, Math.ceil(Math.sqrt((xs.length * ys.length) / MOST_CHECKED_TILES)));
-  const isOnSpread = (_: number, at: number, all: number[]) => at % stride === 0 || at === all.length - 1;
-  return ys.filter(isOnSpread).flatMap((y) => xs.filter(isOnSpread).map((x): [number, number] => [x, y]));
+  // the first tile of a row is cut by the frame, the second is the first whole one
+  const isOnRing = (at: number, count: number) =>
+    at === Math.min(1, count - 1) || (!isMirrored && at === count - 2);
+  const all = ys.flatMap((y, atY) => xs.map((x, atX) => ({ x, y, atX, atY })));
+  const ring = all.filter(({ atX, atY }) => isOnRing(atX, xs.length) || isOnRing(atY, ys.length));
+  const stride = Math.max(1, Math.round(Math.sqrt(all.length / CHECKED_TILES)));
+  const spread = all.filter(({ atX, atY }) => atX % stride === 0 && atY % stride === 0);
+  const corners = ring.filter(({ atX, atY }) => isOnRing(atX, xs.length) && isOnRing(atY, ys.length));
+  const checked = new Set([...spread, ...corners, ...everyFew(ring, CHECKED_TILES)]);
+  return all.filter((tile) => checked.has(tile)).map(({ x, y }): [number, number] => [x, y]);
+}
+
+/** About `count` of the items, evenly spread. */
+function everyFew<T>(items: readonly T[], count: number): T[] {
+  const step = Math.max(1, Math.ceil(items.length / count));
+  return items.filter((_, at) => at % step === 0);
 }
 
 function range(count: number): number[] {
