@@ -1,9 +1,10 @@
-import { existsSync, readdirSync, readFileSync, rmSync } from 'node:fs';
+import { spawnSync } from 'node:child_process';
+import { existsSync, mkdirSync, readdirSync, readFileSync, rmSync } from 'node:fs';
 import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, test, vi } from 'vitest';
 import { CounterRandom } from '../../src/numeric/random.js';
 import { contents, RECIPE, type Site, smallSite } from '../jobs/small-dataset.js';
-import { CHILD_TIMEOUT_MS, runInside, runProgram } from './run-program.js';
+import { CHILD_TIMEOUT_MS, PROGRAM, runInside, runProgram } from './run-program.js';
 
 vi.setConfig({ testTimeout: CHILD_TIMEOUT_MS, hookTimeout: CHILD_TIMEOUT_MS });
 
@@ -167,3 +168,31 @@ test('Ctrl-C ends the pictures at hand and leaves the rest for the next run', as
       .split('\n'),
   ).toHaveLength(8);
 });
+
+/** A small disk of one's own, for a process and its children: Linux lets everybody have one, where it is not forbidden. */
+const OWN_DISK = ['--user', '--map-root-user', '--mount', 'sh', '-euc'];
+const HAS_OWN_DISK = spawnSync('unshare', [...OWN_DISK, 'mount -t tmpfs none /mnt']).status === 0;
+
+test.runIf(HAS_OWN_DISK)('a full disk stops the run with status 3; with room again it goes on', () => {
+  const run = `"${process.execPath}" "${PROGRAM}" dataset "${site.path('a.recipe.yaml')}" --out "${site.path('disk/out')}" --threads 1 --quiet`;
+  mkdirSync(site.path('disk'));
+  const script = `
+    mount -t tmpfs -o size=24k none "${site.path('disk')}"
+    ${run} && exit 9 || [ $? = 3 ]
+    ls -A "${site.path('disk/out/images')}" >&2
+    mount -o remount,size=10m "${site.path('disk')}"
+    ${run}
+    cp -r "${site.path('disk/out')}" "${site.path('copied')}"`;
+  const { status, stderr } = spawnSync('unshare', [...OWN_DISK, script], { encoding: 'utf8' });
+  expect(stderr).toMatch(/^error: cannot write '.*': the disk is full\. Make room and run again\.\n/);
+  expect(status).toBe(0);
+  expect(stderr).not.toContain('.part'); // nothing half-written was left
+  expect(contents(site.path('copied'))).toEqual(contents(site.path('out')));
+});
+
+test.skipIf(HAS_OWN_DISK)(
+  'no disk of its own can be had here (unshare): the test of a full disk is skipped',
+  () => {
+    expect(HAS_OWN_DISK).toBe(false);
+  },
+);

@@ -28,7 +28,7 @@ export async function runInside(words: readonly string[]): Promise<Ended> {
   }
 }
 
-const PROGRAM = fileURLToPath(new URL('../../bin/foreglass.js', import.meta.url));
+export const PROGRAM = fileURLToPath(new URL('../../bin/foreglass.js', import.meta.url));
 
 /** The built program as a child process.
  * @param meanwhile called once with the child, to close its pipes or to send it a signal
