@@ -28,6 +28,19 @@ export {
   type SectorTruth,
 } from './jobs/chart.js';
 export {
+  type DatasetCounts,
+  type DatasetForecast,
+  type DatasetOptions,
+  type DatasetProgress,
+  type DatasetRecord,
+  dataset,
+  forecastDataset,
+  type MergeOptions,
+  mergeDataset,
+} from './jobs/dataset.js';
+export { type QueueOptions, queueDataset } from './jobs/dataset-queue.js';
+export { type WorkerOptions, type WorkerRecord, workOnQueue } from './jobs/dataset-worker.js';
+export {
   type DeriveOptions,
   type DeriveReport,
   type DeriveResult,

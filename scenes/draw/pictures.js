@@ -22,6 +22,20 @@ export const DEMO_SCENES = [
   { file: 'scenes/chart/test-chart.png', draw: () => testChart() },
 ];
 
+/** Scenes for training pictures, of which each shows a part. @type {readonly Scene[]} */
+export const TRAINING_SCENES = [
+  ...[21, 22, 23, 24].map((seed, index) => ({
+    file: `scenes/training/apples/apples-${index + 1}.png`,
+    labels: 'scenes/training/apples.json',
+    draw: () => appleBelt({ width: 1280, height: 800, seed }),
+  })),
+  ...[31, 32, 33].map((seed, index) => ({
+    file: `scenes/training/tags/tags-${index + 1}.png`,
+    labels: 'scenes/training/tags.json',
+    draw: () => crateTags({ columns: 2, rows: 4, seed }),
+  })),
+];
+
 /** The smaller scenes that `foreglass start` lays into a folder. @type {readonly Scene[]} */
 export const START_SCENES = [
   { file: 'scenes/tags/crate-tags.png', draw: () => crateTags({ columns: 2, rows: 3 }) },

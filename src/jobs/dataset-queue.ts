@@ -1,6 +1,6 @@
 /** `dataset --queue`: hand the pictures to workers on other machines, watch them, and put the data set together. */
 import { resolve } from 'node:path';
-import { Queue, QueueEvents } from 'bullmq';
+import type { Queue } from 'bullmq';
 import type { Redis } from 'ioredis';
 import { sha256 } from '../dataset/checksum.js';
 import { beginWork } from '../dataset/folder.js';
@@ -95,6 +95,7 @@ async function askFor(
   { signal }: Pick<QueueOptions, 'signal'>,
   onMade: (made: number, warnings: readonly string[]) => void,
 ): Promise<void> {
+  const { Queue, QueueEvents } = await import('bullmq'); // heavy, and needed here only
   const queue = new Queue<QueuedRange, RangeReport>(QUEUE.name, { connection, prefix: QUEUE.prefix });
   const events = new QueueEvents(QUEUE.name, { connection: connection.duplicate(), prefix: QUEUE.prefix });
   const mark = fingerprint(work.plan);

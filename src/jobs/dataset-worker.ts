@@ -1,5 +1,4 @@
 /** `worker`: makes the pictures that `dataset --queue` hands out, until it is stopped. */
-import { UnrecoverableError, Worker } from 'bullmq';
 import { planDataset } from '../dataset/plan.js';
 import { type Fault, InputError, InterruptedError, RunError } from '../errors.js';
 import { checkedThreads } from './dataset.js';
@@ -35,6 +34,7 @@ export async function workOnQueue(options: WorkerOptions): Promise<WorkerRecord>
   const start = performance.now();
   const threads = checkedThreads(options.threads);
   const { idleSeconds, deadSeconds = 30, signal, onProgress } = options;
+  const { UnrecoverableError, Worker } = await import('bullmq'); // heavy, and needed here only
   const connection = await connectQueue(options.queue);
   const record: WorkerRecord = { made: 0, ranges: 0, seconds: 0 };
   const site = new Site(threads);
@@ -57,6 +57,9 @@ export async function workOnQueue(options: WorkerOptions): Promise<WorkerRecord>
       try {
         await site.use(job.data, (crew) => crew.make(job.data.pictures, { onMade }));
       } catch (error) {
+        // faults of the input are the same for every worker: no other one tries
+        if (error instanceof InputError)
+          throw new UnrecoverableError(JSON.stringify({ faults: error.faults }));
         throw overTheQueue(error);
       } finally {
         active--;
@@ -149,9 +152,8 @@ class Site {
   }
 }
 
-/** Faults of the input are the same for every worker, so that no other one tries again; a disk or a thread may do better elsewhere. */
+/** An error as words. A disk or a thread may do better elsewhere: another worker tries. */
 function overTheQueue(error: unknown): Error {
-  if (error instanceof InputError) return new UnrecoverableError(JSON.stringify({ faults: error.faults }));
   if (error instanceof RunError) return new Error(JSON.stringify({ message: error.message }));
   return error instanceof Error ? error : new Error(String(error));
 }

@@ -1,5 +1,5 @@
 /** The queue over which a data set is shared by machines that come and go: its server, its jobs. */
-import { Redis } from 'ioredis';
+import type { Redis } from 'ioredis';
 import { InputError, RunError } from '../errors.js';
 
 /** Name of the queue and prefix of all its keys on the server. */
@@ -33,7 +33,8 @@ export async function connectQueue(url: string): Promise<Redis> {
   const shown = shownUrl(url);
   let isIn = false;
   let reason = '';
-  const redis: Redis = new Redis(url, {
+  const { Redis: Client } = await import('ioredis'); // heavy, and needed here only
+  const redis: Redis = new Client(url, {
     lazyConnect: true,
     maxRetriesPerRequest: null, // bullmq waits for its blocking calls
     connectTimeout: CONNECT_MS,

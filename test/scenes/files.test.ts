@@ -8,11 +8,11 @@ import {
   writeFileSync,
 } from 'node:fs';
 import { tmpdir } from 'node:os';
-import { join } from 'node:path';
+import { dirname, join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { afterAll, describe, expect, it } from 'vitest';
 import { cocoText, toCoco } from '../../scenes/draw/labels.js';
-import { DEMO_SCENES, START_SCENES } from '../../scenes/draw/pictures.js';
+import { DEMO_SCENES, START_SCENES, TRAINING_SCENES } from '../../scenes/draw/pictures.js';
 import { loadRecipe } from '../../src/files/load-recipe.js';
 import { loadRig } from '../../src/files/load-rig.js';
 import { loadTask } from '../../src/files/load-task.js';
@@ -71,13 +71,22 @@ describe('the tasks and recipes', () => {
     expect(loadRecipe(join(START, 'training.recipe.yaml')).rigs).toEqual([join(START, 'belt.rig.yaml')]);
   });
 
-  it('load beside what the demo has drawn', () => {
-    for (const name of ['training.recipe.yaml', 'belt-colour.rig.yaml']) {
-      copyFileSync(join(HALL, name), join(scratch, name));
+  it.each([
+    ['training', 'belt-colour', 'apples-1'],
+    ['training-tags', 'tags-green', 'tags-1'],
+  ])('%s.recipe.yaml loads beside what the demo draws for it', (name, rig, of) => {
+    const { file, labels } = scene(TRAINING_SCENES, of);
+    for (const needed of [`${name}.recipe.yaml`, `${rig}.rig.yaml`]) {
+      copyFileSync(join(HALL, needed), join(scratch, needed));
     }
-    mkdirSync(join(scratch, 'out/scenes/belt'), { recursive: true });
-    writeFileSync(join(scratch, 'out', scene(DEMO_SCENES, 'apple-belt').labels!), '{}');
-    expect(loadRecipe(join(scratch, 'training.recipe.yaml')).count).toBe(500);
+    mkdirSync(join(scratch, 'out', dirname(file)), { recursive: true });
+    writeFileSync(join(scratch, 'out', labels!), '{}');
+    const recipe = loadRecipe(join(scratch, `${name}.recipe.yaml`));
+    expect(recipe.count).toBe(500);
+    // values are spread about what the rig has
+    const { waves } = loadRig(join(HALL, `${rig}.rig.yaml`)).lens;
+    const w131 = recipe.vary.find(({ key }) => key === 'lens.waves.W131');
+    expect(w131?.distribution).toMatchObject({ kind: 'normal', mean: waves.W131 });
   });
 
   it('vary a lens about the figures of its own rig', () => {
