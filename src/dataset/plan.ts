@@ -160,11 +160,13 @@ function checkRigs(recipe: Recipe, rigs: readonly RigBase[]): void {
       if (recipe.output.picture === 'raw') attempt(() => refuseRawColours(nominal), base, '', faults);
     }
     for (const { key, distribution } of recipe.vary) {
+      const isOpen = distribution.kind === 'normal' && distribution.within === undefined;
+      const advice = isOpen ? 'State the limits of the distribution: within: [lowest, highest].' : undefined;
       for (const value of new Set(extremes(distribution))) {
         const about = `vary.${key}: at ${value}: `;
-        const rig = attempt(() => rigWith(base, [{ key, value }]), base, about, faults);
+        const rig = attempt(() => rigWith(base, [{ key, value }]), base, about, faults, advice);
         if (rig !== undefined)
-          attempt(() => refuseUnformable(rig, recipe.accuracy.oversample), base, about, faults);
+          attempt(() => refuseUnformable(rig, recipe.accuracy.oversample), base, about, faults, advice);
       }
     }
   }
@@ -176,6 +178,7 @@ function attempt<Result>(
   base: RigBase,
   about: string,
   faults: Fault[],
+  advice?: string,
 ): Result | undefined {
   try {
     return run();
@@ -186,6 +189,7 @@ function attempt<Result>(
         ...fault,
         file: fault.file ?? base.path,
         key: `${about}${fault.key ?? ''}`,
+        advice: advice ?? fault.advice,
       })),
     );
     return undefined;

@@ -6,6 +6,7 @@ import { sha256 } from '../dataset/checksum.js';
 import { beginWork } from '../dataset/folder.js';
 import type { DatasetPlan } from '../dataset/plan.js';
 import { keepRecords } from '../dataset/there.js';
+import { Warnings } from '../dataset/warnings.js';
 import { InputError, InterruptedError, RunError } from '../errors.js';
 import {
   clearedFolder,
@@ -46,7 +47,7 @@ export async function queueDataset(options: QueueOptions): Promise<DatasetRecord
     const state = options.fresh ? clearedFolder(out) : folderFor(out, plan);
     const { mine, total } = picturesFor(plan, options, state);
     await beginWork(out, plan.madeFrom, plan.recipe.count);
-    const warnings = new Set(plan.warnings);
+    const warnings = new Warnings(plan.warnings);
     const first = await verified(out, state, mine, options);
     const record: DatasetRecord = {
       out,
@@ -67,14 +68,14 @@ export async function queueDataset(options: QueueOptions): Promise<DatasetRecord
         );
       }
       await askFor(connection, { plan, recipe, out, missing }, options, (made, said) => {
-        for (const warning of said) warnings.add(warning);
+        warnings.add(said);
         if (made > 0) options.onProgress?.({ stage: 'pictures', ...pace.next(made) });
       });
       const { whole } = await verified(out, state, mine, options);
       missing = mine.filter((picture) => !whole.has(picture));
     }
     record.counts = await finish(out, plan, total, state);
-    record.warnings = [...warnings];
+    record.warnings = warnings.list();
     record.seconds = (performance.now() - start) / 1000;
     return record;
   } finally {

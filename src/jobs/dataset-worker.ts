@@ -1,5 +1,6 @@
 /** `worker`: makes the pictures that `dataset --queue` hands out, until it is stopped. */
 import { planDataset } from '../dataset/plan.js';
+import { Warnings } from '../dataset/warnings.js';
 import { type Fault, InputError, InterruptedError, RunError } from '../errors.js';
 import { checkedThreads } from './dataset.js';
 import { DatasetCrew } from './dataset-crew.js';
@@ -44,12 +45,12 @@ export async function workOnQueue(options: WorkerOptions): Promise<WorkerRecord>
     QUEUE.name,
     async (job) => {
       const report: RangeReport = { made: 0, warnings: [] };
-      const said = new Set<string>();
+      const said = new Warnings([]);
       const onMade = (_picture: number, warnings: readonly string[]) => {
-        for (const warning of warnings) said.add(warning);
+        said.add(warnings);
         report.made++;
         record.made++;
-        report.warnings = [...said];
+        report.warnings = said.list();
         job.updateProgress({ ...report }).catch(() => undefined); // a lost word about progress is no loss
         onProgress?.({ made: record.made, out: job.data.out });
       };

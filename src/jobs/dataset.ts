@@ -5,6 +5,7 @@ import { beginWork, type FolderState, lookAtFolder, refuseOther, removeDataset }
 import type { FoundLine } from '../dataset/journal.js';
 import { type DatasetPlan, planDataset } from '../dataset/plan.js';
 import { keepRecords, linesThere, wholePictures } from '../dataset/there.js';
+import { Warnings } from '../dataset/warnings.js';
 import { type Fault, InputError, InterruptedError } from '../errors.js';
 import { DatasetCrew } from './dataset-crew.js';
 import { PictureMaker } from './dataset-picture.js';
@@ -71,7 +72,7 @@ export async function dataset(options: DatasetOptions): Promise<DatasetRecord> {
   const { whole, damaged, lines } = await verified(out, state, mine, options);
   const missing = mine.filter((picture) => !whole.has(picture));
   if (missing.length > 0) keepRecords(out, lines);
-  const warnings = new Set(plan.warnings);
+  const warnings = new Warnings(plan.warnings);
   await makeMissing(plan, missing, threads, warnings, options);
   const record: DatasetRecord = {
     out,
@@ -80,7 +81,7 @@ export async function dataset(options: DatasetOptions): Promise<DatasetRecord> {
     damaged,
     made: missing.length,
     seconds: 0,
-    warnings: [...warnings],
+    warnings: warnings.list(),
   };
   if (shard === undefined) record.counts = await finish(out, plan, total, state);
   record.seconds = (performance.now() - start) / 1000;
@@ -136,7 +137,7 @@ export async function forecastDataset(options: DatasetOptions): Promise<DatasetF
   const there = options.fresh ? new Map<number, FoundLine>() : await linesThere(options.out, state);
   const missing = mine.filter((picture) => !there.has(picture));
   const maker = new PictureMaker(plan);
-  const warnings = new Set(plan.warnings);
+  const warnings = new Warnings(plan.warnings);
   let bytes = 0;
   let seconds = 0;
   const samples = missing.slice(0, SAMPLES);
@@ -147,7 +148,7 @@ export async function forecastDataset(options: DatasetOptions): Promise<DatasetF
       const { data, entry } = await maker.make(picture);
       seconds += (performance.now() - start) / 1000;
       bytes += data.length + 2 * JSON.stringify(entry).length; // records and labels
-      for (const warning of entry.warnings) warnings.add(warning);
+      warnings.add(entry.warnings);
     }
   } finally {
     await maker.close();
@@ -158,7 +159,7 @@ export async function forecastDataset(options: DatasetOptions): Promise<DatasetF
     kept: mine.length - missing.length,
     bytes: Math.round(bytes * scale),
     seconds: (seconds * scale) / Math.min(threads, Math.max(1, missing.length)),
-    warnings: [...warnings],
+    warnings: warnings.list(),
   };
 }
 
@@ -245,7 +246,7 @@ async function makeMissing(
   plan: DatasetPlan,
   missing: readonly number[],
   threads: number,
-  warnings: Set<string>,
+  warnings: Warnings,
   { out, signal, onProgress }: DatasetOptions,
 ): Promise<void> {
   if (missing.length === 0) return;
@@ -255,7 +256,7 @@ async function makeMissing(
     await crew.make(missing, {
       signal,
       onMade: (_picture, said) => {
-        for (const warning of said) warnings.add(warning);
+        warnings.add(said);
         onProgress?.({ stage: 'pictures', ...pace.next() });
       },
     });

@@ -447,6 +447,12 @@ describe('refused before any work', () => {
       "a.rig.yaml: vary.mount.f_number: at 3: mount.f_number: is below the lens's f-number, so the coefficients do not hold, found 3. Allowed: 4 (lens.f_number) or more.",
     ],
     [
+      'a distribution without limits',
+      (text) =>
+        text.replace('lens.waves.W131: { normal: [0.2, 0.05] }', 'mount.f_number: { normal: [5, 1] }'),
+      "a.rig.yaml: vary.mount.f_number: at 1: mount.f_number: is below the lens's f-number, so the coefficients do not hold, found 1. Allowed: 4 (lens.f_number) or more. State the limits of the distribution: within: [lowest, highest].",
+    ],
+    [
       'a lens that folds',
       (text) =>
         text.replace('lens.waves.W131: { normal: [0.2, 0.05] }', 'lens.waves.W311: { uniform: [0, 400] }'),
