@@ -6,7 +6,7 @@ import { type PixelRect, type ScenePose, sceneToSensor } from './view.js';
 /** Lay a scene on the sensor's plane and cut out a sheet of it. Past its border the scene goes on with its edge.
  * @param scene       in linear light; not changed
  * @param oversample  samples a pixel on each side
- * @returns oversample x the sheet's pixels, in planes of its own
+ * @returns oversample x the sheet's pixels; the scene's own planes where that is all of them, as they are
  */
 export function placeScene(scene: Raster, pose: ScenePose, sheet: PixelRect, oversample: number): Raster {
   const turned = turnedScene(scene, pose.quarterTurns);
@@ -47,6 +47,7 @@ function neededPart({ taps, first, weights }: ResampleWeights, length: number): 
 }
 
 function cutOut(plane: Float32Array, stride: number, across: LinePart, down: LinePart): Float32Array {
+  if (across.length === stride && plane.length === stride * down.length) return plane;
   const out = new Float32Array(across.length * down.length);
   for (let row = 0; row < down.length; row++) {
     const from = (down.start + row) * stride + across.start;

@@ -31,8 +31,8 @@ export interface BandKernels {
   /** The certificate: largest measured blending error over all tiles that were probed. */
   blendBound: number;
   energyOutsideKernel: number;
-  /** The places where PSFs are the widest. */
-  widestPlaces: [number, number][];
+  /** Where the PSF is the widest. */
+  widestPlace: [number, number];
 }
 
 /** The error changes smoothly over the field, a fifth of it apart, and is the largest far out as a rule: grids of many tiles are checked on
@@ -56,8 +56,8 @@ export async function prepareKernels(
   earlier?: BandKernels,
 ): Promise<BandKernels> {
   // where light spreads the widest in one band, it does so in the others
-  const places = earlier?.widestPlaces ?? steepestPlaces(setup);
-  const { kernelPx, energyOutsideKernel, widestPlaces } = await chooseKernel(
+  const places = earlier === undefined ? steepestPlaces(setup) : [earlier.widestPlace];
+  const { kernelPx, energyOutsideKernel, widestPlace } = await chooseKernel(
     crew,
     setup,
     places,
@@ -89,7 +89,7 @@ export async function prepareKernels(
         kernelsAt,
         blendBound,
         energyOutsideKernel,
-        widestPlaces,
+        widestPlace,
       };
     }
     tilePx = shrinkTile(grid.tilePx, order, blendBound, tolerances.blend);
@@ -186,7 +186,7 @@ async function chooseKernel(
   places: [number, number][],
   tolerances: BlurTolerances,
   watch: JobWatch,
-): Promise<{ kernelPx: number; energyOutsideKernel: number; widestPlaces: [number, number][] }> {
+): Promise<{ kernelPx: number; energyOutsideKernel: number; widestPlace: [number, number] }> {
   const { signal } = watch;
   const extents = await crew.run({ kind: 'extent', setup, places, tolerance: tolerances.kernel }, { signal });
   const extent = largest(extents);
@@ -196,11 +196,7 @@ async function chooseKernel(
     { kind: 'outside', setup, places: widest, kernelPx, tolerance: tolerances.kernel },
     { signal },
   );
-  const byExtent = places
-    .map((place, at) => ({ place, extent: extents[at] }))
-    .sort((a, b) => b.extent - a.extent);
-  const widestPlaces = byExtent.slice(0, 2).map(({ place }) => place);
-  return { kernelPx, energyOutsideKernel: largest(outside), widestPlaces };
+  return { kernelPx, energyOutsideKernel: largest(outside), widestPlace: widest[0] };
 }
 
 /** The tile and order that promise the certificate for the least work. */

@@ -144,15 +144,24 @@ async function encoded(
 ): Promise<Buffer> {
   const { width, height } = window;
   const from = (window.y - frame.y) * frame.width + (window.x - frame.x);
-  const cut = <Plane extends Float32Array | Uint16Array>(plane: Plane, out: Plane): Plane => {
+  const isWhole = width === frame.width && height === frame.height;
+  const cut = <Plane extends Float32Array | Uint16Array>(plane: Plane, makePlane: () => Plane): Plane => {
+    if (isWhole) return plane;
+    const out = makePlane();
     for (let row = 0; row < height; row++) {
       const start = from + row * frame.width;
       out.set(plane.subarray(start, start + width), row * width);
     }
     return out;
   };
-  if (kind === 'raw') return encodeRaw(cut(raw![0], new Uint16Array(width * height)), width, height, format);
-  const planes = picture.planes.map((plane) => cut(plane, new Float32Array(width * height)));
+  if (kind === 'raw')
+    return encodeRaw(
+      cut(raw![0], () => new Uint16Array(width * height)),
+      width,
+      height,
+      format,
+    );
+  const planes = picture.planes.map((plane) => cut(plane, () => new Float32Array(width * height)));
   return encodePicture({ width, height, planes }, format, { linear: kind === 'linear', quality });
 }
 
