@@ -218,9 +218,10 @@ async function chooseTile(
   const { width, height } = frameOf(task.setup);
   let best = { tilePx: 1, order: 1, cost: Number.POSITIVE_INFINITY };
   let allowedPx = FIRST_GUESS_PX;
+  const isLongWay = paysToMeasure(task, { tilePx: FIRST_GUESS_PX, order: 1 });
   for (const order of [1, 2, 3]) {
     // a higher order allows tiles about twice as large: one round of measuring is enough to tell whether it pays
-    const [guessPx, rounds] = order === 1 ? [allowedPx, 2] : [2 * allowedPx, 1];
+    const [guessPx, rounds] = order === 1 ? [allowedPx, isLongWay ? 2 : 1] : [2 * allowedPx, 1];
     allowedPx = await largestTile(crew, task, order, tolerance, watch, guessPx, rounds);
     const candidate = cheapestTile(task, order, allowedPx);
     if (candidate.cost < best.cost) best = { ...candidate, order };
