@@ -2,11 +2,14 @@
 import { mkdirSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
-import { afterAll, beforeAll, describe, expect, test } from 'vitest';
+import { afterAll, beforeAll, describe, expect, test, vi } from 'vitest';
 import type { PictureEntry } from '../../src/dataset/entry.js';
 import { encodePicture, readScene } from '../../src/files/pictures/index.js';
 import type { Raster } from '../../src/imaging/raster.js';
 import { dataset } from '../../src/jobs/dataset.js';
+import { BUSY_MS } from '../support/form.js';
+
+vi.setConfig({ testTimeout: BUSY_MS, hookTimeout: BUSY_MS });
 
 const WIDTH = 420;
 const HEIGHT = 320;

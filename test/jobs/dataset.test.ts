@@ -9,7 +9,7 @@ import {
   writeFileSync,
 } from 'node:fs';
 import { join } from 'node:path';
-import { afterAll, beforeAll, describe, expect, it, test } from 'vitest';
+import { afterAll, beforeAll, describe, expect, it, test, vi } from 'vitest';
 import type { PictureEntry } from '../../src/dataset/entry.js';
 import { formatFault } from '../../src/errors.js';
 import { loadRig } from '../../src/files/load-rig.js';
@@ -22,7 +22,10 @@ import {
   mergeDataset,
 } from '../../src/jobs/dataset.js';
 import { render } from '../../src/jobs/render.js';
+import { BUSY_MS } from '../support/form.js';
 import { contents, RECIPE, records, type Site, smallSite } from './small-dataset.js';
+
+vi.setConfig({ testTimeout: BUSY_MS, hookTimeout: BUSY_MS });
 
 let site: Site;
 /** A finished data set that the tests do not touch. */
